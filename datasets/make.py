@@ -1,0 +1,168 @@
+"""Make the invented studies: rate tables from stated true values, with seeded errors.
+
+Run from anywhere: ``python datasets/make.py`` writes the tables beside this script again, byte for
+byte; ``python datasets/make.py FOLDER`` writes them elsewhere. The salt laws are written out here
+on purpose, and not taken from the package that is tested on them; only the Debye-Hückel
+coefficients of water are the package's.
+"""
+
+from __future__ import annotations
+
+import csv
+import io
+import json
+import sys
+from collections.abc import Callable
+from dataclasses import dataclass
+from pathlib import Path
+
+import numpy as np
+
+from knought.chemistry.debye_huckel import debye_huckel
+
+BOLTZMANN, PLANCK, GAS_CONSTANT = 1.380649e-23, 6.62607015e-34, 8.31446261815324
+
+
+@dataclass(frozen=True)
+class Invented:
+    """An invented study: its design, its truth, and how its errors are drawn."""
+
+    name: str
+    seed: int
+    temperatures: tuple[float, ...]
+    ionic_strengths: tuple[float, ...]
+    replicated: tuple[tuple[float, float], ...]
+    enthalpy: float  # J/mol, at I = 0
+    entropy: float  # J/(K mol), at I = 0, standard concentration 1 mol/L
+    charge_product: int
+    salt: str
+    lg_activity: Callable[[float, float], float]  # (T, I) -> lg k/k° per unit of Δz² and beyond
+    relative_u: tuple[float, ...]
+    salt_column: str
+
+    def true_k(self, T: float, I: float) -> float:
+        """Rate constant in L mol^-1 s^-1 without error."""
+        eyring = np.log(BOLTZMANN * T / PLANCK) + self.entropy / GAS_CONSTANT
+        ln_k = eyring - self.enthalpy / (GAS_CONSTANT * T)
+        return float(np.exp(ln_k + np.log(10.0) * self.lg_activity(T, I)))
+
+    def rows(self) -> list[list[str]]:
+        """The table, header first."""
+        random = np.random.Generator(np.random.Philox(self.seed))
+        conditions = [(T, I) for T in self.temperatures for I in self.ionic_strengths]
+        conditions += list(self.replicated)
+        order = random.permutation(len(conditions))
+        rows = [
+            ["run", "t/°C", "I/(mol/L)", "k/(L mol^-1 s^-1)", "u_r(k)/%", "salt"]
+        ]
+        for number, place in enumerate(order, start=1):
+            T, I = conditions[place]
+            u = self.relative_u[int(random.integers(len(self.relative_u)))]
+            k = self.true_k(T, I) * np.exp(u * random.standard_normal())
+            rows.append(
+                [str(number), f"{T - 273.15:.2f}", f"{I:g}", f"{k:.4g}", f"{100 * u:g}",
+                 self.salt_column]
+            )
+        return rows
+
+    def truth(self) -> dict[str, object]:
+        """The true values at 298.15 K and I = 0."""
+        T = 298.15
+        return {
+            "invented": True,
+            "seed": self.seed,
+            "salt_law": self.salt,
+            "parameters": {
+                "rate_constant": self.true_k(T, 0.0),
+                "activation_energy": (self.enthalpy + GAS_CONSTANT * T) / 1000.0,
+                "activation_enthalpy": self.enthalpy / 1000.0,
+                "activation_entropy": self.entropy,
+                "activation_gibbs_energy": (self.enthalpy - T * self.entropy) / 1000.0,
+                "charge_product": self.charge_product,
+            },
+        }
+
+
+def _screening(T: float) -> tuple[float, float]:
+    water = debye_huckel(np.array([T]), basis="molar")
+    return float(water.A[0]), float(water.B[0])
+
+
+def _extended(charge_product: int, size: float, beta: float) -> Callable[[float, float], float]:
+    def lg(T: float, I: float) -> float:
+        A, B = _screening(T)
+        root = np.sqrt(I)
+        return float(2 * charge_product * A * root / (1 + B * size * root) + beta * I)
+
+    return lg
+
+
+def _davies(charge_product: int, coefficient: float) -> Callable[[float, float], float]:
+    def lg(T: float, I: float) -> float:
+        A, _ = _screening(T)
+        root = np.sqrt(I)
+        return float(2 * charge_product * A * (root / (1 + root) - coefficient * I))
+
+    return lg
+
+
+STUDIES = (
+    Invented(
+        name="like-charges",
+        seed=11,
+        temperatures=(283.15, 290.65, 298.15, 305.65, 313.15),
+        ionic_strengths=(0.005, 0.01, 0.02, 0.05, 0.1, 0.2),
+        replicated=((298.15, 0.01), (298.15, 0.01), (298.15, 0.1), (283.15, 0.05), (313.15, 0.05)),
+        enthalpy=47_300.0,
+        entropy=-71.0,
+        charge_product=2,
+        salt="extended Debye–Hückel, å = 5.2 Å, and β = 0.06 L/mol",
+        lg_activity=_extended(2, 5.2e-10, 0.06),
+        relative_u=(0.015, 0.02, 0.03),
+        salt_column="NaClO4",
+    ),
+    Invented(
+        name="opposite-charges",
+        seed=22,
+        temperatures=(288.15, 298.15, 308.15, 318.15),
+        ionic_strengths=(0.004, 0.008, 0.015, 0.03, 0.06, 0.1, 0.2, 0.3),
+        replicated=((298.15, 0.004), (298.15, 0.03), (298.15, 0.3), (318.15, 0.03)),
+        enthalpy=38_900.0,
+        entropy=-54.0,
+        charge_product=-2,
+        salt="Davies with the coefficient 0.3",
+        lg_activity=_davies(-2, 0.3),
+        relative_u=(0.02, 0.03, 0.04),
+        salt_column="NaNO3",
+    ),
+    Invented(
+        name="neutral-partner",
+        seed=33,
+        temperatures=(293.15, 303.15, 310.15, 318.15, 328.15, 338.15),
+        ionic_strengths=(0.01, 0.05, 0.1, 0.25),
+        replicated=((310.15, 0.1), (310.15, 0.1), (338.15, 0.05)),
+        enthalpy=63_500.0,
+        entropy=-82.0,
+        charge_product=0,
+        salt="no screening of charges, β = 0.05 L/mol",
+        lg_activity=lambda T, I: 0.05 * I,
+        relative_u=(0.02, 0.025, 0.05),
+        salt_column="KCl",
+    ),
+)
+
+
+def write(folder: Path) -> None:
+    """Write the table and the true values of every study below `folder`."""
+    for study in STUDIES:
+        target = folder / study.name
+        target.mkdir(parents=True, exist_ok=True)
+        text = io.StringIO()
+        csv.writer(text, lineterminator="\n").writerows(study.rows())
+        (target / "rates.csv").write_text(text.getvalue(), encoding="utf-8", newline="\n")
+        truth = json.dumps(study.truth(), indent=1, ensure_ascii=False) + "\n"
+        (target / "truth.json").write_text(truth, encoding="utf-8", newline="\n")
+
+
+if __name__ == "__main__":
+    write(Path(sys.argv[1]) if len(sys.argv) > 1 else Path(__file__).parent)

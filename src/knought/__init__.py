@@ -1,0 +1,99 @@
+"""Activation parameters, k at zero ionic strength and the charge product, from rate constants.
+
+>>> import knought as kn
+>>> rates = kn.RateTable.from_arrays(T=[288.15, 298.15, 308.15], k=[1.1e-3, 2.4e-3, 5.0e-3])
+>>> found = kn.assess(rates)
+>>> print(found.parameters["activation_energy"].quantity.words)
+activation energy
+
+Names are loaded when they are first used, so that ``import knought`` costs little.
+"""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+if TYPE_CHECKING:
+    from knought.chemistry.debye_huckel import debye_huckel
+    from knought.chemistry.species import Species, charge_product, parse_reactants, parse_species
+    from knought.errors import Caveat, InputError, Problem
+    from knought.fitting.assess import Assessment, assess
+    from knought.fitting.estimate import Estimate
+    from knought.fitting.fit import fit
+    from knought.fitting.ion_size import fit_ion_size
+    from knought.fitting.k_space import fit_in_k
+    from knought.fitting.open_fit import OpenFit
+    from knought.fitting.surface_fit import SurfaceFit, fit_many
+    from knought.laws.open_law import Priors
+    from knought.measurement.reading import read_rates
+    from knought.measurement.table import RateTable
+    from knought.reporting.report import Report
+    from knought.study import run_study
+
+__all__ = [
+    "Assessment",
+    "Caveat",
+    "Estimate",
+    "InputError",
+    "OpenFit",
+    "Priors",
+    "Problem",
+    "RateTable",
+    "Report",
+    "Species",
+    "SurfaceFit",
+    "__version__",
+    "assess",
+    "charge_product",
+    "debye_huckel",
+    "fit",
+    "fit_in_k",
+    "fit_ion_size",
+    "fit_many",
+    "parse_reactants",
+    "parse_species",
+    "read_rates",
+    "run_study",
+]
+
+__version__ = "0.1.0"
+
+_HOMES = {
+    "Assessment": "fitting.assess",
+    "Caveat": "errors",
+    "Estimate": "fitting.estimate",
+    "InputError": "errors",
+    "OpenFit": "fitting.open_fit",
+    "Priors": "laws.open_law",
+    "Problem": "errors",
+    "RateTable": "measurement.table",
+    "Report": "reporting.report",
+    "Species": "chemistry.species",
+    "SurfaceFit": "fitting.surface_fit",
+    "assess": "fitting.assess",
+    "charge_product": "chemistry.species",
+    "debye_huckel": "chemistry.debye_huckel",
+    "fit": "fitting.fit",
+    "fit_in_k": "fitting.k_space",
+    "fit_ion_size": "fitting.ion_size",
+    "fit_many": "fitting.surface_fit",
+    "parse_reactants": "chemistry.species",
+    "parse_species": "chemistry.species",
+    "read_rates": "measurement.reading",
+    "run_study": "study",
+}
+
+
+def __getattr__(name: str) -> object:
+    """Load a public name when it is first used (PEP 562)."""
+    if name not in _HOMES:
+        raise AttributeError(f"module 'knought' has no attribute {name!r}")
+    from importlib import import_module
+
+    found: object = getattr(import_module(f"knought.{_HOMES[name]}"), name)
+    globals()[name] = found
+    return found
+
+
+def __dir__() -> list[str]:
+    return sorted(__all__)

@@ -1,0 +1,1 @@
+"""Quantities and units, species, water, activity: what a solution is made of."""

@@ -1,0 +1,400 @@
+"""Shapes f(I) of the activity coefficient of an ion: log10 γ = -z² A(T) f(I; T) + b I.
+
+| form | f | basis | customary domain |
+| limiting | √I | molar | 0.01 mol/L (some say 0.001) |
+| Güntelberg | √I/(1 + √I) | molar | 0.1 mol/L |
+| extended | √I/(1 + B å √I) | molar | 0.1 mol/L |
+| Davies | √I/(1 + √I) - C I | molar | 0.5 mol/L |
+| SIT | √I/(1 + 1.5 √I) | molal | 3.5 mol/kg |
+| Pitzer | (1/3)[√I/(1 + b √I) + (2/b) ln(1 + b √I)], b = 1.2 | molal | 6 mol/kg |
+| open | √I/(1 + B å √I) - c I | molar | as its priors allow |
+
+Every form takes I in mol/L and answers on its own basis: the molal ones turn it into molality with
+water's density and use the molal A. What the salt laws need is the product ``screening`` = A f, and
+its exact slopes at constant molarity. √I has an infinite slope at I = 0, and so has every form.
+
+To add a form, write one class here: ``name``, ``words``, ``basis``, ``domain`` and ``_shape``.
+"""
+
+from __future__ import annotations
+
+from abc import ABC, abstractmethod
+from dataclasses import dataclass
+from typing import TYPE_CHECKING, ClassVar
+
+import numpy as np
+
+from knought.chemistry import water
+from knought.chemistry.debye_huckel import Basis, DebyeHuckel, debye_huckel
+from knought.errors import InputError
+
+if TYPE_CHECKING:
+    from numpy.typing import ArrayLike
+
+    from knought.arrays import FloatArray
+
+__all__ = [
+    "ActivityForm",
+    "DaviesForm",
+    "Domain",
+    "ExtendedForm",
+    "GuntelbergForm",
+    "LimitingForm",
+    "OpenForm",
+    "PitzerForm",
+    "SITForm",
+    "lg_activity_coefficient",
+    "mean_activity_coefficient",
+]
+
+#: kg/L in kg/m³.
+_PER_LITRE = 1e-3
+
+
+@dataclass(frozen=True)
+class Domain:
+    """Up to where a form is customarily used; going beyond is warned of, not refused.
+
+    Attributes
+    ----------
+    upper
+        Highest ionic strength, in mol/L or mol/kg by the basis of the form.
+    source
+        Whose custom it is.
+    """
+
+    upper: float
+    source: str
+
+
+@dataclass(frozen=True, eq=False)
+class _Shape:
+    """f at given I of the form's own basis, with its slopes in I and in B(T)."""
+
+    f: FloatArray
+    f_I: FloatArray
+    f_B: FloatArray | float = 0.0
+
+
+@dataclass(frozen=True, eq=False)
+class _At:
+    """Conditions on the form's own basis: I, its slopes, and the coefficients of water."""
+
+    I: FloatArray
+    I_c: FloatArray | float  # slope of I (own basis) with molarity
+    I_T: FloatArray | float  # slope of I (own basis) with T at constant molarity
+    water: DebyeHuckel
+
+
+class ActivityForm(ABC):
+    """A shape of the activity coefficient.
+
+    Attributes
+    ----------
+    name, words
+        Its name in records, and its name for people.
+    basis
+        ``"molar"`` or ``"molal"``.
+    domain
+        Up to where it is customarily used.
+    """
+
+    name: ClassVar[str]
+    words: ClassVar[str]
+    basis: ClassVar[Basis] = "molar"
+    domain: ClassVar[Domain]
+
+    @abstractmethod
+    def _shape(self, I: FloatArray, B: FloatArray) -> _Shape:
+        """f and its slopes at I of the form's own basis."""
+
+    def value(self, I: ArrayLike, T: ArrayLike) -> FloatArray:
+        """Return f, on the form's own basis.
+
+        Parameters
+        ----------
+        I, T
+            Ionic strengths in mol/L and temperatures in K, of shapes that broadcast.
+
+        Raises
+        ------
+        InputError
+            If I is negative, or T outside 0-100 °C.
+        """
+        at = self._at(I, T)
+        return self._shape(at.I, at.water.B).f
+
+    def d_dI(self, I: ArrayLike, T: ArrayLike) -> FloatArray:
+        """Return ∂f/∂I at constant T, in L/mol; infinite at I = 0. Arguments as for value."""
+        at = self._at(I, T)
+        return np.asarray(self._shape(at.I, at.water.B).f_I * at.I_c)
+
+    def d_dT(self, I: ArrayLike, T: ArrayLike) -> FloatArray:
+        """Return ∂f/∂T at constant molarity, in K^-1. Arguments as for value."""
+        at = self._at(I, T)
+        return self._slope_T(at, self._shape(at.I, at.water.B))
+
+    def screening(self, I: ArrayLike, T: ArrayLike) -> FloatArray:
+        """Return A(T) f(I; T): what log10 γ is for a unit of -z². Arguments as for value."""
+        at = self._at(I, T)
+        return np.asarray(at.water.A * self._shape(at.I, at.water.B).f)
+
+    def screening_dI(self, I: ArrayLike, T: ArrayLike) -> FloatArray:
+        """Return ∂(A f)/∂I at constant T, in L/mol; infinite at I = 0."""
+        at = self._at(I, T)
+        return np.asarray(at.water.A * self._shape(at.I, at.water.B).f_I * at.I_c)
+
+    def screening_dT(self, I: ArrayLike, T: ArrayLike) -> FloatArray:
+        """Return ∂(A f)/∂T at constant molarity, in K^-1."""
+        at = self._at(I, T)
+        shape = self._shape(at.I, at.water.B)
+        return np.asarray(at.water.dA_dT * shape.f + at.water.A * self._slope_T(at, shape))
+
+    def interaction_abscissa(self, I: ArrayLike, T: ArrayLike) -> FloatArray:
+        """Return what an interaction coefficient multiplies: I in mol/L, or in mol/kg."""
+        return _own_basis(self.basis, I, T)[0]
+
+    def interaction_abscissa_dI(self, I: ArrayLike, T: ArrayLike) -> FloatArray:
+        """Return its slope with molarity."""
+        I, I_c, _ = _own_basis(self.basis, I, T)
+        return np.asarray(np.broadcast_to(I_c, I.shape))
+
+    def interaction_abscissa_dT(self, I: ArrayLike, T: ArrayLike) -> FloatArray:
+        """Return its slope with T at constant molarity, per K."""
+        I, _, I_T = _own_basis(self.basis, I, T)
+        return np.asarray(np.broadcast_to(I_T, I.shape))
+
+    def _at(self, I: ArrayLike, T: ArrayLike) -> _At:
+        return _At(*_own_basis(self.basis, I, T), debye_huckel(T, self.basis))
+
+    @staticmethod
+    def _slope_T(at: _At, shape: _Shape) -> FloatArray:
+        through_B = shape.f_B * at.water.dB_dT
+        if isinstance(at.I_T, float):
+            return np.asarray(through_B + np.zeros_like(shape.f))
+        # At I = 0 molality does not move with T: the slope there is 0, not 0 times infinity.
+        with np.errstate(invalid="ignore"):
+            through_I = np.where(at.I > 0, shape.f_I * at.I_T, 0.0)
+        return np.asarray(through_B + through_I)
+
+
+def _own_basis(
+    basis: Basis, I: ArrayLike, T: ArrayLike
+) -> tuple[FloatArray, FloatArray | float, FloatArray | float]:
+    """Return I on the basis of a form, with its slopes in molarity and in T.
+
+    m = c/ρ with water's density in kg/L: for dilute solutions, as in the conversion of SIT.
+    """
+    I, T = np.broadcast_arrays(np.asarray(I, dtype=float), np.asarray(T, dtype=float))
+    if np.any(~(I >= 0)):
+        raise InputError(
+            f"an ionic strength is {float(I[~(I >= 0)].flat[0])} mol/L",
+            "ionic strengths are at least zero",
+        )
+    if basis == "molar":
+        return I, 1.0, 0.0
+    T = water.require_liquid(T)
+    rho, rho_dT = water.density_kernel(T)
+    rho, rho_dT = rho * _PER_LITRE, rho_dT * _PER_LITRE
+    return I / rho, 1.0 / rho, -I * rho_dT / rho**2
+
+
+def _half_slope(root: FloatArray) -> FloatArray:
+    """d√I/dI = 1/(2√I); infinite at zero."""
+    with np.errstate(divide="ignore"):
+        return np.asarray(0.5 / root)
+
+
+@dataclass(frozen=True)
+class LimitingForm(ActivityForm):
+    """Debye and Hückel's limiting law, √I: the slope that every form has at I → 0."""
+
+    name: ClassVar[str] = "limiting"
+    words: ClassVar[str] = "limiting law"
+    domain: ClassVar[Domain] = Domain(0.01, "common practice, no source; some say 0.001 mol/L")
+
+    def _shape(self, I: FloatArray, B: FloatArray) -> _Shape:
+        root = np.sqrt(I)
+        return _Shape(root, _half_slope(root))
+
+
+@dataclass(frozen=True)
+class GuntelbergForm(ActivityForm):
+    """√I/(1 + √I) (Güntelberg, Z. phys. Chem. 123 (1926) 199)."""
+
+    name: ClassVar[str] = "guntelberg"
+    words: ClassVar[str] = "Güntelberg"
+    domain: ClassVar[Domain] = Domain(0.1, "common practice, no source")
+
+    def _shape(self, I: FloatArray, B: FloatArray) -> _Shape:
+        root = np.sqrt(I)
+        return _Shape(root / (1 + root), _half_slope(root) / (1 + root) ** 2)
+
+
+@dataclass(frozen=True)
+class ExtendedForm(ActivityForm):
+    """√I/(1 + B å √I) with the ion-size parameter å (Debye and Hückel 1923; Kielland 1937).
+
+    Parameters
+    ----------
+    ion_size
+        å in m, 3e-10 to 9e-10 for most ions; an array broadcasts against I and T.
+    """
+
+    ion_size: float = 4.5e-10
+
+    name: ClassVar[str] = "extended"
+    words: ClassVar[str] = "extended Debye–Hückel"
+    domain: ClassVar[Domain] = Domain(0.1, "common practice, no source")
+
+    def __post_init__(self) -> None:
+        if not 0 <= self.ion_size < 1e-8:
+            raise InputError(
+                f"an ion size of {self.ion_size:g} m is not that of an ion",
+                "give it in m: 4.5 Å is 4.5e-10",
+            )
+
+    def _shape(self, I: FloatArray, B: FloatArray) -> _Shape:
+        return _screened(I, B, self.ion_size)
+
+
+@dataclass(frozen=True)
+class DaviesForm(ActivityForm):
+    """√I/(1 + √I) - C I (Davies, Ion Association, Butterworths 1962; C = 0.2 in J. Chem. Soc. 1938).
+
+    Parameters
+    ----------
+    coefficient
+        C in L/mol: 0.3 (1962), or the older 0.2.
+    """
+
+    coefficient: float = 0.3
+
+    name: ClassVar[str] = "davies"
+    words: ClassVar[str] = "Davies"
+    domain: ClassVar[Domain] = Domain(0.5, "common practice, no source; 0.1 mol/L by some authors")
+
+    def _shape(self, I: FloatArray, B: FloatArray) -> _Shape:
+        root = np.sqrt(I)
+        return _Shape(
+            root / (1 + root) - self.coefficient * I,
+            _half_slope(root) / (1 + root) ** 2 - self.coefficient,
+        )
+
+
+@dataclass(frozen=True)
+class SITForm(ActivityForm):
+    """√I/(1 + 1.5 √I) of the specific ion interaction theory (Scatchard; NEA TDB-2), molal."""
+
+    name: ClassVar[str] = "sit"
+    words: ClassVar[str] = "SIT"
+    basis: ClassVar[Basis] = "molal"
+    domain: ClassVar[Domain] = Domain(3.5, "NEA TDB-2 (2000): best below 3.5 mol/kg")
+
+    def _shape(self, I: FloatArray, B: FloatArray) -> _Shape:
+        root = np.sqrt(I)
+        below = 1 + 1.5 * root
+        return _Shape(root / below, _half_slope(root) / below**2)
+
+
+@dataclass(frozen=True)
+class PitzerForm(ActivityForm):
+    """(1/3)[√I/(1 + b √I) + (2/b) ln(1 + b √I)], b = 1.2 kg^½ mol^-½, molal.
+
+    The Debye-Hückel part of Pitzer's equation (Pitzer, J. Phys. Chem. 77 (1973) 268); the third
+    comes from A_φ = A ln10/3.
+    """
+
+    name: ClassVar[str] = "pitzer"
+    words: ClassVar[str] = "Pitzer form"
+    basis: ClassVar[Basis] = "molal"
+    domain: ClassVar[Domain] = Domain(6.0, "Pitzer and Mayorga 1973: to 6 mol/kg with its virials")
+    b: ClassVar[float] = 1.2
+
+    def _shape(self, I: FloatArray, B: FloatArray) -> _Shape:
+        root = np.sqrt(I)
+        below = 1 + self.b * root
+        f = (root / below + 2 / self.b * np.log1p(self.b * root)) / 3
+        return _Shape(f, _half_slope(root) * (1 / below**2 + 2 / below) / 3)
+
+
+@dataclass(frozen=True, eq=False)
+class OpenForm(ActivityForm):
+    """√I/(1 + B å √I) - c I: contains or follows all the others.
+
+    Parameters
+    ----------
+    ion_size, linear_coefficient
+        å in m and c in L/mol; arrays broadcast against I and T, so that one call serves a grid.
+    """
+
+    ion_size: FloatArray | float
+    linear_coefficient: FloatArray | float
+
+    name: ClassVar[str] = "open"
+    words: ClassVar[str] = "open law"
+    domain: ClassVar[Domain] = Domain(0.5, "the design of its priors, tested by simulation")
+
+    def _shape(self, I: FloatArray, B: FloatArray) -> _Shape:
+        shape = _screened(I, B, self.ion_size)
+        c = self.linear_coefficient
+        return _Shape(shape.f - c * I, shape.f_I - c, shape.f_B)
+
+
+def _screened(I: FloatArray, B: FloatArray, size: FloatArray | float) -> _Shape:
+    """√I/(1 + B å √I) with its slopes in I and B."""
+    root = np.sqrt(I)
+    below = 1 + B * size * root
+    return _Shape(root / below, _half_slope(root) / below**2, -size * (root / below) ** 2)
+
+
+def lg_activity_coefficient(
+    charge: float, I: ArrayLike, T: ArrayLike, form: ActivityForm, interaction: float = 0.0
+) -> FloatArray:
+    """Return log10 γ of an ion: -z² A f + b I.
+
+    Parameters
+    ----------
+    charge
+        z of the ion.
+    I, T
+        Ionic strengths in mol/L and temperatures in K.
+    form
+        The activity form; γ is on its basis.
+    interaction
+        b in L/mol (kg/mol for molal forms).
+
+    Raises
+    ------
+    InputError
+        If I is negative, or T outside 0-100 °C.
+    """
+    return np.asarray(
+        -(charge**2) * form.screening(I, T) + interaction * form.interaction_abscissa(I, T)
+    )
+
+
+def mean_activity_coefficient(
+    z_plus: float,
+    z_minus: float,
+    I: ArrayLike,
+    T: ArrayLike,
+    form: ActivityForm,
+    interaction: float = 0.0,
+) -> FloatArray:
+    """Return γ± of a salt: log10 γ± = -|z₊ z₋| A f + b I (Robinson and Stokes, chapter 9).
+
+    Parameters
+    ----------
+    z_plus, z_minus
+        Charges of cation and anion.
+    I, T, form, interaction
+        As for :func:`lg_activity_coefficient`; `interaction` is the salt's.
+
+    Raises
+    ------
+    InputError
+        If I is negative, or T outside 0-100 °C.
+    """
+    screening = abs(z_plus * z_minus) * form.screening(I, T)
+    return np.asarray(10 ** (interaction * form.interaction_abscissa(I, T) - screening))

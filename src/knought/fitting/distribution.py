@@ -1,0 +1,110 @@
+"""What is known of the linear parameters: a mixture of multivariate distributions.
+
+A named law gives one component; the open law one for every cell of its grid (and every size of the
+scatter, where that is estimated). Everything derived is an affine function of the parameters in
+each component, so it is again a mixture, in closed form.
+"""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+
+import numpy as np
+
+from knought.arrays import FloatArray, IndexArray, frozen
+from knought.laws.surface import Rows
+from knought.numerics.quantiles import Mixture
+
+__all__ = ["ParameterDistribution"]
+
+
+@dataclass(frozen=True, eq=False)
+class ParameterDistribution:
+    """A mixture of multivariate normal (or Student t) distributions of the parameters.
+
+    Parameters
+    ----------
+    names
+        Names of the p linear parameters.
+    weights : (c,) ndarray
+        Weights of the components, adding up to one.
+    means : (c, p) ndarray
+        Mean of each component.
+    covariances : (c, p, p) ndarray
+        Covariance of each component (scale matrix of a Student t one).
+    degrees_of_freedom
+        Infinite for normal components.
+    cell : (c,) ndarray of int
+        Which cell of a stacked salt law each component belongs to; zeros for a named law.
+    """
+
+    names: tuple[str, ...]
+    weights: FloatArray
+    means: FloatArray
+    covariances: FloatArray
+    degrees_of_freedom: float = math.inf
+    cell: IndexArray | None = None
+
+    def of(self, rows: Rows) -> Mixture:
+        """Return the distribution of affine functions of the parameters.
+
+        Parameters
+        ----------
+        rows
+            Offsets ``(n,)`` and rows ``(n, p)``, with a leading axis for the cells where they
+            differ between them.
+
+        Returns
+        -------
+        Mixture
+            Of n results.
+        """
+        offset, matrix = self._by_component(rows)
+        locations = offset + np.einsum("...np,...p->...n", matrix, self.means)
+        half = np.einsum("...np,...pq->...nq", matrix, self.covariances)
+        variances = np.einsum("...np,...np->...n", half, matrix)
+        return Mixture(
+            self.weights, locations, np.sqrt(np.maximum(variances, 0)), self.degrees_of_freedom
+        )
+
+    def joint(self, rows: Rows) -> tuple[FloatArray, FloatArray]:
+        """Return mean ``(n,)`` and covariance ``(n, n)`` of affine functions, jointly."""
+        offset, matrix = self._by_component(rows)
+        locations = offset + np.einsum("...np,...p->...n", matrix, self.means)
+        half = np.einsum("...np,...pq->...nq", matrix, self.covariances)
+        each = np.einsum("...np,...mp->...nm", half, matrix)
+        within = np.tensordot(self.weights, each, axes=1)
+        mean = self.weights @ locations
+        away = locations - mean
+        return mean, within + np.einsum("c,cn,cm->nm", self.weights, away, away)
+
+    @property
+    def mean(self) -> FloatArray:
+        """Mean of the parameters, shape ``(p,)``."""
+        return frozen(self.joint(self._identity())[0])
+
+    @property
+    def covariance(self) -> FloatArray:
+        """Covariance of the parameters, within components plus between them, ``(p, p)``."""
+        return frozen(self.joint(self._identity())[1])
+
+    def parameter(self, name: str) -> Mixture:
+        """Return the distribution of one parameter (zero-dimensional)."""
+        j = self.names.index(name)
+        return Mixture(
+            self.weights,
+            self.means[:, j],
+            np.sqrt(self.covariances[:, j, j]),
+            self.degrees_of_freedom,
+        )
+
+    def _identity(self) -> Rows:
+        p = len(self.names)
+        return Rows(np.zeros(p), np.eye(p))
+
+    def _by_component(self, rows: Rows) -> tuple[FloatArray, FloatArray]:
+        cell = np.zeros(len(self.weights), dtype=np.intp) if self.cell is None else self.cell
+        offset = rows.offset[cell] if rows.offset.ndim == 2 else rows.offset
+        matrix = rows.rows[cell] if rows.rows.ndim == 3 else rows.rows
+        return offset, matrix

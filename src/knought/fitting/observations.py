@@ -1,0 +1,154 @@
+"""What a fit sees of a rate table: ln k with its uncertainty, at T and I, used runs only.
+
+Random errors of a run's own temperature and ionic strength enter through the slope of the surface
+("effective variance", Clutton-Brock, Technometrics 9 (1967) 261; Orear, Am. J. Phys. 50 (1982)
+912): u_eff² = u(ln k)² + (∂ln k/∂T)² u(T)² + (∂ln k/∂I)² u(I)², iterated with the fit.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from knought.arrays import FloatArray, frozen
+from knought.errors import InputError
+
+if TYPE_CHECKING:
+    from fractions import Fraction
+
+    from knought.measurement.table import RateTable
+
+__all__ = ["Observations", "distinct_levels", "observe"]
+
+#: Temperatures closer than this (K) are one temperature; ionic strengths closer than this
+#: fraction of the larger are one ionic strength.
+_SAME_TEMPERATURE = 0.5
+_SAME_IONIC_STRENGTH = 0.02
+
+
+@dataclass(frozen=True, eq=False)
+class Observations:
+    """The runs that a fit uses.
+
+    Attributes
+    ----------
+    ln_k : (n,) ndarray
+        Natural logarithm of k in (L/mol)^(order-1) s^-1.
+    u : (n,) ndarray
+        Standard uncertainty of ln k: absolute where `u_given`, else relative weights only.
+    T : (n,) ndarray
+        K.
+    I : (n,) ndarray or None
+        mol/L; None where the table has no ionic strengths.
+    u_T, u_I : (n,) ndarray or None
+        Standard uncertainties of each run's own T and I.
+    u_given
+        Whether the table states uncertainties of k.
+    order
+        Overall order of the reaction.
+    """
+
+    ln_k: FloatArray
+    u: FloatArray
+    T: FloatArray
+    I: FloatArray | None
+    u_T: FloatArray | None
+    u_I: FloatArray | None
+    u_given: bool
+    order: Fraction
+
+    @property
+    def runs(self) -> int:
+        """Number of runs."""
+        return len(self.ln_k)
+
+    @property
+    def ionic_strength(self) -> FloatArray:
+        """I of each run; zeros where the table has none (no law then reads it)."""
+        return np.zeros(self.runs) if self.I is None else self.I
+
+    @property
+    def temperature_levels(self) -> FloatArray:
+        """The distinct temperatures, in K."""
+        return distinct_levels(self.T, absolute=_SAME_TEMPERATURE)
+
+    @property
+    def ionic_strength_levels(self) -> FloatArray:
+        """The distinct ionic strengths, in mol/L; empty where the table has none."""
+        if self.I is None:
+            return np.zeros(0)
+        return distinct_levels(self.I, relative=_SAME_IONIC_STRENGTH)
+
+    def effective(self, slope_T: FloatArray, slope_I: FloatArray | None) -> FloatArray:
+        """Return u of ln k with the errors of T and I carried along the given slopes.
+
+        Parameters
+        ----------
+        slope_T : (n,) ndarray
+            ∂ln k/∂T in K^-1.
+        slope_I : (n,) ndarray or None
+            ∂ln k/∂I in L/mol.
+        """
+        variance = self.u**2
+        if self.u_T is not None:
+            variance = variance + (slope_T * self.u_T) ** 2
+        if self.u_I is not None and slope_I is not None:
+            # At I = 0 the slope of √I is infinite; an exact zero carries no error of I.
+            at_zero = self.ionic_strength == 0
+            variance = variance + np.where(at_zero, 0.0, (slope_I * self.u_I)) ** 2
+        return np.asarray(np.sqrt(variance))
+
+    @property
+    def has_abscissa_errors(self) -> bool:
+        """Whether u(T) or u(I) are given and count: beside a stated u(k) only."""
+        return self.u_given and (self.u_T is not None or self.u_I is not None)
+
+
+def observe(rates: RateTable) -> Observations:
+    """Return what a fit sees of `rates`.
+
+    Where the table states no uncertainty of k, runs that average more determinations weigh more.
+
+    Raises
+    ------
+    InputError
+        If no run is used.
+    """
+    used = rates.used_only()
+    if len(used) == 0:
+        raise InputError("no run is used", "set the column use to yes for the runs to fit")
+    if used.u_k is not None:
+        u = used.u_k / used.k
+    elif used.determinations is not None:
+        u = 1.0 / np.sqrt(used.determinations)
+    else:
+        u = np.ones(len(used))
+    return Observations(
+        ln_k=frozen(np.log(used.k)),
+        u=frozen(u),
+        T=used.T,
+        I=used.I,
+        u_T=used.u_T,
+        u_I=used.u_I,
+        u_given=used.u_k is not None,
+        order=used.order,
+    )
+
+
+def distinct_levels(
+    values: FloatArray, *, absolute: float = 0.0, relative: float = 0.0
+) -> FloatArray:
+    """Return the distinct levels among `values`, each the mean of the values that share it.
+
+    Parameters
+    ----------
+    values : (n,) ndarray
+        Values, at least zero.
+    absolute, relative
+        Neighbours closer than this (or than this fraction of the larger) share a level.
+    """
+    ordered = np.sort(values)
+    gaps = np.diff(ordered) > absolute + relative * ordered[1:]
+    return np.array([group.mean() for group in np.split(ordered, np.flatnonzero(gaps) + 1)])

@@ -1,0 +1,133 @@
+"""Which ± is the headline: stated uncertainties, or the scatter about the fit.
+
+Stated uncertainties of k are taken as absolute. Where none are stated, the scatter about the fit
+gives them, with Student's t. Both are always computed; where χ² says that the stated ones are too
+small to explain the scatter, the larger (Birge-scaled: Birge, Phys. Rev. 40 (1932) 207) is the
+headline and the result says so.
+"""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+from typing import Literal
+
+from knought.errors import InputError
+from knought.numerics.quantiles import chi_square_survival
+
+__all__ = ["SIGNIFICANCE", "Scatter", "ScatterChoice", "judge_scatter"]
+
+#: Below this probability of χ², stated uncertainties do not explain the scatter.
+SIGNIFICANCE = 0.05
+
+ScatterChoice = Literal["given", "scatter"]
+
+
+@dataclass(frozen=True)
+class Scatter:
+    """How the runs scatter about a fit, and what its ± is made of.
+
+    Attributes
+    ----------
+    chi_square
+        With the uncertainties as stated; with unit weights, where none are.
+    degrees_of_freedom
+        Runs less parameters.
+    stated
+        Whether uncertainties of k are stated.
+    kind
+        ``"given"`` (stated and taken as absolute), ``"scatter"`` (from the scatter) or
+        ``"enlarged"`` (stated, but too small to explain the scatter).
+    """
+
+    chi_square: float
+    degrees_of_freedom: int
+    stated: bool
+    kind: Literal["given", "scatter", "enlarged"]
+
+    @property
+    def reduced_chi_square(self) -> float:
+        """χ²/ν; nan where there are no degrees of freedom."""
+        nu = self.degrees_of_freedom
+        return self.chi_square / nu if nu > 0 else math.nan
+
+    @property
+    def birge_ratio(self) -> float:
+        """√(χ²/ν): scatter over stated uncertainty; nan where there are no degrees of freedom."""
+        return math.sqrt(self.reduced_chi_square)
+
+    @property
+    def probability(self) -> float:
+        """Probability of a χ² at least this large if stated uncertainties hold; nan if none."""
+        if not self.stated or self.degrees_of_freedom <= 0:
+            return math.nan
+        return chi_square_survival(self.chi_square, self.degrees_of_freedom)
+
+    @property
+    def from_scatter(self) -> bool:
+        """Whether the headline ± comes from the scatter."""
+        return self.kind != "given"
+
+    @property
+    def factor(self) -> float:
+        """What the standard uncertainties from u as given are multiplied by for the headline."""
+        return self.birge_ratio if self.from_scatter else 1.0
+
+    @property
+    def headline_degrees_of_freedom(self) -> float:
+        """Degrees of freedom of the headline ±: infinite where u is stated and holds."""
+        return float(self.degrees_of_freedom) if self.from_scatter else math.inf
+
+    @property
+    def words(self) -> str:
+        """What the ± is made of, as a phrase."""
+        if self.kind == "given":
+            return "from the stated uncertainties of k"
+        nu = self.degrees_of_freedom
+        if self.kind == "scatter":
+            return f"from the scatter of the runs about the fit, {nu} degrees of freedom"
+        return (
+            f"from the stated uncertainties of k enlarged by {self.birge_ratio:.2f} to explain the "
+            f"scatter, {nu} degrees of freedom"
+        )
+
+
+def judge_scatter(
+    chi_square: float,
+    degrees_of_freedom: int,
+    *,
+    stated: bool,
+    choice: ScatterChoice | None = None,
+) -> Scatter:
+    """Decide what the headline ± is made of.
+
+    Parameters
+    ----------
+    chi_square, degrees_of_freedom
+        Of the fit, with the uncertainties as given.
+    stated
+        Whether uncertainties of k are stated.
+    choice
+        ``"given"`` or ``"scatter"`` overrides the rule.
+
+    Raises
+    ------
+    InputError
+        If the scatter is needed and there are no degrees of freedom to take it from, or stated
+        uncertainties are asked for and there are none.
+    """
+    nu = degrees_of_freedom
+    if choice == "given" and not stated:
+        raise InputError(
+            "no uncertainty of k is given", "add a column u(k), or let the scatter speak"
+        )
+    if stated and choice != "scatter":
+        too_small = nu > 0 and chi_square_survival(chi_square, nu) < SIGNIFICANCE
+        enlarged = too_small and choice is None
+        return Scatter(chi_square, nu, stated, "enlarged" if enlarged else "given")
+    if nu < 1:
+        raise InputError(
+            "there are as many parameters as runs, so that the scatter says nothing about u(k)",
+            "measure more runs, or give the uncertainty of k in a column u(k) or u_r(k)/%",
+        )
+    return Scatter(chi_square, nu, stated, "scatter")

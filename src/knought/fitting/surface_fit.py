@@ -1,0 +1,293 @@
+"""One temperature law and one named salt law, fitted to ln k by generalised least squares."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, replace
+from fractions import Fraction
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from knought.arrays import FloatArray, frozen
+from knought.errors import InputError
+from knought.fitting import checks
+from knought.fitting.distribution import ParameterDistribution
+from knought.fitting.found import Found
+from knought.fitting.observations import Observations, observe
+from knought.fitting.scatter import judge_scatter
+from knought.fitting.weights import settle_weights
+from knought.laws.salt import salt_law as named_salt_law
+from knought.laws.surface import Surface
+from knought.laws.temperature import temperature_law as named_temperature_law
+from knought.numerics.least_squares import LinearFit, ManyFits, RankDeficiency, solve, solve_many
+
+if TYPE_CHECKING:
+    from numpy.typing import ArrayLike
+
+    from knought.errors import Caveat
+    from knought.fitting.scatter import ScatterChoice
+    from knought.laws.salt import SaltLaw
+    from knought.measurement.table import RateTable
+
+__all__ = ["DEFAULT_TEMPERATURE_LAW", "ManySurfaceFits", "SurfaceFit", "fit_many", "fit_surface"]
+
+DEFAULT_TEMPERATURE_LAW = "eyring"
+DEFAULT_REFERENCE_TEMPERATURE = 298.15
+
+
+@dataclass(frozen=True, eq=False)
+class SurfaceFit(Found):
+    """One law pair fitted; everything of :class:`Found`, and the least-squares solution.
+
+    Attributes
+    ----------
+    solution
+        The least-squares solution, with the uncertainties as given.
+    """
+
+    solution: LinearFit
+
+    @property
+    def standard_errors_given(self) -> FloatArray:
+        """Standard uncertainties of the linear parameters with u(k) as given, shape ``(p,)``."""
+        return np.sqrt(np.diag(self.solution.covariance))
+
+    @property
+    def standard_errors_scatter(self) -> FloatArray:
+        """The same from the scatter about the fit; nan without degrees of freedom, ``(p,)``."""
+        return self.standard_errors_given * self.scatter.birge_ratio
+
+    @property
+    def leverage(self) -> FloatArray:
+        """Leverage of each run, shape ``(n,)``."""
+        return self.solution.leverage
+
+    @property
+    def aicc(self) -> float:
+        """Akaike's information criterion with the small-sample correction; nan where undefined.
+
+        χ² + 2K + 2K(K+1)/(n-K-1) where u is stated; n ln(χ²/n) in place of χ², and one parameter
+        more, where it comes from the scatter (Burnham and Anderson 2002, sections 2.2 and 2.4).
+        """
+        n, K = self.observations.runs, len(self.distribution.names)
+        if not self.scatter.stated:
+            K += 1
+        if n - K - 1 <= 0:
+            return float("nan")
+        misfit = self.scatter.chi_square
+        if not self.scatter.stated:
+            if misfit <= 0:
+                return float("nan")
+            misfit = n * float(np.log(misfit / n))
+        return misfit + 2 * K + 2 * K * (K + 1) / (n - K - 1)
+
+
+def fit_surface(
+    rates: RateTable | Observations,
+    *,
+    temperature_law: str = DEFAULT_TEMPERATURE_LAW,
+    salt_law: str | SaltLaw = "none",
+    reference_temperature: float = DEFAULT_REFERENCE_TEMPERATURE,
+    standard_concentration: float = 1.0,
+    charge_product: float | None = None,
+    ion_size: float | None = None,
+    scatter: ScatterChoice | None = None,
+) -> SurfaceFit:
+    """Fit one temperature law and one named salt law to ln k.
+
+    Parameters
+    ----------
+    rates
+        The table; or what :func:`observe` made of it.
+    temperature_law
+        ``"arrhenius"``, ``"modified-arrhenius"``, ``"eyring"``, ``"eyring-cp"`` or
+        ``"isothermal"``.
+    salt_law
+        ``"none"``, ``"linear"``, ``"limiting"``, ``"guntelberg"``, ``"extended"``, ``"davies"``,
+        ``"sit"``, ``"pitzer"``, or a law of your own.
+    reference_temperature
+        T_ref in K, at which the parameters hold.
+    standard_concentration
+        c° in mol/L, to which ΔG‡ and ΔS‡ refer.
+    charge_product
+        z_A z_B (Δz²/2 in general) where it is known; it is then not fitted.
+    ion_size
+        Ion-size parameter of the extended law in m.
+    scatter
+        ``"given"`` or ``"scatter"``: what the headline ± is made of, against the rule of
+        :func:`judge_scatter`.
+
+    Returns
+    -------
+    SurfaceFit
+
+    Raises
+    ------
+    InputError
+        If a law is unknown, the runs cannot determine its parameters, or a property of water is
+        needed outside 0-100 °C.
+    """
+    seen = rates if isinstance(rates, Observations) else observe(rates)
+    law = named_salt_law(salt_law, ion_size=ion_size) if isinstance(salt_law, str) else salt_law
+    if charge_product is not None:
+        law = law.with_charges(charge_product)
+    surface = Surface(
+        named_temperature_law(temperature_law),
+        law,
+        reference_temperature,
+        seen.order,
+        standard_concentration,
+    )
+    checks.require_levels(seen, surface, charges_given=charge_product is not None)
+    solution, u, unsettled = _solve_surface(seen, surface)
+    caveats = (
+        *checks.uncertainty_caveats(seen),
+        *checks.domain_caveats(seen, law),
+        *checks.design_caveats(replace(seen, u=frozen(u)), surface),
+        *unsettled,
+    )
+    judged = judge_scatter(
+        solution.chi_square, solution.degrees_of_freedom, stated=seen.u_given, choice=scatter
+    )
+    return SurfaceFit(
+        observations=seen,
+        surface=surface,
+        distribution=ParameterDistribution(
+            names=surface.parameters,
+            weights=np.ones(1),
+            means=solution.parameters[None],
+            covariances=solution.covariance[None] * judged.factor**2,
+            degrees_of_freedom=judged.headline_degrees_of_freedom,
+        ),
+        scatter=judged,
+        caveats=caveats,
+        solution=solution,
+    )
+
+
+def _solve_surface(
+    seen: Observations, surface: Surface
+) -> tuple[LinearFit, FloatArray, tuple[Caveat, ...]]:
+    rows = surface.ln_k(seen.T, seen.ionic_strength)
+    target = seen.ln_k - rows.offset
+    try:
+        return settle_weights(seen, lambda u: solve(rows.rows, target, u), surface)
+    except RankDeficiency as found:
+        raise checks.refuse_undetermined(found, surface) from found
+
+
+@dataclass(frozen=True, eq=False)
+class ManySurfaceFits:
+    """One law pair fitted to m data sets of one shape.
+
+    Attributes
+    ----------
+    names
+        Names of the p linear parameters.
+    parameters : (m, p) ndarray
+    covariance : (m, p, p) ndarray
+        From u(k) as given.
+    chi_square : (m,) ndarray
+    degrees_of_freedom
+        n - p, the same for all.
+    surface
+        The surface they share.
+    """
+
+    names: tuple[str, ...]
+    parameters: FloatArray
+    covariance: FloatArray
+    chi_square: FloatArray
+    degrees_of_freedom: int
+    surface: Surface
+
+    def __len__(self) -> int:
+        return len(self.chi_square)
+
+    def standard_uncertainty(self, name: str) -> FloatArray:
+        """Return u of one parameter in every data set, shape ``(m,)``, from u(k) as given."""
+        j = self.names.index(name)
+        return np.sqrt(self.covariance[:, j, j])
+
+    def value(self, name: str) -> FloatArray:
+        """Return one parameter in every data set, shape ``(m,)``."""
+        return self.parameters[:, self.names.index(name)]
+
+
+def fit_many(
+    k: ArrayLike,
+    u_k: ArrayLike,
+    *,
+    T: ArrayLike,
+    I: ArrayLike | None = None,
+    order: Fraction | int = 1,
+    temperature_law: str = DEFAULT_TEMPERATURE_LAW,
+    salt_law: str = "none",
+    reference_temperature: float = DEFAULT_REFERENCE_TEMPERATURE,
+    ion_size: float | None = None,
+) -> ManySurfaceFits:
+    """Fit one law pair to many data sets measured at the same conditions.
+
+    Parameters
+    ----------
+    k : (m, n) array_like
+        Rate constants in (L/mol)^(order-1) s^-1: m data sets of n runs.
+    u_k : (m, n) or (n,) array_like
+        Their standard uncertainties.
+    T, I : (n,) array_like
+        Conditions of the runs in K and mol/L, the same for every data set.
+    order
+        Overall order of the reaction.
+    temperature_law, salt_law, reference_temperature, ion_size
+        As for :func:`fit_surface`.
+
+    Returns
+    -------
+    ManySurfaceFits
+        Each data set's solution equals that of :func:`fit_surface` on it alone.
+
+    Raises
+    ------
+    InputError
+        If shapes do not match, a value is not positive, or the runs cannot determine the law.
+    """
+    k, u_k, T = (np.asarray(values, dtype=float) for values in (k, u_k, T))
+    if k.ndim != 2 or T.shape != k.shape[1:]:
+        raise InputError(
+            f"k has shape {k.shape} and T {T.shape}",
+            "give k as (data sets, runs) and T as (runs,)",
+        )
+    u_k = np.broadcast_to(u_k, k.shape)
+    if not (np.all(k > 0) and np.all(u_k > 0) and np.all(np.isfinite(k + u_k))):
+        raise InputError("k or u(k) holds a value that is not positive", "give positive numbers")
+    strengths = None if I is None else frozen(np.broadcast_to(np.asarray(I, float), T.shape))
+    surface = Surface(
+        named_temperature_law(temperature_law),
+        named_salt_law(salt_law, ion_size=ion_size),
+        reference_temperature,
+        Fraction(order),
+    )
+    first = Observations(
+        frozen(np.log(k[0])),
+        frozen(u_k[0] / k[0]),
+        frozen(T),
+        strengths,
+        None,
+        None,
+        u_given=True,
+        order=Fraction(order),
+    )
+    checks.require_levels(first, surface, charges_given=False)
+    rows = surface.ln_k(T, first.ionic_strength)
+    try:
+        many: ManyFits = solve_many(rows.rows, np.log(k) - rows.offset, u_k / k)
+    except RankDeficiency as found:
+        raise checks.refuse_undetermined(found, surface) from found
+    return ManySurfaceFits(
+        surface.parameters,
+        many.parameters,
+        many.covariance,
+        many.chi_square,
+        many.degrees_of_freedom,
+        surface,
+    )

@@ -1,0 +1,1 @@
+"""Shapes that ln k can have: temperature laws, salt laws, and the surface they make together."""

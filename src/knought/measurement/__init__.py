@@ -1,0 +1,1 @@
+"""What was measured: tables of rate constants and how they are read."""

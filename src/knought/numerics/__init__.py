@@ -1,0 +1,1 @@
+"""Least squares, distributions and seeds: mathematics that knows no chemistry."""

@@ -1,0 +1,1 @@
+"""What is shown and kept: text, tables, figures, page and record."""

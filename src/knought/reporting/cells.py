@@ -1,0 +1,224 @@
+"""Tables as data: what each cell holds and how it is read; layouts arrange them elsewhere.
+
+A cell keeps the full number (``raw``) beside its rounded digits, so that the terminal, the page and
+files for other programs all come from the same table.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+from knought.rounding import Rounded, rounded
+
+if TYPE_CHECKING:
+    from collections.abc import Sequence
+
+    from knought.chemistry.quantities import Quantity, Symbol
+    from knought.fitting.estimate import Estimate
+    from knought.rounding import Layout
+
+__all__ = [
+    "Cell",
+    "Column",
+    "Table",
+    "estimate_cells",
+    "interval_cell",
+    "join_words",
+    "number",
+    "number_column",
+    "pair_cell",
+    "plain_lines",
+    "quantity_column",
+    "symbol_cell",
+    "text_column",
+    "words",
+]
+
+
+@dataclass(frozen=True)
+class Cell:
+    """One cell.
+
+    Attributes
+    ----------
+    raw
+        The full number in the column's unit, or the text.
+    texts
+        What is read, by layout; layouts not named fall back to ``"text"``.
+    """
+
+    raw: float | str | None
+    texts: tuple[tuple[Layout, str], ...]
+
+    def written(self, layout: Layout = "text") -> str:
+        """Return what is read in `layout`."""
+        by_layout = dict(self.texts)
+        return by_layout.get(layout, by_layout["text"])
+
+
+@dataclass(frozen=True)
+class Column:
+    """One column: its heading by layout, and whether its cells are numbers."""
+
+    headings: tuple[tuple[Layout, str], ...]
+    numeric: bool = True
+
+    def heading(self, layout: Layout = "text") -> str:
+        """Return the heading in `layout`."""
+        by_layout = dict(self.headings)
+        return by_layout.get(layout, by_layout["text"])
+
+
+@dataclass(frozen=True)
+class Table:
+    """A table with what must be said about it.
+
+    Attributes
+    ----------
+    name
+        Short name, for files and anchors.
+    title
+        One line above it.
+    columns
+        Its columns.
+    rows
+        Its rows; every row as long as `columns`.
+    notes
+        Sentences beneath it.
+    """
+
+    name: str
+    title: str
+    columns: tuple[Column, ...]
+    rows: tuple[tuple[Cell, ...], ...]
+    notes: tuple[str, ...] = ()
+
+
+_LAYOUTS: tuple[Layout, ...] = ("text", "ascii", "html", "latex")
+
+
+def text_column(title: str) -> Column:
+    """Return a column of words."""
+    return Column((("text", title),), numeric=False)
+
+
+def number_column(title: str) -> Column:
+    """Return a column of numbers headed by words."""
+    return Column((("text", title),))
+
+
+def quantity_column(what: Quantity) -> Column:
+    """Return a column of numbers headed by a quantity and its unit."""
+    return Column(tuple((layout, what.heading(layout)) for layout in _LAYOUTS))
+
+
+def words(text: str) -> Cell:
+    """Return a cell of words."""
+    return Cell(text, (("text", text),))
+
+
+def symbol_cell(symbol: Symbol, raw: str) -> Cell:
+    """Return a cell that shows a quantity's sign."""
+    return Cell(raw, tuple((layout, symbol.in_layout(layout)) for layout in _LAYOUTS))
+
+
+def number(value: float, *, digits: int | None = None, decimals: int | None = None) -> Cell:
+    """Return a cell with a number that has no uncertainty.
+
+    Parameters
+    ----------
+    value
+        The number.
+    digits
+        Significant digits.
+    decimals
+        Decimal places, instead of significant digits.
+    """
+    if decimals is not None:
+        return _cell(value, Rounded(f"{value:.{decimals}f}", "", 0), pair=False)
+    return _cell(value, rounded(value, digits=digits), pair=False)
+
+
+def estimate_cells(estimate: Estimate) -> tuple[Cell, Cell]:
+    """Return value and standard uncertainty as two cells, in the shown unit."""
+    what = estimate.quantity
+    value, u = float(estimate.value), float(estimate.standard_uncertainty)
+    digits = what.rounded(value, None if estimate.given else u)
+    value_cell = _cell(what.shown(value), digits, pair=False)
+    if estimate.given:
+        return value_cell, words("given")
+    spread = Rounded(digits.uncertainty, "", digits.exponent)
+    return value_cell, _cell(what.shown(u), spread, pair=False)
+
+
+def pair_cell(estimate: Estimate | None) -> Cell:
+    """Return value ± standard uncertainty in one cell, in the shown unit; a dash for none."""
+    if estimate is None:
+        return words("–")
+    value, u = float(estimate.value), float(estimate.standard_uncertainty)
+    digits = estimate.quantity.rounded(value, None if estimate.given else u)
+    return _cell(estimate.quantity.shown(value), digits, pair=True)
+
+
+def interval_cell(estimate: Estimate, coverage: float = 0.95) -> Cell:
+    """Return the interval as one cell, rounded like the value."""
+    if estimate.given:
+        return words("given")
+    what = estimate.quantity
+    pattern = what.rounded(float(estimate.value), float(estimate.standard_uncertainty))
+    low, high = (what.shown(float(end)) for end in estimate.interval(coverage))
+    ends = [_like(end, pattern) for end in (low, high)]
+    texts = tuple(
+        (layout, f"{ends[0].number(layout)} to {ends[1].number(layout)}") for layout in _LAYOUTS
+    )
+    return Cell(f"{low!r} {high!r}", texts)
+
+
+def _like(value: float, pattern: Rounded) -> Rounded:
+    """Round `value` to the decimal place and power of ten of `pattern`."""
+    decimals = len(pattern.value.partition(".")[2])
+    return Rounded(f"{value / 10.0**pattern.exponent:.{decimals}f}", "", pattern.exponent)
+
+
+def _cell(raw: float, digits: Rounded, *, pair: bool) -> Cell:
+    written = digits.pair if pair else digits.number
+    return Cell(raw, tuple((layout, written(layout)) for layout in _LAYOUTS))
+
+
+def plain_lines(table: Table, layout: Layout = "text", width: int = 100) -> list[str]:
+    """Arrange a table as lines of text with aligned columns.
+
+    Parameters
+    ----------
+    table
+        The table.
+    layout
+        ``"text"`` or ``"ascii"``.
+    width
+        Lines of notes are folded to this many characters.
+    """
+    import textwrap
+
+    grid = [[column.heading(layout) for column in table.columns]]
+    grid += [[cell.written(layout) for cell in row] for row in table.rows]
+    widths = [max(len(row[j]) for row in grid) for j in range(len(table.columns))]
+    lines = []
+    for i, row in enumerate(grid):
+        pieces = [
+            text.rjust(size) if column.numeric else text.ljust(size)
+            for text, size, column in zip(row, widths, table.columns, strict=True)
+        ]
+        lines.append("  ".join(pieces).rstrip())
+        if i == 0:
+            lines.append("  ".join(("-" if layout == "ascii" else "─") * size for size in widths))
+    for note in table.notes:
+        lines += textwrap.wrap(note, width)
+    return lines
+
+
+def join_words(parts: Sequence[str]) -> str:
+    """Return ``"a, b and c"``."""
+    if len(parts) < 2:
+        return "".join(parts)
+    return f"{', '.join(parts[:-1])} and {parts[-1]}"

@@ -1,0 +1,253 @@
+"""The record of a study, ``results.json``: every number at full precision, described by a schema.
+
+Values stand in the customary units of the registry (energies in kJ/mol); k in (L/mol)^(n-1) s^-1.
+The covariance is over the linear parameters, in the units that it names.
+"""
+
+from __future__ import annotations
+
+import json
+import math
+from typing import TYPE_CHECKING, Any
+
+import numpy as np
+
+from knought.chemistry.quantities import Quantity, quantity
+
+if TYPE_CHECKING:
+    from collections.abc import Sequence
+
+    from knought.errors import Caveat
+    from knought.fitting.assess import Assessment
+    from knought.fitting.estimate import Estimate
+    from knought.fitting.found import Found
+    from knought.fitting.surface_fit import SurfaceFit
+    from knought.laws.open_law import Priors
+
+__all__ = ["COVERAGE", "estimate_record", "record", "record_text"]
+
+#: Probability that every interval of the record holds.
+COVERAGE = 0.95
+
+
+def record_text(assessment: Assessment, **about: Any) -> str:
+    """Return the record as JSON text that ends with a line break; see :func:`record`."""
+    return json.dumps(record(assessment, **about), ensure_ascii=False, indent=1) + "\n"
+
+
+def record(
+    assessment: Assessment, *, inputs: Sequence[tuple[str, str]] = (), seed: int | None = None
+) -> dict[str, Any]:
+    """Return the record of an assessment as data that JSON can hold.
+
+    Parameters
+    ----------
+    assessment
+        What was found.
+    inputs
+        Name and SHA-256 of every file read; those of the rate table if not given.
+    seed
+        Seed of everything random.
+    """
+    from knought import __version__
+
+    found = assessment.headline
+    source = assessment.rates.source
+    if not inputs and source is not None:
+        inputs = ((source.name, source.sha256),)
+    choices = assessment.choices
+    return {
+        "knought": __version__,
+        "inputs": [{"path": path, "sha256": digest} for path, digest in inputs],
+        "seed": seed,
+        "reference_temperature": {"value": found.reference_temperature, "unit": "K"},
+        "standard_concentration": {"value": choices.standard_concentration, "unit": "mol L^-1"},
+        "order": float(assessment.rates.order),
+        "reactants": choices.reactants,
+        "parameters": parameters_record(found),
+        "uncertainty": uncertainty_record(found),
+        "covariance": _covariance_record(found),
+        "temperature_law": found.temperature_law,
+        "salt_law": found.salt_law,
+        "priors": _priors_record(choices.priors) if found.salt_law == "open" else None,
+        "charge_product_weights": _weights_record(assessment.data_alone or found),
+        "data_alone": (
+            None
+            if assessment.data_alone is None
+            else {
+                "parameters": parameters_record(assessment.data_alone),
+                "uncertainty": uncertainty_record(assessment.data_alone),
+            }
+        ),
+        "at": _working_records(found),
+        "laws": [_law_record(law) for law in (*assessment.laws, *assessment.temperature_laws)],
+        "refused": [
+            {"temperature": each.temperature_law, "salt": each.salt_law, "reason": each.reason}
+            for each in assessment.refused
+        ],
+        "runs": _runs_record(assessment),
+        "understood": [str(line) for line in assessment.rates.account],
+        "warnings": [_caveat_record(caveat) for caveat in assessment.caveats],
+    }
+
+
+def estimate_record(estimate: Estimate) -> dict[str, Any]:
+    """Return value, standard uncertainty, unit and interval of one estimate."""
+    what = estimate.quantity
+    low, high = (what.shown(float(end)) for end in estimate.interval(COVERAGE))
+    made: dict[str, Any] = {
+        "value": what.shown(float(estimate.value)),
+        "standard_uncertainty": what.shown(float(estimate.standard_uncertainty)),
+        "unit": what.shown_unit,
+        "interval": [low, high],
+        "coverage": COVERAGE,
+        "degrees_of_freedom": _finite(estimate.degrees_of_freedom),
+    }
+    if estimate.given:
+        made["given"] = True
+    return made
+
+
+def parameters_record(found: Found) -> dict[str, Any]:
+    """Return every parameter of a fit by its name."""
+    return {name: estimate_record(each) for name, each in found.parameters.items()}
+
+
+def uncertainty_record(found: Found) -> dict[str, Any]:
+    """Return what the ± of a fit means, with both standard errors where the law is named."""
+    scatter = found.scatter
+    made: dict[str, Any] = {
+        "means": f"standard uncertainty, {found.includes}",
+        "kind": scatter.kind,
+        "chi_square": scatter.chi_square,
+        "degrees_of_freedom": scatter.degrees_of_freedom,
+        "probability": _finite(scatter.probability),
+        "birge_ratio": _finite(scatter.birge_ratio),
+    }
+    return made
+
+
+def _covariance_record(found: Found) -> dict[str, Any]:
+    names, matrix = found.covariance()
+    shown = [_basis_quantity(found, name) for name in names]
+    factors = np.array([each.shown(1.0) for each in shown])
+    return {
+        "names": list(names),
+        "units": [each.shown_unit for each in shown],
+        "matrix": (matrix * np.outer(factors, factors)).tolist(),
+    }
+
+
+def _basis_quantity(found: Found, name: str) -> Quantity:
+    if name in found.parameters:
+        return found.parameters[name].quantity
+    return quantity(name)
+
+
+def _law_record(found: Found) -> dict[str, Any]:
+    from knought.fitting.surface_fit import SurfaceFit
+
+    made: dict[str, Any] = {
+        "temperature": found.temperature_law,
+        "salt": found.salt_law,
+        "chi_square": found.scatter.chi_square,
+        "degrees_of_freedom": found.scatter.degrees_of_freedom,
+        "aicc": None,
+        "parameters": parameters_record(found),
+        "uncertainty": uncertainty_record(found),
+        "warnings": [_caveat_record(caveat) for caveat in found.caveats],
+    }
+    if isinstance(found, SurfaceFit):
+        made["aicc"] = _finite(found.aicc)
+        made["standard_errors"] = _both_standard_errors(found)
+    return made
+
+
+def _both_standard_errors(found: SurfaceFit) -> dict[str, Any]:
+    """Standard errors of the linear parameters from u as given and from the scatter."""
+    names = found.distribution.names
+    made = {}
+    for label, errors in (
+        ("from_stated_u", found.standard_errors_given),
+        ("from_scatter", found.standard_errors_scatter),
+    ):
+        stated = label == "from_scatter" or found.scatter.stated
+        made[label] = {
+            name: _finite(_basis_quantity(found, name).shown(float(error))) if stated else None
+            for name, error in zip(names, errors, strict=True)
+        }
+    return made
+
+
+def _priors_record(priors: Priors) -> dict[str, Any]:
+    size = quantity("ion_size")
+    return {
+        "ion_size": {
+            "distribution": "uniform",
+            "low": size.shown(priors.ion_size[0]),
+            "high": size.shown(priors.ion_size[1]),
+            "unit": size.shown_unit,
+        },
+        **{
+            name: {
+                "distribution": "normal",
+                "mean": getattr(priors, name)[0],
+                "standard_uncertainty": getattr(priors, name)[1],
+                "unit": "L mol^-1",
+            }
+            for name in ("linear_coefficient", "interaction_coefficient")
+        },
+    }
+
+
+def _weights_record(found: Found) -> dict[str, float]:
+    weights = getattr(found, "charge_product_weights", {})
+    return {str(z): weight for z, weight in weights.items()}
+
+
+def _working_records(found: Found) -> list[dict[str, Any]]:
+    """Return k and activation parameters at T_ref and each working ionic strength."""
+    if not found.describes_salt:
+        return []
+    made = []
+    for I in found.observations.ionic_strength_levels:
+        estimates = found.at(I=float(I))
+        made.append(
+            {
+                "temperature": {"value": found.reference_temperature, "unit": "K"},
+                "ionic_strength": {"value": float(I), "unit": "mol L^-1"},
+                "parameters": {name: estimate_record(each) for name, each in estimates.items()},
+            }
+        )
+    return made
+
+
+def _runs_record(assessment: Assessment) -> list[dict[str, Any]]:
+    rates, found = assessment.rates, assessment.headline
+    residuals, standardised = iter(found.residuals), iter(found.standardised_residuals)
+    made = []
+    for i, run in enumerate(rates.run):
+        row: dict[str, Any] = {
+            "run": run,
+            "temperature": float(rates.T[i]),
+            "ionic_strength": None if rates.I is None else float(rates.I[i]),
+            "rate_constant": float(rates.k[i]),
+            "standard_uncertainty": None if rates.u_k is None else float(rates.u_k[i]),
+            "used": bool(rates.used[i]),
+        }
+        if rates.used[i]:
+            row["ln_residual"] = float(next(residuals))
+            row["standardised_residual"] = _finite(float(next(standardised)))
+        else:
+            row["reason"] = rates.reason[i]
+        made.append(row)
+    return made
+
+
+def _caveat_record(caveat: Caveat) -> dict[str, str]:
+    return {"code": caveat.code, "message": caveat.message}
+
+
+def _finite(value: float) -> float | None:
+    """JSON has no infinity and no nan: both become null."""
+    return value if math.isfinite(value) else None

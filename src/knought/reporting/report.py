@@ -1,0 +1,207 @@
+"""One report: tables, figures and sentences of an assessment, from which page and files are made."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from functools import cached_property
+from typing import TYPE_CHECKING, Any
+
+from knought.chemistry.quantities import quantity
+from knought.reporting import figures, tables
+from knought.reporting.record import record_text
+from knought.reporting.sentences import charge_sentences, laws_sentence, runs_sentence
+from knought.reporting.style import DOUBLE_COLUMN, STYLE, blank_figure
+from knought.reporting.summary import summary
+from knought.reporting.svg import inline_svg, plain_svg
+
+if TYPE_CHECKING:
+    from collections.abc import Callable, Mapping
+
+    from matplotlib.figure import Figure
+
+    from knought.fitting.assess import Assessment
+    from knought.reporting.cells import Table
+    from knought.rounding import Layout
+
+__all__ = ["Picture", "Report"]
+
+
+@dataclass(frozen=True)
+class Picture:
+    """A figure of a report.
+
+    Attributes
+    ----------
+    name
+        For file names and ids.
+    title
+        One line above it.
+    caption
+        Defines every line, band and bar.
+    draw
+        Makes the figure anew.
+    """
+
+    name: str
+    title: str
+    caption: str
+    draw: Callable[[], Figure]
+
+
+@dataclass(frozen=True)
+class Report:
+    """Everything that is shown and kept of one assessment.
+
+    Parameters
+    ----------
+    assessment
+        What was found.
+    title
+        Title of the study.
+    inputs
+        Name and SHA-256 of every file read.
+    seed
+        Seed of everything random, if anything was.
+    """
+
+    assessment: Assessment
+    title: str
+    inputs: tuple[tuple[str, str], ...] = ()
+    seed: int | None = None
+
+    @cached_property
+    def introduction(self) -> tuple[str, ...]:
+        """Sentences that say what was read and which laws the answer rests on."""
+        return runs_sentence(self.assessment), laws_sentence(self.assessment)
+
+    @cached_property
+    def charges(self) -> tuple[str, ...]:
+        """Sentences that say what the runs tell of the charges and of the priors."""
+        return tuple(charge_sentences(self.assessment.data_alone or self.assessment.headline))
+
+    @cached_property
+    def account(self) -> tuple[str, ...]:
+        """What was understood of the file, a line each."""
+        return tuple(account_lines(self.assessment.rates))
+
+    @cached_property
+    def tables(self) -> tuple[Table, ...]:
+        """Every table that the assessment supports, in the order of the report."""
+        made = (
+            tables.headline_table(self.assessment),
+            tables.data_alone_table(self.assessment),
+            tables.working_table(self.assessment),
+            tables.laws_table(self.assessment),
+            tables.temperature_laws_table(self.assessment),
+            tables.runs_table(self.assessment),
+        )
+        return tuple(table for table in made if table is not None)
+
+    @cached_property
+    def pictures(self) -> tuple[Picture, ...]:
+        """Every figure that the assessment supports, in the order of the report."""
+        seen, found = self.assessment.observations, self.assessment.headline
+        made = []
+        if len(seen.temperature_levels) > 1:
+            made.append(self._temperature_picture())
+        if found.describes_salt and len(seen.ionic_strength_levels) > 1:
+            made.append(self._salt_picture())
+        made.append(self._residual_picture())
+        return tuple(made)
+
+    def summary(self, layout: Layout = "text") -> str:
+        """Return the summary for the terminal."""
+        return summary(self.assessment, layout)
+
+    def record(self) -> str:
+        """Return the text of ``results.json``."""
+        about: dict[str, Any] = {"seed": self.seed}
+        if self.inputs:
+            about["inputs"] = self.inputs
+        return record_text(self.assessment, **about)
+
+    def inline(self, picture: Picture) -> str:
+        """Return a picture as an SVG element whose points tell what they are."""
+        return inline_svg(picture.draw(), picture.name, picture.caption, self._point_titles)
+
+    def svg(self, picture: Picture) -> str:
+        """Return a picture as the text of an SVG file."""
+        return plain_svg(picture.draw(), picture.name)
+
+    @cached_property
+    def _point_titles(self) -> Mapping[str, str]:
+        """What each point is, by the gid that the figures give it."""
+        rates = self.assessment.rates
+        k = quantity("measured_rate_constant", rates.order)
+        titles = {}
+        for row, run in enumerate(rates.run):
+            parts = [f"run {run}", f"T = {rates.T[row]:.2f} K"]
+            if rates.I is not None:
+                parts.append(f"I = {rates.I[row]:.4g} mol/L")
+            u = None if rates.u_k is None else float(rates.u_k[row])
+            parts.append(f"k = {k.written(float(rates.k[row]), u)}")
+            titles[f"run-{row}"] = ", ".join(parts)
+        return titles
+
+    def _temperature_picture(self) -> Picture:
+        describes_salt = self.assessment.headline.describes_salt
+        lines = (
+            "Lines: the fitted surface at I → 0 (dashed) and at working ionic strengths"
+            if describes_salt
+            else "Line: the fitted temperature law"
+        )
+        return Picture(
+            "temperature",
+            "Rate constant against temperature",
+            f"{lines}; the darker bands are 95 % confidence bands of the line, the lighter ones "
+            "95 % prediction bands for one further run with the typical uncertainty of the runs. "
+            "Points: runs at their own T and I; bars: one standard uncertainty.",
+            lambda: _drawn(
+                lambda figure: figures.temperature_dependence(
+                    self.assessment, figure.add_subplot()
+                ),
+                height=4.4,
+            ),
+        )
+
+    def _salt_picture(self) -> Picture:
+        return Picture(
+            "salt",
+            "Rate constant against ionic strength",
+            "Lines: the fitted surface at each temperature, extrapolated to I → 0 (open circles); "
+            "bands: 95 % confidence bands; dotted: limiting slopes 2 A(T) z_A z_B. Points: runs; "
+            "bars: one standard uncertainty.",
+            lambda: _drawn(
+                lambda figure: figures.salt_effect(self.assessment, figure.add_subplot()),
+                height=4.2,
+            ),
+        )
+
+    def _residual_picture(self) -> Picture:
+        kinds = figures.sources(self.assessment.observations)
+
+        def draw(figure: Figure) -> None:
+            axes = figure.subplots(1, len(kinds), sharey=True, squeeze=False)[0]
+            for ax, kind in zip(axes, kinds, strict=True):
+                figures.residuals_against(self.assessment, kind, ax)
+            for ax in axes[1:]:
+                ax.set_ylabel("")
+
+        return Picture(
+            "residuals",
+            "Residuals",
+            "Observed less fitted ln k over the standard uncertainty of each run; dotted lines at "
+            "±2. Colours and markers as in the figure against ionic strength: one for each "
+            "temperature.",
+            lambda: _drawn(draw, height=2.5),
+        )
+
+
+def _drawn(draw: Callable[[Figure], object], height: float) -> Figure:
+    import matplotlib as mpl
+
+    with mpl.rc_context(STYLE):
+        figure = blank_figure(DOUBLE_COLUMN, height)
+        draw(figure)
+        figure.canvas.draw()
+    return figure

@@ -1,0 +1,104 @@
+"""Sentences that carry their numbers: what was read, which laws, what the charges may be."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from knought.chemistry.quantities import quantity
+from knought.fitting.open_fit import CHARGE_PRODUCTS, OpenFit
+from knought.reporting.cells import join_words
+from knought.rounding import unit_text
+
+if TYPE_CHECKING:
+    from knought.fitting.assess import Assessment
+    from knought.fitting.found import Found
+    from knought.laws.open_law import Priors
+
+__all__ = ["charge_sentences", "laws_sentence", "prior_sentence", "runs_sentence"]
+
+#: Integer charge products lighter than this are not listed.
+_LISTED_WEIGHT = 0.005
+
+_PRIOR_WORDS = {
+    "ion_size": "å",
+    "linear_coefficient": "c",
+    "interaction_coefficient": "β",
+}
+
+
+def runs_sentence(assessment: Assessment) -> str:
+    """Return how many runs were read from where, and the conditions that they cover."""
+    rates, seen = assessment.rates, assessment.observations
+    name = rates.source.name if rates.source is not None else "table"
+    temperatures, strengths = seen.temperature_levels, seen.ionic_strength_levels
+    parts = [f"{name}: {seen.runs} runs"]
+    if seen.runs != len(rates):
+        parts[0] += f" used of {len(rates)}"
+    span = (
+        f"{temperatures[0]:.2f} K"
+        if len(temperatures) == 1
+        else f"{temperatures[0]:.2f} to {temperatures[-1]:.2f} K ({len(temperatures)} temperatures)"
+    )
+    parts.append(span)
+    if len(strengths) == 1:
+        parts.append(f"I = {strengths[0]:.3g} mol/L")
+    elif len(strengths) > 1:
+        parts.append(
+            f"I = {strengths[0]:.3g} to {strengths[-1]:.3g} mol/L ({len(strengths)} levels)"
+        )
+    parts.append(f"order {rates.order}, k in {unit_text(rates.rate_constant_unit)}")
+    return ", ".join(parts) + "."
+
+
+def laws_sentence(assessment: Assessment) -> str:
+    """Return which laws the headline rests on, and its priors or given charges."""
+    found, choices = assessment.headline, assessment.choices
+    text = f"Temperature law: {found.surface.temperature_law.words}. "
+    text += f"Salt law: {found.surface.salt_law.words}"
+    if isinstance(found, OpenFit):
+        text += f", {prior_sentence(found.grid.priors)}"
+    text += "."
+    if choices.charge_product is not None:
+        source = f"from {choices.reactants}" if choices.reactants else "given"
+        text += f" Charge product {choices.charge_product:g} ({source})."
+    return text
+
+
+def prior_sentence(priors: Priors) -> str:
+    """Return the priors of the open law as a phrase."""
+    size = quantity("ion_size")
+    low, high = (f"{size.shown(bound):g}" for bound in priors.ion_size)
+    parts = [f"å {low} Å" if low == high else f"å uniform from {low} to {high} Å"]
+    for sign, (mean, deviation) in (
+        ("c", priors.linear_coefficient),
+        ("β", priors.interaction_coefficient),
+    ):
+        parts.append(
+            f"{sign} = {mean:g} ± {deviation:g} L/mol" if deviation else f"{sign} {mean:g}"
+        )
+    return f"with {join_words(parts)} before the data"
+
+
+def charge_sentences(found: Found) -> list[str]:
+    """Return what the runs say of the integer charge products, and of the priors."""
+    if not isinstance(found, OpenFit):
+        return []
+    sentences = []
+    weights = found.charge_product_weights
+    if weights:
+        heavy = sorted(
+            (z for z, weight in weights.items() if weight >= _LISTED_WEIGHT),
+            key=lambda z: -weights[z],
+        )
+        listed = [f"{z}: {weights[z]:.2f}" for z in heavy]
+        sentences.append(
+            f"Weights of integer charge products ({CHARGE_PRODUCTS[0]} to {CHARGE_PRODUCTS[-1]}, "
+            f"alike before the data): {', '.join(listed)}."
+        )
+    shares = [f"{_PRIOR_WORDS[name]} {share:.0%}" for name, share in found.prior_share.items()]
+    if shares:
+        sentences.append(
+            "Left of the prior widths after the data (100 % means that the runs say nothing of "
+            f"it): {join_words(shares)}."
+        )
+    return sentences

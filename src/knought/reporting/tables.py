@@ -1,0 +1,348 @@
+"""The tables of a report: headline, working conditions, laws beside each other, runs."""
+
+from __future__ import annotations
+
+import math
+from dataclasses import replace
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from knought.chemistry.quantities import quantity
+from knought.fitting.open_fit import OpenFit
+from knought.fitting.surface_fit import SurfaceFit
+from knought.reporting.cells import (
+    Cell,
+    Table,
+    estimate_cells,
+    interval_cell,
+    number,
+    number_column,
+    pair_cell,
+    quantity_column,
+    symbol_cell,
+    text_column,
+    words,
+)
+
+if TYPE_CHECKING:
+    from knought.fitting.assess import Assessment
+    from knought.fitting.estimate import Estimate
+    from knought.fitting.found import Found
+
+__all__ = [
+    "data_alone_table",
+    "headline_table",
+    "laws_table",
+    "runs_table",
+    "temperature_laws_table",
+    "working_table",
+]
+
+#: Parameters in the order of the headline table; the rest of the registry is left to the record.
+_HEADLINE = (
+    "rate_constant",
+    "activation_energy",
+    "ln_pre_exponential_factor",
+    "activation_enthalpy",
+    "activation_entropy",
+    "activation_gibbs_energy",
+    "activation_heat_capacity",
+    "temperature_exponent",
+    "charge_product",
+    "interaction_coefficient",
+    "ion_size",
+)
+
+#: Above this many levels, a table of working conditions shows a spread of them only.
+_MOST_CONDITIONS = 8
+
+
+def headline_table(assessment: Assessment) -> Table:
+    """Return value, standard uncertainty and 95 % interval of every headline parameter."""
+    found = assessment.headline
+    return Table(
+        "parameters",
+        f"Parameters at {condition_words(found)}",
+        _parameter_columns(),
+        _parameter_rows(found),
+        (meaning_of_uncertainty(found),),
+    )
+
+
+def data_alone_table(assessment: Assessment) -> Table | None:
+    """Return what the runs alone say where the charges are given; None where they are not."""
+    found = assessment.data_alone
+    if found is None:
+        return None
+    rows = tuple(
+        row
+        for row in _parameter_rows(found)
+        if row[1].raw in {"rate_constant", "charge_product", "activation_energy"}
+    )
+    return Table(
+        "data-alone",
+        "What the runs alone say, with the charges left open",
+        _parameter_columns(),
+        rows,
+    )
+
+
+def condition_words(found: Found) -> str:
+    """Return ``"298.15 K and I → 0"``, or what takes its place."""
+    T = f"{found.reference_temperature:.2f} K"
+    return f"{T} and I → 0" if found.describes_salt else f"{T} in the runs' own medium"
+
+
+def meaning_of_uncertainty(found: Found) -> str:
+    """Return the sentence that says what every ± of a fit means."""
+    coverage = "Intervals hold 95 %, equal tails"
+    if isinstance(found, OpenFit):
+        coverage += ", integrated over the open salt law"
+    elif found.scatter.from_scatter:
+        coverage += f", Student t with {found.scatter.degrees_of_freedom} degrees of freedom"
+    return f"u is a standard uncertainty, {found.includes}. {coverage}."
+
+
+def _parameter_columns() -> tuple:  # type: ignore[type-arg]
+    return (
+        text_column("quantity"),
+        text_column("symbol"),
+        number_column("value"),
+        number_column("u"),
+        number_column("95 % interval"),
+        text_column("unit"),
+    )
+
+
+def _parameter_rows(found: Found) -> tuple[tuple[Cell, ...], ...]:
+    parameters = found.parameters
+    rows = []
+    for name in _HEADLINE:
+        if name not in parameters or (name == "ion_size" and isinstance(found, OpenFit)):
+            continue
+        estimate = parameters[name]
+        rows.append(
+            (
+                words(estimate.quantity.words),
+                symbol_cell(estimate.quantity.symbol, name),
+                *estimate_cells(estimate),
+                interval_cell(estimate),
+                _unit_cell(estimate),
+            )
+        )
+    return tuple(rows)
+
+
+def _unit_cell(estimate: Estimate) -> Cell:
+    from knought.rounding import unit_text
+
+    unit = estimate.quantity.shown_unit
+    return Cell(
+        unit,
+        (
+            ("text", unit_text(unit)),
+            ("ascii", unit_text(unit, "ascii")),
+            ("html", unit_text(unit, "html")),
+            ("latex", unit_text(unit, "latex")),
+        ),
+    )
+
+
+def working_table(assessment: Assessment) -> Table | None:
+    """Return k and activation parameters at T_ref and each working ionic strength.
+
+    None where the headline says nothing of salt.
+    """
+    found = assessment.headline
+    if not found.describes_salt:
+        return None
+    levels = np.concatenate([[0.0], _spread(found.observations.ionic_strength_levels)])
+    levels = np.unique(levels)
+    at = [found.at(I=float(I)) for I in levels]
+    names = [name for name in ("rate_constant", *_HEADLINE[1:6]) if name in at[0]]
+    order = found.observations.order
+    columns = [quantity_column(quantity("ionic_strength"))]
+    for name in names:
+        what = quantity("measured_rate_constant" if name == "rate_constant" else name, order)
+        columns.append(quantity_column(what))
+    return Table(
+        "working",
+        f"At {found.reference_temperature:.2f} K and each ionic strength",
+        tuple(columns),
+        tuple(
+            (
+                words("→ 0") if I == 0 else number(float(I), digits=3),
+                *(pair_cell(estimates[name]) for name in names),
+            )
+            for I, estimates in zip(levels, at, strict=True)
+        ),
+        (
+            "± is one standard uncertainty. Activation parameters change with I because the "
+            "Debye–Hückel coefficient A rises with temperature: compare with literature at the "
+            "same I.",
+        ),
+    )
+
+
+def _spread(levels: np.ndarray) -> np.ndarray:  # type: ignore[type-arg]
+    if len(levels) <= _MOST_CONDITIONS:
+        return levels
+    chosen = np.linspace(0, len(levels) - 1, _MOST_CONDITIONS).round().astype(int)
+    return levels[chosen]
+
+
+def laws_table(assessment: Assessment) -> Table:
+    """Return what every named salt law would have answered: does the conclusion survive?"""
+    headline = assessment.headline
+    order = headline.observations.order
+    stated = headline.scatter.stated
+    lowest = min(
+        (law.aicc for law in assessment.laws if not math.isnan(law.aicc)), default=math.nan
+    )
+    rows = [_law_row(headline, "headline", "–")] if isinstance(headline, OpenFit) else []
+    for law in assessment.laws:
+        difference = "–" if math.isnan(law.aicc) else f"{law.aicc - lowest:.1f}"
+        chosen = isinstance(headline, SurfaceFit) and law.salt_law == headline.salt_law
+        remark = "headline" if chosen else _law_remark(law)
+        rows.append(_law_row(law, remark, difference))
+    notes = [
+        "± is one standard uncertainty of that law alone, as if it were known to be right. "
+        "The law 'no salt effect' gives k in the runs' own medium."
+    ]
+    notes += [
+        f"{refusal.salt_law} ({refusal.temperature_law}): {refusal.reason}"
+        for refusal in assessment.refused
+        if refusal.temperature_law == assessment.temperature_law
+    ]
+    rate = replace(quantity("rate_constant", order))
+    return Table(
+        "laws",
+        "Does the conclusion survive another salt law?",
+        (
+            text_column("salt law"),
+            quantity_column(rate),
+            quantity_column(quantity("charge_product")),
+            *(
+                (quantity_column(quantity("activation_energy")),)
+                if "activation_energy" in headline.parameters
+                else ()
+            ),
+            number_column("χ²/ν" if stated else "s(ln k)"),
+            number_column("ΔAICc"),
+            text_column("remark"),
+        ),
+        tuple(rows),
+        tuple(notes),
+    )
+
+
+def _law_row(found: Found, remark: str, difference: str) -> tuple[Cell, ...]:
+    parameters = found.parameters
+    energy = parameters.get("activation_energy")
+    misfit = found.scatter.reduced_chi_square if found.scatter.stated else found.scatter.birge_ratio
+    return (
+        words(found.surface.salt_law.words),
+        pair_cell(parameters["rate_constant"]),
+        pair_cell(parameters.get("charge_product")),
+        *((pair_cell(energy),) if energy is not None else ()),
+        words("–") if math.isnan(misfit) else number(misfit, digits=3),
+        words(difference),
+        words(remark),
+    )
+
+
+def _law_remark(law: SurfaceFit) -> str:
+    remarks = []
+    if law.scatter.kind == "enlarged":
+        remarks.append(f"does not fit: p = {law.scatter.probability:.1g}")
+    if any(caveat.code == "outside-domain" for caveat in law.caveats):
+        form = law.surface.salt_law.form
+        if form is not None:
+            remarks.append(f"used beyond I = {form.domain.upper:g}")
+    return "; ".join(remarks)
+
+
+def temperature_laws_table(assessment: Assessment) -> Table | None:
+    """Return the headline's salt law with every temperature law; None for one temperature."""
+    if not assessment.temperature_laws:
+        return None
+    rows = []
+    for found in assessment.temperature_laws:
+        parameters = found.parameters
+        misfit = (
+            found.scatter.reduced_chi_square if found.scatter.stated else found.scatter.birge_ratio
+        )
+        rows.append(
+            (
+                words(found.surface.temperature_law.words),
+                pair_cell(parameters["rate_constant"]),
+                pair_cell(parameters["activation_energy"]),
+                pair_cell(parameters["activation_enthalpy"]),
+                pair_cell(parameters["activation_entropy"]),
+                pair_cell(parameters.get("activation_heat_capacity")),
+                words("–") if math.isnan(misfit) else number(misfit, digits=3),
+            )
+        )
+    stated = assessment.headline.scatter.stated
+    order = assessment.observations.order
+    return Table(
+        "temperature-laws",
+        "The same with other temperature laws",
+        (
+            text_column("temperature law"),
+            quantity_column(quantity("rate_constant", order)),
+            quantity_column(quantity("activation_energy")),
+            quantity_column(quantity("activation_enthalpy")),
+            quantity_column(quantity("activation_entropy")),
+            quantity_column(quantity("activation_heat_capacity")),
+            number_column("χ²/ν" if stated else "s(ln k)"),
+        ),
+        tuple(rows),
+    )
+
+
+def runs_table(assessment: Assessment) -> Table:
+    """Return every run with its fitted value and residual; runs left out say why."""
+    rates, found = assessment.rates, assessment.headline
+    residuals = iter(found.residuals)
+    standardised = iter(found.standardised_residuals)
+    predicted = iter(np.exp(found.predicted_ln_k))
+    k = quantity("measured_rate_constant", rates.order)
+    rows = []
+    for i, run in enumerate(rates.run):
+        conditions = [words(run), number(float(rates.T[i]), decimals=2)]
+        if rates.I is not None:
+            conditions.append(number(float(rates.I[i]), digits=4))
+        u = None if rates.u_k is None else float(rates.u_k[i])
+        digits = k.rounded(float(rates.k[i]), u)
+        shown = Cell(
+            float(rates.k[i]),
+            tuple((layout, digits.pair(layout)) for layout in ("text", "ascii", "html", "latex")),
+        )
+        if rates.used[i]:
+            outcome = [
+                number(float(next(predicted)), digits=4),
+                number(float(next(residuals)), decimals=4),
+                number(float(next(standardised)), decimals=2),
+                words(""),
+            ]
+        else:
+            outcome = [words("–"), words("–"), words("–"), words(f"left out: {rates.reason[i]}")]
+        rows.append((*conditions, shown, *outcome))
+    has_I = rates.I is not None
+    return Table(
+        "runs",
+        "Runs",
+        (
+            text_column("run"),
+            quantity_column(quantity("temperature")),
+            *((quantity_column(quantity("ionic_strength")),) if has_I else ()),
+            quantity_column(k),
+            number_column("k fitted"),
+            number_column("ln k residual"),
+            number_column("residual / u"),
+            text_column(""),
+        ),
+        tuple(rows),
+    )

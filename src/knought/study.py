@@ -1,0 +1,164 @@
+"""A study file, run whole: read, assess, and write one output folder."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+from knought.errors import InputError, Problem
+from knought.files import sha256_of, whole_folder
+from knought.fitting.assess import assess
+from knought.measurement.reading import read_rates
+from knought.reporting.cells import plain_lines
+from knought.reporting.page import page
+from knought.reporting.report import Report
+from knought.study_file import read_study_file
+
+if TYPE_CHECKING:
+    from knought.study_file import StudyFile
+
+__all__ = ["Study", "read_study", "run_study", "write_report"]
+
+
+@dataclass(frozen=True)
+class Study:
+    """A study as its file describes it.
+
+    Attributes
+    ----------
+    path
+        The study file.
+    settings
+        What it says.
+    """
+
+    path: Path
+    settings: StudyFile
+
+    @property
+    def rates_path(self) -> Path:
+        """Where the table of rate constants is; below the study file's folder.
+
+        Raises
+        ------
+        InputError
+            If it points outside that folder.
+        """
+        folder = self.path.parent.resolve()
+        target = (folder / self.settings.rates.file).resolve()
+        if not target.is_relative_to(folder):
+            raise InputError(
+                Problem(
+                    "the table lies outside the folder of the study file",
+                    "put it beside the study file and name it by its relative path",
+                    read=self.settings.rates.file,
+                    file=self.path.name,
+                    column="[rates] file",
+                )
+            )
+        return target
+
+    def report(self) -> Report:
+        """Read the table, assess it, and return the report.
+
+        Raises
+        ------
+        InputError
+            If anything in the study is wrong, or the runs cannot carry what is asked of them.
+        """
+        said = self.settings
+        rates = read_rates(
+            self.rates_path,
+            sheet=said.rates.sheet,
+            uncertainty_means=said.rates.uncertainty_means,
+        )
+        assessment = assess(
+            rates,
+            temperature_law=said.laws.temperature,
+            salt_law=said.laws.salt,
+            reference_temperature=said.study.reference_temperature,
+            standard_concentration=said.study.standard_concentration,
+            charge_product=said.reaction.charge_product,
+            reactants=said.reaction.reactants,
+            ion_size=said.laws.ion_size,
+            priors=said.priors.priors(),
+        )
+        inputs = ((self.path.name, sha256_of(self.path)), *_source(self))
+        return Report(assessment, said.study.title, inputs, said.study.seed)
+
+
+def _source(study: Study) -> tuple[tuple[str, str], ...]:
+    return ((study.settings.rates.file, sha256_of(study.rates_path)),)
+
+
+def read_study(path: str | Path) -> Study:
+    """Read a study file.
+
+    Raises
+    ------
+    InputError
+        If the file is wrong.
+    """
+    path = Path(path)
+    return Study(path, read_study_file(path))
+
+
+def run_study(path: str | Path, out: str | Path, *, overwrite: bool = False) -> Report:
+    """Run a study and write its output folder, whole or not at all.
+
+    Parameters
+    ----------
+    path
+        The study file.
+    out
+        The folder to make.
+    overwrite
+        Whether an existing folder may be replaced.
+
+    Returns
+    -------
+    Report
+
+    Raises
+    ------
+    InputError
+        If the study is wrong, or the folder exists and may not be replaced.
+    """
+    report = read_study(path).report()
+    write_report(report, out, overwrite=overwrite)
+    return report
+
+
+def write_report(report: Report, out: str | Path, *, overwrite: bool = False) -> None:
+    """Write page, record, summary, tables and figures of a report into a folder.
+
+    Parameters
+    ----------
+    report
+        The report.
+    out
+        The folder to make.
+    overwrite
+        Whether an existing folder may be replaced.
+
+    Raises
+    ------
+    InputError
+        If the folder exists and may not be replaced, or cannot be written.
+    """
+    # Everything is made before anything is written.
+    files = {
+        "report.html": page(report),
+        "results.json": report.record(),
+        "summary.txt": report.summary(),
+    }
+    for table in report.tables:
+        files[f"tables/{table.name}.txt"] = "\n".join([table.title, *plain_lines(table)]) + "\n"
+    for picture in report.pictures:
+        files[f"figures/{picture.name}.svg"] = report.svg(picture)
+    with whole_folder(Path(out), overwrite=overwrite) as folder:
+        for name, text in files.items():
+            target = folder / name
+            target.parent.mkdir(exist_ok=True)
+            target.write_text(text, encoding="utf-8", newline="\n")

@@ -1,0 +1,98 @@
+"""A blank table with the right headers and a study file that explains itself."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from knought.files import whole_folder
+
+if TYPE_CHECKING:
+    from pathlib import Path
+
+__all__ = ["write_template"]
+
+#: Header, width, and what belongs there.
+_COLUMNS = (
+    ("run", 8, "a label of your own"),
+    ("t/°C", 10, "or T/K"),
+    ("I/(mol/L)", 12, "ionic strength, every ion counted; leave the column out if unknown"),
+    ("k/(L mol^-1 s^-1)", 20, "any unit of k: the order is read from it"),
+    ("u(k)/(L mol^-1 s^-1)", 22, "standard uncertainty; or u_r(k)/%; leave the column out if none"),
+    ("salt", 12, "what sets the ionic strength"),
+    ("batch", 10, "runs that share a stock, a day, an instrument"),
+    ("use", 6, "yes or no"),
+    ("reason", 24, "needed where use is no"),
+    ("note", 24, ""),
+)
+
+_STUDY = """\
+# A study for knought. Lines that begin with # are comments; remove the # to use a line.
+# Quantities are strings with their unit.
+
+[study]
+title = "My study"
+# reference_temperature = "298.15 K"      # where parameters are given
+# standard_concentration = "1 mol/L"      # to which ΔG‡ and ΔS‡ refer
+
+[rates]
+file = "rates.xlsx"                        # or .csv, .tsv; beside this file
+# sheet = "rates"
+
+[reaction]
+# What enters the rate-determining step, with charges. If you know it, say it: nothing narrows
+# the rate constant at zero ionic strength more.
+# reactants = "A^2- + B^-"
+
+[laws]
+# temperature = "eyring"                   # arrhenius, modified-arrhenius, eyring, eyring-cp
+# salt = "open"                            # left open unless you have a reason to name one
+
+[priors]
+# What is known of the open salt law before the data; narrow them only if you know better.
+# ion_size = ["1 Å", "12 Å"]               # uniform between
+# linear_coefficient = ["0.1 L/mol", "0.3 L/mol"]       # mean, standard uncertainty
+# interaction_coefficient = ["0 L/mol", "0.3 L/mol"]    # mean, standard uncertainty
+"""
+
+
+def write_template(out: Path) -> tuple[Path, ...]:
+    """Write ``rates.xlsx`` and ``study.toml`` into a new folder.
+
+    Parameters
+    ----------
+    out
+        The folder to make.
+
+    Returns
+    -------
+    tuple of Path
+        What was written.
+
+    Raises
+    ------
+    InputError
+        If the folder exists or cannot be written.
+    """
+    with whole_folder(out, overwrite=False) as folder:
+        _write_table(folder / "rates.xlsx")
+        (folder / "study.toml").write_text(_STUDY, encoding="utf-8", newline="\n")
+    return out / "rates.xlsx", out / "study.toml"
+
+
+def _write_table(path: Path) -> None:
+    from openpyxl import Workbook
+    from openpyxl.comments import Comment
+    from openpyxl.styles import Font
+    from openpyxl.utils import get_column_letter
+
+    book = Workbook()
+    sheet = book.active
+    sheet.title = "rates"
+    for number, (header, width, remark) in enumerate(_COLUMNS, start=1):
+        cell = sheet.cell(row=1, column=number, value=header)
+        cell.font = Font(bold=True)
+        if remark:
+            cell.comment = Comment(remark, "knought")
+        sheet.column_dimensions[get_column_letter(number)].width = width
+    sheet.freeze_panes = "A2"
+    book.save(path)

@@ -1,0 +1,77 @@
+"""What the open law promises: 95 % intervals that hold the truth, whatever law made it.
+
+The truths are written out in tests/simulation.py, not taken from the package's laws. An interval
+from the 2.5 % to the 97.5 % quantile holds a value exactly when the mixture's distribution function
+there lies between 0.025 and 0.975, which is what is counted: no root is sought.
+"""
+
+from __future__ import annotations
+
+import numpy as np
+import pytest
+
+from knought.arrays import FloatArray
+from knought.fitting.open_fit import fit_open, open_solver
+from knought.laws.open_law import open_grid
+from knought.laws.surface import Surface
+from knought.laws.temperature import temperature_law
+from knought.numerics.quantiles import Mixture
+from tests.simulation import CHARGE_PRODUCTS, RANGES, TRUTHS, Studies, simulate
+
+STUDIES = 1000
+
+
+def probabilities(studies: Studies) -> dict[str, FloatArray]:
+    """F(truth) of ln k° and of the charge product in every study, through assess's own solver."""
+    seen = studies.observations
+    grid = open_grid()
+    surface = Surface(temperature_law("eyring"), grid.law, 298.15, seen.order)
+    solutions = open_solver(seen, surface, grid, seen.u).solve(studies.ln_k)
+    weights, p = solutions.weights, len(surface.parameters)
+    means = solutions.means.reshape(len(weights), -1, p)
+    scales = np.sqrt(np.diagonal(solutions.covariances.reshape(-1, p, p), axis1=1, axis2=2))
+    found = {}
+    for name, true in (
+        ("ln_rate_constant", studies.true_ln_k),
+        ("charge_product", studies.charge_product),
+    ):
+        j = surface.parameters.index(name)
+        component = Mixture(np.ones(1), means[None, :, :, j], scales[None, None, :, j])
+        found[name] = np.sum(weights * component.cdf(true), axis=1)
+    return found
+
+
+@pytest.mark.parametrize("span", RANGES, ids=lambda span: f"I {span[0]}-{span[1]}")
+@pytest.mark.parametrize("truth", TRUTHS)
+def test_intervals_hold_the_truth_in_nine_studies_of_ten_at_least(
+    truth: str, span: tuple[float, float]
+) -> None:
+    shortfalls = []
+    for number, z in enumerate(CHARGE_PRODUCTS):
+        seed = 1000 * list(TRUTHS).index(truth) + 10 * RANGES.index(span) + number
+        studies = simulate(
+            TRUTHS[truth], z, np.geomspace(*span, 6), studies=STUDIES, seed=seed
+        )
+        for name, chance in probabilities(studies).items():
+            held = float(np.mean((chance >= 0.025) & (chance <= 0.975)))
+            if held < 0.90:
+                shortfalls.append(f"z_A z_B = {z}: {name} held in {held:.1%}")
+    assert not shortfalls
+
+
+def test_the_counted_probability_is_that_of_the_interval_that_assess_reports() -> None:
+    """The batch and the single study are one computation."""
+    studies = simulate(TRUTHS["Davies 0.3"], 2, np.geomspace(0.005, 0.2, 6), studies=12, seed=7)
+    chances = probabilities(studies)
+    for i in range(12):
+        seen = type(studies.observations)(
+            **{**vars(studies.observations), "ln_k": studies.ln_k[i]}
+        )
+        found = fit_open(seen, scatter="given")
+        for name, chance in chances.items():
+            mixture = found.distribution.parameter(name)
+            true = studies.true_ln_k if name == "ln_rate_constant" else studies.charge_product
+            assert float(mixture.cdf(true)) == pytest.approx(float(chance[i]), abs=1e-8)
+            low, high = mixture.interval(0.95)
+            inside = bool(low <= true <= high)
+            assert inside == bool(0.025 <= chance[i] <= 0.975)
