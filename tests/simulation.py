@@ -51,9 +51,7 @@ def sit(beta: float) -> Truth:
     def lg(T: FloatArray, I: FloatArray, z: float) -> FloatArray:
         m = I / (density(T) / 1000)
         root = np.sqrt(m)
-        return np.asarray(
-            2 * z * debye_huckel(T, "molal").A * root / (1 + 1.5 * root) + beta * m
-        )
+        return np.asarray(2 * z * debye_huckel(T, "molal").A * root / (1 + 1.5 * root) + beta * m)
 
     return lg
 

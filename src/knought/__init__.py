@@ -13,6 +13,8 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
+from knought.version import __version__
+
 if TYPE_CHECKING:
     from knought.chemistry.debye_huckel import debye_huckel
     from knought.chemistry.species import Species, charge_product, parse_reactants, parse_species
@@ -56,8 +58,6 @@ __all__ = [
     "run_study",
 ]
 
-__version__ = "0.1.0"
-
 _HOMES = {
     "Assessment": "fitting.assess",
     "Caveat": "errors",
@@ -85,7 +85,13 @@ _HOMES = {
 
 
 def __getattr__(name: str) -> object:
-    """Load a public name when it is first used (PEP 562)."""
+    """Load a public name when it is first used (PEP 562).
+
+    Raises
+    ------
+    AttributeError
+        If there is no such name.
+    """
     if name not in _HOMES:
         raise AttributeError(f"module 'knought' has no attribute {name!r}")
     from importlib import import_module

@@ -5,17 +5,25 @@ from __future__ import annotations
 import json
 import shutil
 from importlib import resources
-from pathlib import Path
 from typing import TYPE_CHECKING
 
 from knought.errors import InputError
 from knought.files import whole_folder
-from knought.reporting.cells import Table, number_column, plain_lines, text_column, words
-from knought.reporting.cells import estimate_cells, interval_cell
+from knought.reporting.cells import (
+    Table,
+    estimate_cells,
+    interval_cell,
+    number_column,
+    plain_lines,
+    text_column,
+    unit_cell,
+    words,
+)
 from knought.study import read_study, write_report
 
 if TYPE_CHECKING:
     from importlib.resources.abc import Traversable
+    from pathlib import Path
 
     from knought.reporting.cells import Cell
     from knought.reporting.report import Report
@@ -118,7 +126,7 @@ def _beside(report: Report, truth: dict[str, dict[str, float]]) -> Table:
                 *estimate_cells(estimate),
                 interval_cell(estimate),
                 words(digits.number()),
-                words(what.shown_unit),
+                unit_cell(estimate),
                 words("given" if estimate.given else ("inside" if inside else "outside")),
             )
         )

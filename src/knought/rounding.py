@@ -11,7 +11,7 @@ from dataclasses import dataclass
 from decimal import ROUND_HALF_EVEN, Decimal
 from typing import Literal
 
-__all__ = ["Layout", "Rounded", "power_of_ten", "rounded", "superscript", "unit_text"]
+__all__ = ["Layout", "Rounded", "heading", "power_of_ten", "rounded", "superscript", "unit_text"]
 
 Layout = Literal["text", "ascii", "html", "latex"]
 
@@ -68,6 +68,14 @@ def unit_text(unit: str, layout: Layout = "text") -> str:
         else:
             pieces.append(symbol + superscript(exponent))
     return {"latex": r"\,", "html": "&nbsp;", "text": " "}[layout].join(pieces)
+
+
+def heading(sign: str, unit: str, layout: Layout = "text") -> str:
+    """Return ``quantity/unit`` (Green Book 1.1); a unit of several parts stands in brackets."""
+    written = unit_text(unit, layout)
+    if not written:
+        return sign
+    return f"{sign} / ({written})" if " " in unit else f"{sign} / {written}"
 
 
 @dataclass(frozen=True)
@@ -133,10 +141,12 @@ def rounded(
     exact = Decimal(value)
     if uncertainty is None or not math.isfinite(uncertainty) or uncertainty <= 0:
         last = _place(exact, digits or _BARE_DIGITS)
+        # 0.09999999 is shown as 0.100 and not as 0.1000: decide from what will be printed.
+        last = _place(_quantized(exact, last), digits or _BARE_DIGITS)
         exponent = _shared_exponent(exact, last)
         text = _digits(exact, last, exponent)
-        if "." in text and not exponent and digits is None:
-            text = text.rstrip("0").rstrip(".") if "." in text else text
+        if "." in text and digits is None:
+            text = text.rstrip("0").rstrip(".")
         return Rounded(text, "", exponent)
     spread = Decimal(uncertainty)
     last = _place(spread, digits or _UNCERTAINTY_DIGITS)

@@ -8,7 +8,6 @@ from __future__ import annotations
 
 import difflib
 import tomllib
-from pathlib import Path
 from typing import TYPE_CHECKING, Annotated, Any
 
 from pydantic import BaseModel, BeforeValidator, ConfigDict, Field, ValidationError
@@ -19,6 +18,7 @@ from knought.laws.open_law import DEFAULT_PRIORS, Priors
 
 if TYPE_CHECKING:
     from collections.abc import Callable
+    from pathlib import Path
 
 __all__ = ["StudyFile", "read_study_file"]
 
@@ -29,7 +29,7 @@ _LARGEST = 1_000_000
 def _in_unit(unit: str) -> Callable[[object], float]:
     def read(value: object) -> float:
         if not isinstance(value, str):
-            raise ValueError(f'a quantity is a string with its unit, "298.15 {unit}"')  # noqa: TRY004
+            raise ValueError(f'a quantity is a string with its unit, "298.15 {unit}"')
         return parse_quantity(value, unit)
 
     return read

@@ -86,8 +86,8 @@ def _write_table(path: Path) -> None:
     from openpyxl.utils import get_column_letter
 
     book = Workbook()
-    sheet = book.active
-    sheet.title = "rates"
+    book.remove(book.worksheets[0])
+    sheet = book.create_sheet("rates")
     for number, (header, width, remark) in enumerate(_COLUMNS, start=1):
         cell = sheet.cell(row=1, column=number, value=header)
         cell.font = Font(bold=True)

@@ -7,16 +7,20 @@ there lies between 0.025 and 0.975, which is what is counted: no root is sought.
 
 from __future__ import annotations
 
+from typing import TYPE_CHECKING
+
 import numpy as np
 import pytest
 
-from knought.arrays import FloatArray
 from knought.fitting.open_fit import fit_open, open_solver
 from knought.laws.open_law import open_grid
 from knought.laws.surface import Surface
 from knought.laws.temperature import temperature_law
 from knought.numerics.quantiles import Mixture
 from tests.simulation import CHARGE_PRODUCTS, RANGES, TRUTHS, Studies, simulate
+
+if TYPE_CHECKING:
+    from knought.arrays import FloatArray
 
 STUDIES = 1000
 
@@ -49,9 +53,7 @@ def test_intervals_hold_the_truth_in_nine_studies_of_ten_at_least(
     shortfalls = []
     for number, z in enumerate(CHARGE_PRODUCTS):
         seed = 1000 * list(TRUTHS).index(truth) + 10 * RANGES.index(span) + number
-        studies = simulate(
-            TRUTHS[truth], z, np.geomspace(*span, 6), studies=STUDIES, seed=seed
-        )
+        studies = simulate(TRUTHS[truth], z, np.geomspace(*span, 6), studies=STUDIES, seed=seed)
         for name, chance in probabilities(studies).items():
             held = float(np.mean((chance >= 0.025) & (chance <= 0.975)))
             if held < 0.90:
@@ -64,9 +66,7 @@ def test_the_counted_probability_is_that_of_the_interval_that_assess_reports() -
     studies = simulate(TRUTHS["Davies 0.3"], 2, np.geomspace(0.005, 0.2, 6), studies=12, seed=7)
     chances = probabilities(studies)
     for i in range(12):
-        seen = type(studies.observations)(
-            **{**vars(studies.observations), "ln_k": studies.ln_k[i]}
-        )
+        seen = type(studies.observations)(**{**vars(studies.observations), "ln_k": studies.ln_k[i]})
         found = fit_open(seen, scatter="given")
         for name, chance in chances.items():
             mixture = found.distribution.parameter(name)

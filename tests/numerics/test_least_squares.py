@@ -2,14 +2,18 @@
 
 from __future__ import annotations
 
+from typing import TYPE_CHECKING
+
 import numpy as np
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-from knought.arrays import FloatArray
-from knought.numerics.least_squares import RankDeficiency, solve, solve_many
+from knought.numerics.least_squares import RankDeficiencyError, solve, solve_many
 from tests.certified import LONGLEY, NORRIS, WAMPLER1, WAMPLER3, WAMPLER5, Certified
+
+if TYPE_CHECKING:
+    from knought.arrays import FloatArray
 
 
 def digits(found: FloatArray, certified: FloatArray) -> float:
@@ -118,7 +122,7 @@ def test_the_order_of_the_observations_does_not_matter(seed: int) -> None:
 def test_columns_that_cannot_be_told_apart_are_named() -> None:
     x = np.linspace(0, 1, 6)
     design = np.column_stack([np.ones(6), x, 3 * x])
-    with pytest.raises(RankDeficiency) as caught:
+    with pytest.raises(RankDeficiencyError) as caught:
         solve(design, x)
     assert abs(caught.value.direction[0]) < 1e-8
     assert np.all(np.abs(caught.value.direction[1:]) > 0.1)
@@ -126,10 +130,10 @@ def test_columns_that_cannot_be_told_apart_are_named() -> None:
 
 def test_a_column_of_zeros_is_named() -> None:
     design = np.column_stack([np.ones(5), np.zeros(5)])
-    with pytest.raises(RankDeficiency) as caught:
+    with pytest.raises(RankDeficiencyError) as caught:
         solve(design, np.ones(5))
     assert caught.value.direction.tolist() == [0.0, 1.0]
-    with pytest.raises(RankDeficiency):
+    with pytest.raises(RankDeficiencyError):
         solve_many(design, np.ones((2, 5)), np.ones((2, 5)))
 
 

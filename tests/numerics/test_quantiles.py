@@ -97,7 +97,7 @@ def test_a_certain_value_has_an_interval_without_width() -> None:
 @pytest.mark.parametrize("wrong", [0.0, 1.0, 95.0, -0.1])
 def test_a_coverage_that_is_no_probability_is_refused(wrong: float) -> None:
     mixture = Mixture(np.ones(1), np.zeros(1), np.ones(1))
-    with pytest.raises(InputError, match="0.95"):
+    with pytest.raises(InputError, match=r"0\.95"):
         mixture.interval(wrong)
     with pytest.raises(InputError, match="probability"):
         mixture.quantile(wrong)

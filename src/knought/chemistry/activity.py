@@ -43,8 +43,6 @@ __all__ = [
     "OpenForm",
     "PitzerForm",
     "SITForm",
-    "lg_activity_coefficient",
-    "mean_activity_coefficient",
 ]
 
 #: kg/L in kg/m³.
@@ -106,7 +104,7 @@ class ActivityForm(ABC):
 
     @abstractmethod
     def _shape(self, I: FloatArray, B: FloatArray) -> _Shape:
-        """f and its slopes at I of the form's own basis."""
+        """Return f and its slopes at I of the form's own basis."""
 
     def value(self, I: ArrayLike, T: ArrayLike) -> FloatArray:
         """Return f, on the form's own basis.
@@ -167,10 +165,9 @@ class ActivityForm(ABC):
     def _at(self, I: ArrayLike, T: ArrayLike) -> _At:
         return _At(*_own_basis(self.basis, I, T), debye_huckel(T, self.basis))
 
-    @staticmethod
-    def _slope_T(at: _At, shape: _Shape) -> FloatArray:
+    def _slope_T(self, at: _At, shape: _Shape) -> FloatArray:
         through_B = shape.f_B * at.water.dB_dT
-        if isinstance(at.I_T, float):
+        if self.basis == "molar":
             return np.asarray(through_B + np.zeros_like(shape.f))
         # At I = 0 molality does not move with T: the slope there is 0, not 0 times infinity.
         with np.errstate(invalid="ignore"):
@@ -184,6 +181,11 @@ def _own_basis(
     """Return I on the basis of a form, with its slopes in molarity and in T.
 
     m = c/ρ with water's density in kg/L: for dilute solutions, as in the conversion of SIT.
+
+    Raises
+    ------
+    InputError
+        If I is negative or no number.
     """
     I, T = np.broadcast_arrays(np.asarray(I, dtype=float), np.asarray(T, dtype=float))
     if np.any(~(I >= 0)):
@@ -260,12 +262,12 @@ class ExtendedForm(ActivityForm):
 
 @dataclass(frozen=True)
 class DaviesForm(ActivityForm):
-    """√I/(1 + √I) - C I (Davies, Ion Association, Butterworths 1962; C = 0.2 in J. Chem. Soc. 1938).
+    """√I/(1 + √I) - C I (Davies, Ion Association, Butterworths, 1962).
 
     Parameters
     ----------
     coefficient
-        C in L/mol: 0.3 (1962), or the older 0.2.
+        C in L/mol: 0.3 (1962), or the older 0.2 (J. Chem. Soc. 1938, 2093).
     """
 
     coefficient: float = 0.3
@@ -346,55 +348,3 @@ def _screened(I: FloatArray, B: FloatArray, size: FloatArray | float) -> _Shape:
     root = np.sqrt(I)
     below = 1 + B * size * root
     return _Shape(root / below, _half_slope(root) / below**2, -size * (root / below) ** 2)
-
-
-def lg_activity_coefficient(
-    charge: float, I: ArrayLike, T: ArrayLike, form: ActivityForm, interaction: float = 0.0
-) -> FloatArray:
-    """Return log10 γ of an ion: -z² A f + b I.
-
-    Parameters
-    ----------
-    charge
-        z of the ion.
-    I, T
-        Ionic strengths in mol/L and temperatures in K.
-    form
-        The activity form; γ is on its basis.
-    interaction
-        b in L/mol (kg/mol for molal forms).
-
-    Raises
-    ------
-    InputError
-        If I is negative, or T outside 0-100 °C.
-    """
-    return np.asarray(
-        -(charge**2) * form.screening(I, T) + interaction * form.interaction_abscissa(I, T)
-    )
-
-
-def mean_activity_coefficient(
-    z_plus: float,
-    z_minus: float,
-    I: ArrayLike,
-    T: ArrayLike,
-    form: ActivityForm,
-    interaction: float = 0.0,
-) -> FloatArray:
-    """Return γ± of a salt: log10 γ± = -|z₊ z₋| A f + b I (Robinson and Stokes, chapter 9).
-
-    Parameters
-    ----------
-    z_plus, z_minus
-        Charges of cation and anion.
-    I, T, form, interaction
-        As for :func:`lg_activity_coefficient`; `interaction` is the salt's.
-
-    Raises
-    ------
-    InputError
-        If I is negative, or T outside 0-100 °C.
-    """
-    screening = abs(z_plus * z_minus) * form.screening(I, T)
-    return np.asarray(10 ** (interaction * form.interaction_abscissa(I, T) - screening))

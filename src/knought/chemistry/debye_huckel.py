@@ -83,6 +83,8 @@ def debye_huckel(T: ArrayLike, basis: Basis = "molar") -> DebyeHuckel:
     epsilon, epsilon_dT = water.permittivity_kernel(T, rho, rho_dT)
     thermal = VACUUM_PERMITTIVITY * epsilon * BOLTZMANN * T
     thermal_relative_dT = epsilon_dT / epsilon + 1.0 / T
+    amount: FloatArray | float
+    amount_relative_dT: FloatArray | float
     if basis == "molal":
         amount, amount_relative_dT = AVOGADRO * rho, rho_dT / rho
     else:

@@ -12,7 +12,7 @@ from fractions import Fraction
 from typing import TYPE_CHECKING
 
 from knought.errors import InputError
-from knought.rounding import Layout, Rounded, rounded, unit_text
+from knought.rounding import Layout, Rounded, heading, rounded, unit_text
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
@@ -84,12 +84,8 @@ class Quantity:
         return f"{number} {unit}".rstrip()
 
     def heading(self, layout: Layout = "text") -> str:
-        """Return the column heading ``quantity/unit`` (Green Book 1.1)."""
-        unit = unit_text(self.shown_unit, layout)
-        sign = self.symbol.in_layout(layout)
-        if not unit:
-            return sign
-        return f"{sign} / {unit}" if " " not in self.shown_unit else f"{sign} / ({unit})"
+        """Return the column heading ``quantity/unit``."""
+        return heading(self.symbol.in_layout(layout), self.shown_unit, layout)
 
 
 def _sub(letter: str, index: str, text: str | None = None) -> Symbol:
@@ -103,10 +99,11 @@ def _sub(letter: str, index: str, text: str | None = None) -> Symbol:
 
 def _activation(letter: str, ascii_index: str = "") -> Symbol:
     """Build Δ‡X, written ΔX‡ as kineticists do."""
+    lowered = f"<sub><i>{ascii_index}</i></sub>" if ascii_index else ""
     return Symbol(
         ascii=f"D{letter}{ascii_index}++",
         text=f"Δ{letter}{'ₚ' if ascii_index == 'p' else ''}‡",
-        html=f"Δ<i>{letter}</i>{f'<sub><i>{ascii_index}</i></sub>' if ascii_index else ''}<sup>‡</sup>",
+        html=f"Δ<i>{letter}</i>{lowered}<sup>‡</sup>",
         latex=rf"\Delta {letter}{f'_{{{ascii_index}}}' if ascii_index else ''}^\ddagger",
     )
 

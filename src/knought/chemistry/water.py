@@ -16,11 +16,12 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from knought.arrays import FloatArray
 from knought.errors import InputError
 
 if TYPE_CHECKING:
     from numpy.typing import ArrayLike
+
+    from knought.arrays import FloatArray
 
 __all__ = [
     "COLDEST",

@@ -8,10 +8,9 @@ from typing import TYPE_CHECKING
 from knought.errors import Caveat, InputError
 from knought.fitting.fit import Choices, fit_chosen, resolve
 from knought.fitting.observations import observe
-from knought.fitting.open_fit import OpenFit, fit_open
-from knought.fitting.surface_fit import SurfaceFit, fit_surface
+from knought.fitting.surface_fit import SurfaceFit
 from knought.fitting.verdicts import verdicts
-from knought.laws.salt import OPEN, SALT_LAWS
+from knought.laws.salt import SALT_LAWS
 from knought.laws.temperature import TEMPERATURE_LAWS
 
 if TYPE_CHECKING:

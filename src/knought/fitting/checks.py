@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, NoReturn
 
 import numpy as np
 
@@ -13,7 +13,7 @@ if TYPE_CHECKING:
     from knought.fitting.observations import Observations
     from knought.laws.salt import SaltLaw
     from knought.laws.surface import Surface
-    from knought.numerics.least_squares import RankDeficiency
+    from knought.numerics.least_squares import RankDeficiencyError
 
 __all__ = [
     "design_caveats",
@@ -85,8 +85,8 @@ def _require_salt_levels(seen: Observations, law: SaltLaw, *, charges_given: boo
         )
 
 
-def refuse_undetermined(found: RankDeficiency, surface: Surface) -> InputError:
-    """Return the error that says which parameters the runs cannot tell apart.
+def refuse_undetermined(found: RankDeficiencyError, surface: Surface) -> NoReturn:
+    """Refuse with the parameters that the runs cannot tell apart.
 
     Parameters
     ----------
@@ -94,15 +94,20 @@ def refuse_undetermined(found: RankDeficiency, surface: Surface) -> InputError:
         What the least-squares core found.
     surface
         The surface whose parameters these are.
+
+    Raises
+    ------
+    InputError
+        Always.
     """
     size = np.abs(found.direction) / np.max(np.abs(found.direction))
     involved = [name for name, share in zip(surface.parameters, size, strict=False) if share > 0.1]
     which = " from ".join(involved[:2]) if len(involved) > 1 else ", ".join(involved)
-    return InputError(
+    raise InputError(
         f"the runs cannot tell {which} apart" if len(involved) > 1 else f"nothing fixes {which}",
         "ionic strength and temperature must not change together: measure at least two ionic "
         "strengths at one temperature and two temperatures at one ionic strength",
-    )
+    ) from found
 
 
 def design_caveats(seen: Observations, surface: Surface) -> tuple[Caveat, ...]:
@@ -160,7 +165,7 @@ def domain_caveats(seen: Observations, law: SaltLaw) -> tuple[Caveat, ...]:
     highest, limit = float(seen.I.max()), law.form.domain.upper
     if highest <= limit * (1 + 1e-9):
         return ()
-    outside = int(np.sum(seen.I > limit))
+    outside = int(np.sum(limit < seen.I))
     unit = "mol/kg" if law.form.basis == "molal" else "mol/L"
     return (
         Caveat(

@@ -8,12 +8,11 @@ from typing import TYPE_CHECKING, TypeAlias
 
 import numpy as np
 
-from knought.chemistry.quantities import Quantity
-from knought.numerics.quantiles import Histogram, Mixture
-
 if TYPE_CHECKING:
     from knought.arrays import FloatArray
+    from knought.chemistry.quantities import Quantity
     from knought.errors import Caveat
+    from knought.numerics.quantiles import Histogram, Mixture
     from knought.rounding import Layout
 
 __all__ = ["Estimate", "Number"]

@@ -142,9 +142,9 @@ def _no_salt_effect(seen: Observations) -> Caveat:
         )
     return Caveat(
         "one-ionic-strength",
-        f"All runs are at I = {seen.ionic_strength_levels[0]:.3g} mol/L: rate constants hold there, "
-        "and neither k at I → 0 nor the charge product can be found. Measure at three more ionic "
-        "strengths at least, or give the charges of the reactants.",
+        f"All runs are at I = {seen.ionic_strength_levels[0]:.3g} mol/L: rate constants hold "
+        "there, and neither k at I → 0 nor the charge product can be found. Measure at three more "
+        "ionic strengths at least, or give the charges of the reactants.",
     )
 
 

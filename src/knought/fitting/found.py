@@ -7,7 +7,6 @@ from the same joint distribution.
 
 from __future__ import annotations
 
-from collections.abc import Mapping
 from dataclasses import dataclass, replace
 from functools import cached_property
 from types import MappingProxyType
@@ -24,6 +23,8 @@ from knought.laws.surface import Rows
 from knought.numerics.quantiles import Histogram, Mixture
 
 if TYPE_CHECKING:
+    from collections.abc import Mapping
+
     from numpy.typing import ArrayLike
     from uncertainties import AffineScalarFunc
 
@@ -275,7 +276,7 @@ class Found:
 
     @cached_property
     def effective_u(self) -> FloatArray:
-        """u of ln k of each run with its own errors of T and I carried along, ``(n,)``.
+        """U of ln k of each run with its own errors of T and I carried along, ``(n,)``.
 
         Multiplied by the scatter's factor where that is the headline.
         """

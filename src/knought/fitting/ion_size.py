@@ -149,6 +149,11 @@ def _optimum(
 
     The linear parameters are solved for exactly at every å (variable projection), so that lmfit
     searches along one dimension.
+
+    Raises
+    ------
+    InputError
+        If lmfit finds no optimum.
     """
     import lmfit
 

@@ -103,7 +103,13 @@ def fit_in_k(
 
 
 def _gauss_newton(rows: Rows, k: FloatArray, u: FloatArray, start: FloatArray) -> LinearFit:
-    """Minimise Σ((k - exp(offset + X θ))/u)²; the last linear problem carries the covariance."""
+    """Minimise Σ((k - exp(offset + X θ))/u)²; the last linear problem carries the covariance.
+
+    Raises
+    ------
+    InputError
+        If it does not converge.
+    """
     theta = start
     model = np.exp(rows.offset + rows.rows @ theta)
     misfit = float(np.sum(((k - model) / u) ** 2))

@@ -8,7 +8,6 @@ exact quantiles of the resulting mixture.
 
 from __future__ import annotations
 
-from collections.abc import Mapping
 from dataclasses import dataclass, replace
 from functools import cached_property
 from typing import TYPE_CHECKING
@@ -19,21 +18,23 @@ from knought.arrays import FloatArray, IndexArray, frozen
 from knought.chemistry.quantities import quantity
 from knought.fitting import checks
 from knought.fitting.distribution import ParameterDistribution
-from knought.fitting.estimate import Estimate
 from knought.fitting.found import Found
 from knought.fitting.observations import Observations, observe
 from knought.fitting.scatter import Scatter, judge_scatter
 from knought.fitting.surface_fit import DEFAULT_REFERENCE_TEMPERATURE, DEFAULT_TEMPERATURE_LAW
+from knought.fitting.weights import settle_weights
 from knought.laws.open_law import DEFAULT_PRIORS, OpenGrid, Priors, open_grid
 from knought.laws.surface import Surface
 from knought.laws.temperature import temperature_law as named_temperature_law
-from knought.numerics.least_squares import RankDeficiency, solve
-from knought.fitting.weights import settle_weights
+from knought.numerics.least_squares import RankDeficiencyError, solve
 from knought.numerics.marginal import CellSolutions, CellSolver
 from knought.numerics.quantiles import Histogram
 
 if TYPE_CHECKING:
+    from collections.abc import Mapping
+
     from knought.errors import Caveat
+    from knought.fitting.estimate import Estimate
     from knought.fitting.scatter import ScatterChoice
     from knought.measurement.table import RateTable
 
@@ -77,7 +78,8 @@ class OpenFit(Found):
         ):
             distinct, where = np.unique(nodes, return_inverse=True)
             weights = np.bincount(where, weights=self.cell_weights)
-            found[name] = self._estimate(quantity(name), Histogram(distinct, weights, bounds))
+            histogram = Histogram(distinct, np.asarray(weights, dtype=float), bounds)
+            found[name] = self._estimate(quantity(name), histogram)
         return found
 
     @cached_property
@@ -256,8 +258,8 @@ def _settled_u(
             ),
             centre,
         )[1:]
-    except RankDeficiency as found:
-        raise checks.refuse_undetermined(found, centre) from found
+    except RankDeficiencyError as found:
+        checks.refuse_undetermined(found, centre)
 
 
 def scale_nodes(chi_square: float, degrees_of_freedom: int) -> FloatArray:
@@ -279,7 +281,8 @@ def scale_nodes(chi_square: float, degrees_of_freedom: int) -> FloatArray:
     nu = degrees_of_freedom
     ends = chi_square / chdtri(nu, np.array([_SCALE_TAIL, 1 - _SCALE_TAIL]))
     # A fit that happens to leave no residual still has the rounding of the numbers it was given.
-    return np.geomspace(*np.sqrt(np.maximum(ends, 1e-24)), _SCALE_NODES)
+    low, high = (float(end) for end in np.sqrt(np.maximum(ends, 1e-24)))
+    return np.geomspace(low, high, _SCALE_NODES)
 
 
 def _collected(

@@ -19,7 +19,13 @@ from knought.fitting.weights import settle_weights
 from knought.laws.salt import salt_law as named_salt_law
 from knought.laws.surface import Surface
 from knought.laws.temperature import temperature_law as named_temperature_law
-from knought.numerics.least_squares import LinearFit, ManyFits, RankDeficiency, solve, solve_many
+from knought.numerics.least_squares import (
+    LinearFit,
+    ManyFits,
+    RankDeficiencyError,
+    solve,
+    solve_many,
+)
 
 if TYPE_CHECKING:
     from numpy.typing import ArrayLike
@@ -172,8 +178,8 @@ def _solve_surface(
     target = seen.ln_k - rows.offset
     try:
         return settle_weights(seen, lambda u: solve(rows.rows, target, u), surface)
-    except RankDeficiency as found:
-        raise checks.refuse_undetermined(found, surface) from found
+    except RankDeficiencyError as found:
+        checks.refuse_undetermined(found, surface)
 
 
 @dataclass(frozen=True, eq=False)
@@ -281,8 +287,8 @@ def fit_many(
     rows = surface.ln_k(T, first.ionic_strength)
     try:
         many: ManyFits = solve_many(rows.rows, np.log(k) - rows.offset, u_k / k)
-    except RankDeficiency as found:
-        raise checks.refuse_undetermined(found, surface) from found
+    except RankDeficiencyError as found:
+        checks.refuse_undetermined(found, surface)
     return ManySurfaceFits(
         surface.parameters,
         many.parameters,

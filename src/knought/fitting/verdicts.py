@@ -18,10 +18,10 @@ if TYPE_CHECKING:
     from knought.fitting.surface_fit import SurfaceFit
     from knought.measurement.table import RateTable
 
-__all__ = ["integers_in", "verdicts"]
+__all__ = ["NOT_DESCRIBED", "integers_in", "verdicts"]
 
 #: A law whose χ² has a probability below this does not describe the data.
-_NOT_DESCRIBED = 1e-3
+NOT_DESCRIBED = 1e-3
 
 
 def verdicts(
@@ -78,7 +78,7 @@ def _scatter_verdict(headline: Found) -> list[Caveat]:
 def _misfit_verdict(headline: Found, laws: Sequence[SurfaceFit]) -> list[Caveat]:
     tried = [headline.scatter, *(law.scatter for law in laws)]
     chances = [each.probability for each in tried if not math.isnan(each.probability)]
-    if not chances or max(chances) >= _NOT_DESCRIBED:
+    if not chances or max(chances) >= NOT_DESCRIBED:
         return []
     return [
         Caveat(
@@ -139,7 +139,7 @@ def _agreement_verdict(laws: Sequence[SurfaceFit]) -> list[Caveat]:
         law
         for law in laws
         if law.surface.salt_law.screens_charges
-        and not (law.scatter.stated and law.scatter.probability < _NOT_DESCRIBED)
+        and not (law.scatter.stated and law.scatter.probability < NOT_DESCRIBED)
     ]
     found = []
     for name, words in (("rate_constant", "k°"), ("charge_product", "the charge product")):

@@ -100,7 +100,7 @@ class SaltLaw:
         return "kg mol^-1" if molal else "L mol^-1"
 
     def columns(self, T: FloatArray, I: FloatArray) -> list[FloatArray]:
-        """What each parameter is multiplied by in ln k.
+        """Return what each parameter is multiplied by in ln k.
 
         Parameters
         ----------
@@ -123,7 +123,7 @@ class SaltLaw:
         return self._columns(lambda form: form.screening_dI(I, T), _abscissa("_dI", I, T))
 
     def offset(self, T: FloatArray, I: FloatArray) -> FloatArray:
-        """Part of ln k that no parameter multiplies: the screening of given charges."""
+        """Return the part of ln k that no parameter multiplies: the screening of given charges."""
         return self._offset(T, lambda form: form.screening(I, T))
 
     def offset_dT(self, T: FloatArray, I: FloatArray) -> FloatArray:
@@ -175,11 +175,11 @@ _ALL = (
         fits_charge=False,
         fits_interaction=True,
     ),
-    SaltLaw("limiting", "Debye–Hückel limiting law", LimitingForm()),
+    SaltLaw("limiting", "limiting law", LimitingForm()),
     SaltLaw("guntelberg", "Güntelberg", GuntelbergForm()),
-    SaltLaw("extended", "extended Debye–Hückel", ExtendedForm()),
+    SaltLaw("extended", "extended", ExtendedForm()),
     SaltLaw("davies", "Davies", DaviesForm()),
-    SaltLaw("sit", "specific ion interaction (SIT)", SITForm(), fits_interaction=True),
+    SaltLaw("sit", "SIT", SITForm(), fits_interaction=True),
     SaltLaw("pitzer", "Pitzer form", PitzerForm(), fits_interaction=True),
 )
 

@@ -24,12 +24,13 @@ from typing import TYPE_CHECKING, ClassVar, Protocol
 
 import numpy as np
 
-from knought.arrays import FloatArray
 from knought.chemistry.constants import GAS_CONSTANT as R
 from knought.errors import InputError
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
+
+    from knought.arrays import FloatArray
 
 __all__ = [
     "TEMPERATURE_LAWS",
@@ -57,28 +58,39 @@ class TemperatureLaw(Protocol):
     """
 
     @property
-    def name(self) -> str: ...  # noqa: D102
+    def name(self) -> str:
+        """Name in commands and records."""
+        ...
+
     @property
-    def words(self) -> str: ...  # noqa: D102
+    def words(self) -> str:
+        """Name for people."""
+        ...
+
     @property
-    def parameters(self) -> tuple[str, ...]: ...  # noqa: D102
+    def parameters(self) -> tuple[str, ...]:
+        """Names of the parameters."""
+        ...
+
     @property
-    def equation(self) -> str: ...  # noqa: D102
+    def equation(self) -> str:
+        """The law in one line."""
+        ...
 
     def offset(self, T: FloatArray, T_ref: float) -> FloatArray:
-        """Part of ln k that no parameter multiplies, shape of `T`."""
+        """Return the part of ln k that no parameter multiplies, shape of `T`."""
         ...
 
     def offset_dT(self, T: FloatArray, T_ref: float) -> FloatArray:
-        """Its derivative with respect to T."""
+        """Return its derivative with respect to T."""
         ...
 
     def columns(self, T: FloatArray, T_ref: float) -> list[FloatArray]:
-        """What each parameter is multiplied by, each of the shape of `T`."""
+        """Return what each parameter is multiplied by, each of the shape of `T`."""
         ...
 
     def columns_dT(self, T: FloatArray, T_ref: float) -> list[FloatArray]:
-        """Their derivatives with respect to T."""
+        """Return their derivatives with respect to T."""
         ...
 
 
@@ -109,7 +121,7 @@ class _CentredLaw:
     parameters: ClassVar[tuple[str, ...]] = ("ln_rate_constant",)
 
     def offset(self, T: FloatArray, T_ref: float) -> FloatArray:
-        """Part of ln k that no parameter multiplies, shape of `T`."""
+        """Return the part of ln k that no parameter multiplies, shape of `T`."""
         total = np.zeros_like(T)
         if self._eyring_offset:
             total = total + np.log(T / T_ref)
@@ -118,7 +130,7 @@ class _CentredLaw:
         return total
 
     def offset_dT(self, T: FloatArray, T_ref: float) -> FloatArray:
-        """Its derivative with respect to T."""
+        """Return its derivative with respect to T."""
         total = np.zeros_like(T)
         if self._eyring_offset:
             total = total + 1.0 / T
@@ -127,12 +139,12 @@ class _CentredLaw:
         return total
 
     def columns(self, T: FloatArray, T_ref: float) -> list[FloatArray]:
-        """What each parameter is multiplied by, each of the shape of `T`."""
+        """Return what each parameter is multiplied by, each of the shape of `T`."""
         every = [np.ones_like(T), _energy(T, T_ref), _curvature(T, T_ref)]
         return every[: len(self.parameters)]
 
     def columns_dT(self, T: FloatArray, T_ref: float) -> list[FloatArray]:
-        """Their derivatives with respect to T."""
+        """Return their derivatives with respect to T."""
         every = [np.zeros_like(T), _energy_dT(T), _curvature_dT(T, T_ref)]
         return every[: len(self.parameters)]
 

@@ -24,7 +24,7 @@ import numpy as np
 
 from knought.arrays import FloatArray, frozen
 
-__all__ = ["LinearFit", "ManyFits", "RankDeficiency", "solve", "solve_many"]
+__all__ = ["LinearFit", "ManyFits", "RankDeficiencyError", "solve", "solve_many"]
 
 #: Singular values below this fraction of the largest (columns scaled to unit length) mean that the
 #: observations cannot tell two combinations of parameters apart.
@@ -34,7 +34,7 @@ RANK_TOLERANCE = 1e-11
 _LARGEST_WEIGHT_RATIO = 1e6
 
 
-class RankDeficiency(Exception):  # noqa: N818 - a finding about the data, told in words further up
+class RankDeficiencyError(Exception):
     """The observations cannot determine all parameters.
 
     Parameters
@@ -117,7 +117,7 @@ def solve(
 
     Raises
     ------
-    RankDeficiency
+    RankDeficiencyError
         If the observations and priors leave a combination of parameters undetermined.
     """
     n, p = design.shape
@@ -154,18 +154,30 @@ def solve(
 
 
 def _column_scale(matrix: FloatArray) -> FloatArray:
-    """Powers of two near the columns' lengths: dividing by them rounds nothing."""
+    """Return powers of two near the columns' lengths: dividing by them rounds nothing.
+
+    Raises
+    ------
+    RankDeficiencyError
+        If a column is zero.
+    """
     length = np.linalg.norm(matrix, axis=0)
     if not np.all(length > 0):
-        raise RankDeficiency(np.where(length > 0, 0.0, 1.0), np.inf)
+        raise RankDeficiencyError(np.where(length > 0, 0.0, 1.0), np.inf)
     return np.asarray(np.exp2(np.round(np.log2(length))))
 
 
 def _condition(upper: FloatArray, parameters: int) -> float:
-    """Condition number of the scaled design; raises where a direction is undetermined."""
+    """Return the condition number of the scaled design.
+
+    Raises
+    ------
+    RankDeficiencyError
+        If a direction is undetermined.
+    """
     _, singular, right = np.linalg.svd(upper)
     if singular[-1] <= RANK_TOLERANCE * singular[0]:
-        raise RankDeficiency(right[-1][:parameters], float(np.inf))
+        raise RankDeficiencyError(right[-1][:parameters], float(np.inf))
     return float(singular[0] / singular[-1])
 
 
@@ -253,7 +265,7 @@ def solve_many(design: FloatArray, observed: FloatArray, uncertainties: FloatArr
 
     Raises
     ------
-    RankDeficiency
+    RankDeficiencyError
         If the design leaves a combination of parameters undetermined.
     """
     n, p = design.shape

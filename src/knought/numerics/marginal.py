@@ -183,7 +183,7 @@ class CellSolver:
         )
 
     def _starting_point(self, observed: FloatArray) -> FloatArray:
-        """A least-squares solution of the middle cell with its priors, ``(m, p + q)``."""
+        """Solve the middle cell with its priors by least squares, ``(m, p + q)``."""
         middle = int(np.argmax(self._log_prior))
         matrix = np.concatenate([self._whitened[middle], self._priors])
         target = np.concatenate(

@@ -9,7 +9,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from knought.rounding import Rounded, rounded
+from knought.rounding import Rounded, heading, rounded, unit_text
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -32,6 +32,7 @@ __all__ = [
     "quantity_column",
     "symbol_cell",
     "text_column",
+    "unit_cell",
     "words",
 ]
 
@@ -59,15 +60,30 @@ class Cell:
 
 @dataclass(frozen=True)
 class Column:
-    """One column: its heading by layout, and whether its cells are numbers."""
+    """One column: what heads it by layout, its unit, and whether its cells are numbers.
 
-    headings: tuple[tuple[Layout, str], ...]
+    Attributes
+    ----------
+    signs
+        Words or a quantity's sign, by layout; layouts not named fall back to ``"text"``.
+    unit
+        Unit of the numbers, ``"kJ mol^-1"``; ``"1"`` for none.
+    numeric
+        Whether cells are set to the right.
+    """
+
+    signs: tuple[tuple[Layout, str], ...]
+    unit: str = "1"
     numeric: bool = True
 
-    def heading(self, layout: Layout = "text") -> str:
-        """Return the heading in `layout`."""
-        by_layout = dict(self.headings)
+    def sign(self, layout: Layout = "text") -> str:
+        """Return what heads the column, without its unit."""
+        by_layout = dict(self.signs)
         return by_layout.get(layout, by_layout["text"])
+
+    def heading(self, layout: Layout = "text") -> str:
+        """Return the heading ``quantity/unit``."""
+        return heading(self.sign(layout), self.unit, layout)
 
 
 @dataclass(frozen=True)
@@ -110,7 +126,9 @@ def number_column(title: str) -> Column:
 
 def quantity_column(what: Quantity) -> Column:
     """Return a column of numbers headed by a quantity and its unit."""
-    return Column(tuple((layout, what.heading(layout)) for layout in _LAYOUTS))
+    return Column(
+        tuple((layout, what.symbol.in_layout(layout)) for layout in _LAYOUTS), what.shown_unit
+    )
 
 
 def words(text: str) -> Cell:
@@ -175,6 +193,12 @@ def interval_cell(estimate: Estimate, coverage: float = 0.95) -> Cell:
     return Cell(f"{low!r} {high!r}", texts)
 
 
+def unit_cell(estimate: Estimate) -> Cell:
+    """Return the shown unit of an estimate."""
+    unit = estimate.quantity.shown_unit
+    return Cell(unit, tuple((layout, unit_text(unit, layout)) for layout in _LAYOUTS))
+
+
 def _like(value: float, pattern: Rounded) -> Rounded:
     """Round `value` to the decimal place and power of ten of `pattern`."""
     decimals = len(pattern.value.partition(".")[2])
@@ -200,8 +224,12 @@ def plain_lines(table: Table, layout: Layout = "text", width: int = 100) -> list
     """
     import textwrap
 
-    grid = [[column.heading(layout) for column in table.columns]]
-    grid += [[cell.written(layout) for cell in row] for row in table.rows]
+    # Sign and unit stand on two lines, so that a heading is seldom wider than its numbers.
+    units = [heading("", column.unit, layout).strip() for column in table.columns]
+    heads = [[column.sign(layout) for column in table.columns], units]
+    if not any(units):
+        heads.pop()
+    grid = heads + [[cell.written(layout) for cell in row] for row in table.rows]
     widths = [max(len(row[j]) for row in grid) for j in range(len(table.columns))]
     lines = []
     for i, row in enumerate(grid):
@@ -210,7 +238,7 @@ def plain_lines(table: Table, layout: Layout = "text", width: int = 100) -> list
             for text, size, column in zip(row, widths, table.columns, strict=True)
         ]
         lines.append("  ".join(pieces).rstrip())
-        if i == 0:
+        if i == len(heads) - 1:
             lines.append("  ".join(("-" if layout == "ascii" else "─") * size for size in widths))
     for note in table.notes:
         lines += textwrap.wrap(note, width)

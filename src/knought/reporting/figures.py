@@ -14,12 +14,13 @@ import numpy as np
 from knought.chemistry.constants import LN10
 from knought.chemistry.debye_huckel import debye_huckel
 from knought.chemistry.quantities import quantity
+from knought.chemistry.water import COLDEST, HOTTEST
 from knought.reporting.style import INK, MUTED, celsius_axis, marker, padded, sequential
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
 
-    from knought.arrays import FloatArray
+    from knought.arrays import BoolArray, FloatArray
     from knought.fitting.assess import Assessment
     from knought.fitting.found import Found
     from knought.fitting.observations import Observations
@@ -68,7 +69,7 @@ def temperature_dependence(assessment: Assessment, ax: Axes) -> Axes:
     ax.set_ylabel(_ln_k_label(assessment))
     celsius_axis(ax)
     if found.describes_salt:
-        ax.legend(title="$I$ / (mol L$^{-1}$)", loc="best", ncols=2 if len(levels) > 4 else 1)
+        ax.legend(title="$I$ / (mol$\\,$L$^{-1}$)", loc="best", ncols=2 if len(levels) > 4 else 1)
     return ax
 
 
@@ -115,7 +116,7 @@ def salt_effect(assessment: Assessment, ax: Axes) -> Axes:
         scale=1 / LN10,
     )
     ax.set_xlim(0.0, roots[-1])
-    ax.set_xlabel(r"$\sqrt{I\,/\,\mathrm{(mol\ L^{-1})}}$")
+    ax.set_xlabel(r"$\sqrt{I\,/\,(\mathrm{mol\,L^{-1}})}$")
     ax.set_ylabel(_ln_k_label(assessment).replace("ln", "lg", 1))
     ax.legend(title="$T$ / K", loc="best", ncols=2 if len(levels) > 4 else 1)
     return ax
@@ -142,7 +143,7 @@ def residuals_against(assessment: Assessment, what: str, ax: Axes) -> Axes:
     rows = np.flatnonzero(assessment.rates.used)
     x, label = {
         "temperature": (seen.T, "$T$ / K"),
-        "ionic_strength": (seen.ionic_strength, "$I$ / (mol L$^{-1}$)"),
+        "ionic_strength": (seen.ionic_strength, "$I$ / (mol$\\,$L$^{-1}$)"),
         "order": (rows + 1.0, "run, in order"),
     }[what]
     for level, style in ((0.0, "-"), (2.0, ":"), (-2.0, ":")):
@@ -203,15 +204,8 @@ def _points(
     found = assessment.headline
     rows = np.flatnonzero(assessment.rates.used)
     colours = sequential(max(level) + 1 if level else 1)
+    ax.errorbar(x, y, yerr=found.effective_u * scale, fmt="none", ecolor=INK, elinewidth=0.7)
     for i, row in enumerate(rows):
-        ax.errorbar(
-            [x[i]],
-            [y[i]],
-            yerr=[found.effective_u[i] * scale],
-            fmt="none",
-            ecolor=INK,
-            elinewidth=0.7,
-        )
         ax.plot(
             [x[i]],
             [y[i]],
@@ -231,24 +225,26 @@ def _level_of(values: FloatArray, levels: FloatArray) -> list[int]:
 
 
 def _spread(count: int) -> list[int]:
-    """Indices of at most ``_MOST_LINES`` levels, ends included."""
+    """Return indices of at most ``_MOST_LINES`` levels, ends included."""
     if count <= _MOST_LINES:
         return list(range(count))
     return sorted({int(i) for i in np.linspace(0, count - 1, _MOST_LINES).round()})
 
 
-def _allowed(found: Found, T: FloatArray) -> np.ndarray:  # type: ignore[type-arg]
-    """Which temperatures lie where the salt law knows water."""
+def _allowed(found: Found, T: FloatArray) -> BoolArray:
+    """Return which temperatures lie where the salt law knows water."""
     if not found.surface.salt_law.needs_water:
         return np.ones(len(T), dtype=bool)
-    return (T >= 273.15) & (T <= 373.15)
+    return np.asarray((T >= COLDEST) & (T <= HOTTEST))
 
 
 def _ln_k_label(assessment: Assessment) -> str:
     from knought.rounding import unit_text
 
     unit = quantity("measured_rate_constant", assessment.rates.order).shown_unit
-    return rf"ln ($k$ / ${unit_text(unit, 'latex')}$)"
+    written = unit_text(unit, "latex")
+    inner = f"({written})" if " " in unit else written
+    return rf"ln [$k\,/\,{inner}$]"
 
 
 def sources(observations: Observations) -> list[str]:

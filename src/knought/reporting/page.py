@@ -5,6 +5,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 if TYPE_CHECKING:
+    from knought.reporting.cells import Column
     from knought.reporting.report import Report
     from knought.rounding import Layout
 
@@ -27,7 +28,7 @@ def page(report: Report) -> str:
     from jinja2 import Environment, PackageLoader, StrictUndefined
     from markupsafe import Markup
 
-    from knought import __version__
+    from knought.version import __version__
 
     environment = Environment(
         loader=PackageLoader("knought.reporting", "templates"),
@@ -38,7 +39,7 @@ def page(report: Report) -> str:
     )
     drawn = [
         # Our own markup, in which matplotlib and the titles' writer have escaped all text.
-        (picture, Markup(report.inline(picture)))  # noqa: S704
+        (picture, Markup(report.inline(picture)))
         for picture in report.pictures
     ]
     return environment.get_template("report.html.j2").render(
@@ -50,6 +51,7 @@ def page(report: Report) -> str:
         methods=_methods(report),
         version=__version__,
         html=_html,
+        heading=_heading,
     )
 
 
@@ -63,8 +65,21 @@ def _html(texts: tuple[tuple[Layout, str], ...]) -> str:
 
     by_layout = dict(texts)
     if "html" in by_layout:
-        return Markup(by_layout["html"])  # noqa: S704
+        return Markup(by_layout["html"])
     return by_layout["text"]
+
+
+def _heading(column: Column) -> str:
+    """Sign and unit on two lines, so that a heading is seldom wider than its numbers."""
+    from markupsafe import Markup, escape
+
+    from knought.rounding import heading
+
+    unit = heading("", column.unit, "html").strip()
+    if not unit:
+        return escape(_html(column.signs))
+    # The sign is escaped or our own; units come from the registry.
+    return escape(_html(column.signs)) + Markup(f'<br><span class="unit">{unit}</span>')
 
 
 def _methods(report: Report) -> list[str]:

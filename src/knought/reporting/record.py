@@ -49,7 +49,7 @@ def record(
     seed
         Seed of everything random.
     """
-    from knought import __version__
+    from knought.version import __version__
 
     found = assessment.headline
     source = assessment.rates.source
@@ -164,7 +164,7 @@ def _law_record(found: Found) -> dict[str, Any]:
 
 
 def _both_standard_errors(found: SurfaceFit) -> dict[str, Any]:
-    """Standard errors of the linear parameters from u as given and from the scatter."""
+    """Return standard errors of the linear parameters from u as given and from the scatter."""
     names = found.distribution.names
     made = {}
     for label, errors in (

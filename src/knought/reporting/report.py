@@ -1,4 +1,4 @@
-"""One report: tables, figures and sentences of an assessment, from which page and files are made."""
+"""One report: tables, figures and sentences of an assessment; page and files come from it."""
 
 from __future__ import annotations
 
@@ -7,6 +7,7 @@ from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
 from knought.chemistry.quantities import quantity
+from knought.measurement.reading import account_lines
 from knought.reporting import figures, tables
 from knought.reporting.record import record_text
 from knought.reporting.sentences import charge_sentences, laws_sentence, runs_sentence
@@ -122,11 +123,16 @@ class Report:
 
     def inline(self, picture: Picture) -> str:
         """Return a picture as an SVG element whose points tell what they are."""
-        return inline_svg(picture.draw(), picture.name, picture.caption, self._point_titles)
+        return inline_svg(self.svg(picture), picture.name, picture.caption, self._point_titles)
 
     def svg(self, picture: Picture) -> str:
         """Return a picture as the text of an SVG file."""
-        return plain_svg(picture.draw(), picture.name)
+        return self._svg_texts[picture.name]
+
+    @cached_property
+    def _svg_texts(self) -> Mapping[str, str]:
+        """Every picture as SVG, drawn once for the page and the files."""
+        return {each.name: plain_svg(each.draw(), each.name) for each in self.pictures}
 
     @cached_property
     def _point_titles(self) -> Mapping[str, str]:
@@ -203,5 +209,4 @@ def _drawn(draw: Callable[[Figure], object], height: float) -> Figure:
     with mpl.rc_context(STYLE):
         figure = blank_figure(DOUBLE_COLUMN, height)
         draw(figure)
-        figure.canvas.draw()
     return figure

@@ -5,6 +5,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from knought.chemistry.quantities import quantity
+from knought.chemistry.species import parse_reactants
 from knought.fitting.open_fit import CHARGE_PRODUCTS, OpenFit
 from knought.reporting.cells import join_words
 from knought.rounding import unit_text
@@ -59,9 +60,18 @@ def laws_sentence(assessment: Assessment) -> str:
         text += f", {prior_sentence(found.grid.priors)}"
     text += "."
     if choices.charge_product is not None:
-        source = f"from {choices.reactants}" if choices.reactants else "given"
-        text += f" Charge product {choices.charge_product:g} ({source})."
+        source = f"from {written_reactants(choices.reactants)}" if choices.reactants else "given"
+        text += f" Charge product {_signed(choices.charge_product)} ({source})."
     return text
+
+
+def written_reactants(text: str) -> str:
+    """Return reactants with their charges raised, ``"A²⁻ + B⁻"``."""
+    parts = [
+        f"{number} {species}" if number > 1 else str(species)
+        for number, species in parse_reactants(text)
+    ]
+    return " + ".join(parts)
 
 
 def prior_sentence(priors: Priors) -> str:
@@ -90,9 +100,10 @@ def charge_sentences(found: Found) -> list[str]:
             (z for z, weight in weights.items() if weight >= _LISTED_WEIGHT),
             key=lambda z: -weights[z],
         )
-        listed = [f"{z}: {weights[z]:.2f}" for z in heavy]
+        listed = [f"{weights[z]:.2f} for {_signed(z)}" for z in heavy]
+        ends = f"{_signed(CHARGE_PRODUCTS[0])} to {_signed(CHARGE_PRODUCTS[-1])}"
         sentences.append(
-            f"Weights of integer charge products ({CHARGE_PRODUCTS[0]} to {CHARGE_PRODUCTS[-1]}, "
+            f"Weights of the integer charge products ({ends}, "
             f"alike before the data): {', '.join(listed)}."
         )
     shares = [f"{_PRIOR_WORDS[name]} {share:.0%}" for name, share in found.prior_share.items()]
@@ -102,3 +113,7 @@ def charge_sentences(found: Found) -> list[str]:
             f"it): {join_words(shares)}."
         )
     return sentences
+
+
+def _signed(number: float) -> str:
+    return f"{number:g}".replace("-", "−")

@@ -12,7 +12,18 @@ if TYPE_CHECKING:
 
     from knought.arrays import FloatArray
 
-__all__ = ["INK", "MUTED", "STYLE", "blank_figure", "celsius_axis", "sequential"]
+__all__ = [
+    "DOUBLE_COLUMN",
+    "INK",
+    "MUTED",
+    "SINGLE_COLUMN",
+    "STYLE",
+    "blank_figure",
+    "celsius_axis",
+    "marker",
+    "padded",
+    "sequential",
+]
 
 #: Text and frame; quieter text, grids and limits.
 INK = "#1b1f24"
@@ -21,7 +32,7 @@ MUTED = "#6b7280"
 #: Single- and double-column width of journals, in inches (86 mm and 178 mm).
 SINGLE_COLUMN, DOUBLE_COLUMN = 86 / 25.4, 178 / 25.4
 
-STYLE: dict[str, Any] = {
+STYLE: Any = {
     "font.family": "sans-serif",
     "font.sans-serif": ["DejaVu Sans"],
     "font.size": 8.0,
@@ -40,7 +51,6 @@ STYLE: dict[str, Any] = {
     "legend.title_fontsize": 7.5,
     "lines.linewidth": 1.1,
     "lines.markersize": 4.5,
-    "mathtext.default": "regular",
     "svg.fonttype": "path",
     "pdf.fonttype": 42,
 }

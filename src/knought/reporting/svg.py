@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import io
 import re
+from collections import Counter
 from typing import TYPE_CHECKING
 
 if TYPE_CHECKING:
@@ -40,13 +41,13 @@ def plain_svg(figure: Figure, salt: str) -> str:
     return buffer.getvalue()
 
 
-def inline_svg(figure: Figure, salt: str, alternative: str, titles: Mapping[str, str]) -> str:
-    """Return a figure as an ``<svg>`` element for a page.
+def inline_svg(svg: str, salt: str, alternative: str, titles: Mapping[str, str]) -> str:
+    """Return an SVG file as an ``<svg>`` element for a page.
 
     Parameters
     ----------
-    figure
-        The figure.
+    svg
+        The text of the file, as :func:`plain_svg` makes it.
     salt
         Prefix of every id, so that figures on one page do not share any.
     alternative
@@ -56,7 +57,7 @@ def inline_svg(figure: Figure, salt: str, alternative: str, titles: Mapping[str,
     """
     from defusedxml.ElementTree import fromstring
 
-    root: Element = fromstring(plain_svg(figure, salt))
+    root: Element = fromstring(svg)
     for element in list(root):
         if element.tag == f"{{{_SVG}}}metadata":
             root.remove(element)
@@ -70,7 +71,7 @@ def inline_svg(figure: Figure, salt: str, alternative: str, titles: Mapping[str,
 
 
 def _title_groups(root: Element, titles: Mapping[str, str]) -> None:
-    from xml.etree.ElementTree import SubElement  # noqa: S405 - makes elements, parses nothing
+    from xml.etree.ElementTree import SubElement
 
     for group in root.iter(f"{{{_SVG}}}g"):
         text = titles.get(group.get("id", ""))
@@ -83,10 +84,14 @@ def _title_groups(root: Element, titles: Mapping[str, str]) -> None:
 
 
 def _salt_ids(root: Element, salt: str) -> None:
+    given: Counter[str] = Counter()
     for element in root.iter():
         for name, value in list(element.attrib.items()):
             if name == "id":
-                element.set(name, f"{salt}-{value}")
+                # A run stands in several panels of one figure: count its later appearances.
+                given[value] += 1
+                again = f"-{given[value]}" if given[value] > 1 else ""
+                element.set(name, f"{salt}-{value}{again}")
             elif name in {"href", f"{{{_XLINK}}}href"} and value.startswith("#"):
                 element.set(name, f"#{salt}-{value[1:]}")
             elif "url(#" in value:
@@ -94,7 +99,7 @@ def _salt_ids(root: Element, salt: str) -> None:
 
 
 def _written(root: Element) -> str:
-    from xml.etree.ElementTree import register_namespace, tostring  # noqa: S405 - writes only
+    from xml.etree.ElementTree import register_namespace, tostring
 
     register_namespace("", _SVG)
     register_namespace("xlink", _XLINK)

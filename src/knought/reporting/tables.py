@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import math
-from dataclasses import replace
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -11,8 +10,10 @@ import numpy as np
 from knought.chemistry.quantities import quantity
 from knought.fitting.open_fit import OpenFit
 from knought.fitting.surface_fit import SurfaceFit
+from knought.fitting.verdicts import NOT_DESCRIBED
 from knought.reporting.cells import (
     Cell,
+    Column,
     Table,
     estimate_cells,
     interval_cell,
@@ -22,12 +23,13 @@ from knought.reporting.cells import (
     quantity_column,
     symbol_cell,
     text_column,
+    unit_cell,
     words,
 )
 
 if TYPE_CHECKING:
+    from knought.arrays import FloatArray
     from knought.fitting.assess import Assessment
-    from knought.fitting.estimate import Estimate
     from knought.fitting.found import Found
 
 __all__ = [
@@ -104,7 +106,7 @@ def meaning_of_uncertainty(found: Found) -> str:
     return f"u is a standard uncertainty, {found.includes}. {coverage}."
 
 
-def _parameter_columns() -> tuple:  # type: ignore[type-arg]
+def _parameter_columns() -> tuple[Column, ...]:
     return (
         text_column("quantity"),
         text_column("symbol"),
@@ -128,25 +130,10 @@ def _parameter_rows(found: Found) -> tuple[tuple[Cell, ...], ...]:
                 symbol_cell(estimate.quantity.symbol, name),
                 *estimate_cells(estimate),
                 interval_cell(estimate),
-                _unit_cell(estimate),
+                unit_cell(estimate),
             )
         )
     return tuple(rows)
-
-
-def _unit_cell(estimate: Estimate) -> Cell:
-    from knought.rounding import unit_text
-
-    unit = estimate.quantity.shown_unit
-    return Cell(
-        unit,
-        (
-            ("text", unit_text(unit)),
-            ("ascii", unit_text(unit, "ascii")),
-            ("html", unit_text(unit, "html")),
-            ("latex", unit_text(unit, "latex")),
-        ),
-    )
 
 
 def working_table(assessment: Assessment) -> Table | None:
@@ -172,7 +159,7 @@ def working_table(assessment: Assessment) -> Table | None:
         tuple(columns),
         tuple(
             (
-                words("→ 0") if I == 0 else number(float(I), digits=3),
+                words("→ 0") if I == 0 else number(float(f"{I:.3g}")),
                 *(pair_cell(estimates[name]) for name in names),
             )
             for I, estimates in zip(levels, at, strict=True)
@@ -185,15 +172,15 @@ def working_table(assessment: Assessment) -> Table | None:
     )
 
 
-def _spread(levels: np.ndarray) -> np.ndarray:  # type: ignore[type-arg]
+def _spread(levels: FloatArray) -> FloatArray:
     if len(levels) <= _MOST_CONDITIONS:
         return levels
     chosen = np.linspace(0, len(levels) - 1, _MOST_CONDITIONS).round().astype(int)
-    return levels[chosen]
+    return np.asarray(levels[chosen])
 
 
 def laws_table(assessment: Assessment) -> Table:
-    """Return what every named salt law would have answered: does the conclusion survive?"""
+    """Return what every named salt law would have answered."""
     headline = assessment.headline
     order = headline.observations.order
     stated = headline.scatter.stated
@@ -204,8 +191,7 @@ def laws_table(assessment: Assessment) -> Table:
     for law in assessment.laws:
         difference = "–" if math.isnan(law.aicc) else f"{law.aicc - lowest:.1f}"
         chosen = isinstance(headline, SurfaceFit) and law.salt_law == headline.salt_law
-        remark = "headline" if chosen else _law_remark(law)
-        rows.append(_law_row(law, remark, difference))
+        rows.append(_law_row(law, "headline" if chosen else _law_remark(law), difference))
     notes = [
         "± is one standard uncertainty of that law alone, as if it were known to be right. "
         "The law 'no salt effect' gives k in the runs' own medium."
@@ -215,23 +201,19 @@ def laws_table(assessment: Assessment) -> Table:
         for refusal in assessment.refused
         if refusal.temperature_law == assessment.temperature_law
     ]
-    rate = replace(quantity("rate_constant", order))
+    columns = [
+        text_column("salt law"),
+        quantity_column(quantity("rate_constant", order)),
+        quantity_column(quantity("charge_product")),
+    ]
+    if "activation_energy" in headline.parameters:
+        columns.append(quantity_column(quantity("activation_energy")))
+    columns += [number_column("χ²/ν"), number_column("p")] if stated else [number_column("s(ln k)")]
+    columns += [number_column("ΔAICc"), text_column("remark")]
     return Table(
         "laws",
         "Does the conclusion survive another salt law?",
-        (
-            text_column("salt law"),
-            quantity_column(rate),
-            quantity_column(quantity("charge_product")),
-            *(
-                (quantity_column(quantity("activation_energy")),)
-                if "activation_energy" in headline.parameters
-                else ()
-            ),
-            number_column("χ²/ν" if stated else "s(ln k)"),
-            number_column("ΔAICc"),
-            text_column("remark"),
-        ),
+        tuple(columns),
         tuple(rows),
         tuple(notes),
     )
@@ -240,26 +222,41 @@ def laws_table(assessment: Assessment) -> Table:
 def _law_row(found: Found, remark: str, difference: str) -> tuple[Cell, ...]:
     parameters = found.parameters
     energy = parameters.get("activation_energy")
-    misfit = found.scatter.reduced_chi_square if found.scatter.stated else found.scatter.birge_ratio
     return (
         words(found.surface.salt_law.words),
         pair_cell(parameters["rate_constant"]),
         pair_cell(parameters.get("charge_product")),
         *((pair_cell(energy),) if energy is not None else ()),
-        words("–") if math.isnan(misfit) else number(misfit, digits=3),
+        *_misfit_cells(found),
         words(difference),
         words(remark),
     )
 
 
+def _misfit_cells(found: Found) -> tuple[Cell, ...]:
+    """Return χ²/ν and its probability where u is stated, else the standard deviation of ln k."""
+    scatter = found.scatter
+    misfit = scatter.reduced_chi_square if scatter.stated else scatter.birge_ratio
+    shown = words("–") if math.isnan(misfit) else number(float(f"{misfit:.3g}"))
+    if not scatter.stated:
+        return (shown,)
+    chance = scatter.probability
+    if math.isnan(chance):
+        return shown, words("–")
+    return shown, Cell(chance, (("text", f"{chance:.2f}" if chance >= 0.01 else _small(chance)),))
+
+
+def _small(chance: float) -> str:
+    return "< 1e-6" if chance < 1e-6 else f"{chance:.0e}"
+
+
 def _law_remark(law: SurfaceFit) -> str:
     remarks = []
     if law.scatter.kind == "enlarged":
-        remarks.append(f"does not fit: p = {law.scatter.probability:.1g}")
-    if any(caveat.code == "outside-domain" for caveat in law.caveats):
-        form = law.surface.salt_law.form
-        if form is not None:
-            remarks.append(f"used beyond I = {form.domain.upper:g}")
+        remarks.append("does not fit" if law.scatter.probability < NOT_DESCRIBED else "fits poorly")
+    form = law.surface.salt_law.form
+    if form is not None and any(caveat.code == "outside-domain" for caveat in law.caveats):
+        remarks.append(f"meant for I < {form.domain.upper:g}")
     return "; ".join(remarks)
 
 
@@ -270,9 +267,6 @@ def temperature_laws_table(assessment: Assessment) -> Table | None:
     rows = []
     for found in assessment.temperature_laws:
         parameters = found.parameters
-        misfit = (
-            found.scatter.reduced_chi_square if found.scatter.stated else found.scatter.birge_ratio
-        )
         rows.append(
             (
                 words(found.surface.temperature_law.words),
@@ -281,7 +275,7 @@ def temperature_laws_table(assessment: Assessment) -> Table | None:
                 pair_cell(parameters["activation_enthalpy"]),
                 pair_cell(parameters["activation_entropy"]),
                 pair_cell(parameters.get("activation_heat_capacity")),
-                words("–") if math.isnan(misfit) else number(misfit, digits=3),
+                *_misfit_cells(found),
             )
         )
     stated = assessment.headline.scatter.stated
@@ -296,7 +290,11 @@ def temperature_laws_table(assessment: Assessment) -> Table | None:
             quantity_column(quantity("activation_enthalpy")),
             quantity_column(quantity("activation_entropy")),
             quantity_column(quantity("activation_heat_capacity")),
-            number_column("χ²/ν" if stated else "s(ln k)"),
+            *(
+                [number_column("χ²/ν"), number_column("p")]
+                if stated
+                else [number_column("s(ln k)")]
+            ),
         ),
         tuple(rows),
     )
@@ -313,7 +311,7 @@ def runs_table(assessment: Assessment) -> Table:
     for i, run in enumerate(rates.run):
         conditions = [words(run), number(float(rates.T[i]), decimals=2)]
         if rates.I is not None:
-            conditions.append(number(float(rates.I[i]), digits=4))
+            conditions.append(number(float(f"{rates.I[i]:.4g}")))
         u = None if rates.u_k is None else float(rates.u_k[i])
         digits = k.rounded(float(rates.k[i]), u)
         shown = Cell(

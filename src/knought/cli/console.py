@@ -1,0 +1,41 @@
+"""What subcommands share: saying text in a layout that the terminal can show."""
+
+from __future__ import annotations
+
+import sys
+from typing import TYPE_CHECKING
+
+if TYPE_CHECKING:
+    import argparse
+
+    from knought.rounding import Layout
+
+__all__ = ["add_format", "layout_of", "say"]
+
+
+def add_format(parser: argparse.ArgumentParser) -> None:
+    """Add ``--format`` to a subcommand."""
+    parser.add_argument(
+        "--format",
+        choices=("text", "ascii"),
+        default=None,
+        help="ascii for terminals without Unicode (found out by itself if not given)",
+    )
+
+
+def layout_of(options: argparse.Namespace) -> Layout:
+    """Return the layout that was asked for, or the one that the terminal can show."""
+    if options.format is not None:
+        chosen: Layout = options.format
+        return chosen
+    encoding = (sys.stdout.encoding or "ascii").lower().replace("-", "")
+    return "text" if encoding.startswith("utf") else "ascii"
+
+
+def say(text: str, layout: Layout = "text") -> None:
+    """Print `text` with one line break at its end, in ASCII where the layout is."""
+    if layout == "ascii":
+        from knought.reporting.summary import to_ascii
+
+        text = to_ascii(text)
+    print(text.rstrip("\n"))

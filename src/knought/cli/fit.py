@@ -1,0 +1,76 @@
+"""Fit a table of rate constants at several temperatures and ionic strengths.
+
+The table is CSV, TSV or XLSX with headers such as T/K, I/(mol/L), k/(L mol^-1 s^-1) and
+u(k)/(L mol^-1 s^-1); a dash reads cells pasted into the terminal.
+"""
+
+from __future__ import annotations
+
+import sys
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+from knought.cli.console import add_format, layout_of, say
+
+if TYPE_CHECKING:
+    import argparse
+
+    from knought.measurement.table import RateTable
+
+__all__ = ["HELP", "NAME", "add_arguments", "run"]
+
+NAME = "fit"
+HELP = "fit a table of rate constants"
+
+_TEMPERATURE_LAWS = "arrhenius, modified-arrhenius, eyring (default), eyring-cp, isothermal"
+_SALT_LAWS = "open (default), none, linear, limiting, guntelberg, extended, davies, sit, pitzer"
+
+
+def add_arguments(parser: argparse.ArgumentParser) -> None:
+    """Describe the arguments."""
+    parser.add_argument("table", metavar="TABLE", help="the table, or - for pasted cells")
+    parser.add_argument("--sheet", help="sheet of a spreadsheet, by name or number")
+    parser.add_argument("--temperature-law", metavar="LAW", help=_TEMPERATURE_LAWS)
+    parser.add_argument("--salt-law", metavar="LAW", help=_SALT_LAWS)
+    parser.add_argument(
+        "--reference-temperature", type=float, metavar="K", help="T_ref in K (298.15)"
+    )
+    parser.add_argument(
+        "--reactants",
+        metavar="TEXT",
+        help='what enters the rate-determining step, with charges: "A^2- + B^-"',
+    )
+    parser.add_argument("--json", metavar="FILE", help="also write the record as JSON")
+    add_format(parser)
+
+
+def run(options: argparse.Namespace) -> None:
+    """Read, assess, and say what was found."""
+    from knought.files import atomic_write_text
+    from knought.fitting.assess import assess
+    from knought.measurement.reading import account_lines
+    from knought.reporting.record import record_text
+    from knought.reporting.summary import summary
+
+    rates = _table(options)
+    assessment = assess(
+        rates,
+        temperature_law=options.temperature_law,
+        salt_law=options.salt_law,
+        reference_temperature=options.reference_temperature,
+        reactants=options.reactants,
+    )
+    layout = layout_of(options)
+    say("\n".join([*account_lines(rates), ""]), layout)
+    say("\n" + summary(assessment, layout), layout)
+    if options.json:
+        atomic_write_text(Path(options.json), record_text(assessment))
+        say(f"\nrecord: {options.json}", layout)
+
+
+def _table(options: argparse.Namespace) -> RateTable:
+    from knought.measurement.reading import read_rates, read_text
+
+    if options.table == "-":
+        return read_text(sys.stdin.read(), name="pasted cells")
+    return read_rates(Path(options.table), sheet=options.sheet)

@@ -1,0 +1,189 @@
+"""The front door: a file, or pasted cells, to a :class:`RateTable`.
+
+bytes → text grid with addresses → layout → parts of the columns → numbers → table. Each stage is a
+function of what the one before it made.
+"""
+
+from __future__ import annotations
+
+from itertools import islice
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+from knought.chemistry.uncertainty_words import parse_meaning
+from knought.errors import InputError, Problem
+from knought.files import sha256_of
+from knought.measurement.reading.build import built
+from knought.measurement.reading.columns import assigned
+from knought.measurement.reading.decimals import decimal_mark
+from knought.measurement.reading.delimited import (
+    DELIMITERS,
+    declared_delimiter,
+    delimited_rows,
+    unmarked,
+)
+from knought.measurement.reading.encoding import decoded
+from knought.measurement.reading.grid import TextGrid, packed
+from knought.measurement.reading.layout import SEARCHED_ROWS, find_layout
+from knought.measurement.reading.opening import open_bytes
+from knought.measurement.reading.values import read_values
+from knought.measurement.table import RateTable, Source
+
+if TYPE_CHECKING:
+    from knought.chemistry.numbers import DecimalMark
+
+__all__ = ["read_rates", "read_text"]
+
+
+def read_rates(
+    path: str | Path,
+    *,
+    sheet: str | int | None = None,
+    uncertainty_means: str | None = None,
+    decimal: DecimalMark | None = None,
+    excess: str | None = None,
+) -> RateTable:
+    """Read a table of rate constants.
+
+    Parameters
+    ----------
+    path
+        A CSV, TSV, XLSX or ODS file.
+    sheet
+        Sheet of a workbook, by name or by number from 1; needed where more than one holds a table.
+    uncertainty_means
+        What ± means, where the header does not say it: ``"standard deviation"``, ``"2 s"``,
+        ``"95 %"``, ...
+    decimal
+        DecimalMark mark of a text file, where its numbers don't show it.
+    excess
+        Species by whose concentration an observed rate constant is divided.
+
+    Returns
+    -------
+    RateTable
+
+    Raises
+    ------
+    InputError
+        If anything cannot be read in one way only; what, where, and what to do about it.
+    """
+    file = open_bytes(path)
+    if file.data.startswith(b"PK"):
+        from knought.measurement.reading.workbook import workbook_grid
+
+        grid = workbook_grid(file.data, file.name, sheet)
+    else:
+        if sheet is not None:
+            raise InputError(
+                Problem("is no workbook and has no sheets", "leave the sheet out", file=file.name)
+            )
+        text, encoding = decoded(file.data, file.name)
+        grid = _text_grid(text, file.name, encoding)
+    source = Source(file.name, file.sha256, grid.sheet)
+    return _table(grid, source, uncertainty_means, decimal, excess)
+
+
+def read_text(
+    text: str,
+    name: str = "pasted cells",
+    *,
+    uncertainty_means: str | None = None,
+    decimal: DecimalMark | None = None,
+    excess: str | None = None,
+) -> RateTable:
+    """Read a table from text, such as cells copied from a spreadsheet.
+
+    Parameters
+    ----------
+    text
+        Rows of cells between tabs, semicolons or commas.
+    name
+        What to call it in messages.
+    uncertainty_means, decimal, excess
+        As for :func:`read_rates`.
+
+    Returns
+    -------
+    RateTable
+
+    Raises
+    ------
+    InputError
+        If anything cannot be read in one way only.
+    """
+    data = text.encode("utf-8", "surrogatepass")
+    if not text.strip():
+        raise InputError(Problem("is empty", "paste the cells with their headers", file=name))
+    plain, _ = decoded(data, name)
+    grid = _text_grid(plain, name, "text")
+    return _table(grid, Source(name, sha256_of(data), None), uncertainty_means, decimal, excess)
+
+
+def _table(
+    grid: TextGrid,
+    source: Source,
+    uncertainty_means: str | None,
+    decimal: DecimalMark | None,
+    excess: str | None,
+) -> RateTable:
+    meaning = None if uncertainty_means is None else parse_meaning(uncertainty_means)
+    layout = find_layout(grid)
+    if layout is None:
+        raise InputError(_no_header(grid))
+    parts = assigned(layout, grid, excess)
+    mark = decimal or decimal_mark(grid, layout, parts)
+    values = read_values(grid, layout, parts, mark, stated=decimal is not None)
+    return built(grid, layout, parts, values, source, meaning)
+
+
+def _text_grid(text: str, name: str, encoding: str) -> TextGrid:
+    """Take a text apart with the one delimiter that gives it a header."""
+    declared = declared_delimiter(text)
+    body = unmarked(text)
+    possible = [declared] if declared else [mark for mark in DELIMITERS if mark in body]
+    fitting = [mark for mark in possible if _has_header(body, mark, name)]
+    if len(fitting) > 1:
+        both = " or at each ".join(DELIMITERS[mark] for mark in fitting)
+        raise InputError(
+            Problem(
+                f"can be taken apart at each {both}, and has headers either way",
+                "save the table with tabs between its cells, or put cells that hold a delimiter "
+                "into quotation marks",
+                file=name,
+            )
+        )
+    # Without a header anywhere, the first delimiter serves the message.
+    mark = (fitting or possible or [","])[0]
+    return TextGrid(
+        name,
+        "delimited",
+        packed(delimited_rows(body, mark, name), name),
+        delimiter=mark,
+        remarks=(f"{encoding}, {DELIMITERS[mark]} between cells",),
+    )
+
+
+def _has_header(text: str, delimiter: str, name: str) -> bool:
+    """Whether a delimiter gives a text a header; only its first rows are taken apart."""
+    rows = delimited_rows(text, delimiter, name)
+    try:
+        head = packed(islice(rows, 4 * SEARCHED_ROWS), name)
+    except InputError:
+        # Whoever takes the whole text apart says what is wrong with it.
+        return False
+    return find_layout(TextGrid(name, "delimited", head, delimiter=delimiter)) is not None
+
+
+def _no_header(grid: TextGrid) -> Problem:
+    head = grid.head(1)
+    row, cells = head[0] if head else (None, [])
+    return Problem(
+        "no row holds the headers of a table of rate constants",
+        "head the columns with quantity and unit, T/K and k/s^-1, with tabs, semicolons or commas "
+        "between the cells",
+        read=" | ".join(cells) if cells else None,
+        file=grid.name,
+        sheet=grid.sheet,
+        row=row,
+    )

@@ -1,0 +1,244 @@
+"""The report: page, figures, record and tables all tell the same numbers."""
+
+from __future__ import annotations
+
+import json
+import re
+from html.parser import HTMLParser
+from typing import TYPE_CHECKING
+
+import numpy as np
+import pytest
+from defusedxml.ElementTree import fromstring
+from matplotlib.axes import Axes
+
+import knought as kn
+from knought.reporting import figures, tables
+from knought.reporting.cells import plain_lines
+from knought.reporting.page import page
+from knought.reporting.record import record
+from knought.reporting.style import blank_figure, sequential
+from knought.reporting.summary import summary, to_ascii
+from tests.fitting.test_assess import table
+
+if TYPE_CHECKING:
+    from collections.abc import Callable
+
+HOSTILE = "<script>alert('x')</script>=cmd()\"&"
+
+
+@pytest.fixture(scope="module")
+def assessment() -> kn.Assessment:
+    return kn.assess(table(), reactants="A^2- + B^-")
+
+
+@pytest.fixture(scope="module")
+def html(assessment: kn.Assessment) -> str:
+    return page(kn.Report(assessment, "Study <1> & more"))
+
+
+class Structure(HTMLParser):
+    """Collects ids, tags, and anything that would reach out of the page."""
+
+    def __init__(self) -> None:
+        super().__init__()
+        self.ids: list[str] = []
+        self.tags: list[str] = []
+        self.outward: list[str] = []
+        self.titles = 0
+
+    def handle_starttag(self, tag: str, attrs: list[tuple[str, str | None]]) -> None:
+        self.tags.append(tag)
+        for name, value in attrs:
+            if name == "id" and value:
+                self.ids.append(value)
+            reaches = name in {"src", "href", "xlink:href", "action", "data"}
+            if reaches and value and not value.startswith("#"):
+                self.outward.append(value)
+
+
+def structure(text: str) -> Structure:
+    parsed = Structure()
+    parsed.feed(text)
+    return parsed
+
+
+def test_the_page_stands_alone(html: str) -> None:
+    found = structure(html)
+    assert found.outward == []
+    assert "script" not in found.tags
+    assert found.tags.count("svg") == 3
+    assert "@import" not in html
+    assert "http" not in re.sub(r'xmlns(:\w+)?="[^"]*"', "", html).replace(
+        "https://", "http://"
+    ) or ("http://www.w3.org" in html)
+
+
+def test_no_two_elements_of_the_page_share_an_id(html: str) -> None:
+    ids = structure(html).ids
+    assert len(ids) == len(set(ids))
+
+
+def test_every_point_of_every_figure_says_what_it_is(html: str, assessment: kn.Assessment) -> None:
+    titles = re.findall(r"<title>(run [^<]*)</title>", html)
+    # Two main figures with every run once, and three panels of residuals.
+    assert len(titles) == 18 * 5
+    rates = assessment.rates
+    assert rates.I is not None
+    first = f"run 1, T = {rates.T[0]:.2f} K, I = {rates.I[0]:.4g} mol/L, k = "
+    assert sum(title.startswith(first) for title in titles) == 5
+
+
+def test_text_of_the_user_is_escaped() -> None:
+    rates = table(run=[HOSTILE] + [str(i) for i in range(17)], salt=[HOSTILE] * 18)
+    text = page(kn.Report(kn.assess(rates), HOSTILE))
+    assert "<script>" not in text
+    assert "&lt;script&gt;" in text
+
+
+def test_numbers_of_page_summary_and_record_are_the_same(
+    html: str, assessment: kn.Assessment
+) -> None:
+    estimate = assessment.parameters["activation_energy"]
+    digits = estimate.quantity.rounded(float(estimate.value), float(estimate.standard_uncertainty))
+    assert digits.value in html
+    assert digits.value in summary(assessment)
+    kept = record(assessment)["parameters"]["activation_energy"]
+    assert kept["value"] == pytest.approx(float(estimate.value) / 1000, rel=1e-15)
+    assert kept["unit"] == "kJ mol^-1"
+    assert kept["interval"] == pytest.approx([float(e) / 1000 for e in estimate.interval(0.95)])
+
+
+def test_the_record_holds_what_the_design_promises(assessment: kn.Assessment) -> None:
+    kept = json.loads(json.dumps(record(assessment, seed=7), allow_nan=False))
+    assert set(kept) >= {
+        "knought",
+        "inputs",
+        "seed",
+        "reference_temperature",
+        "parameters",
+        "covariance",
+        "temperature_law",
+        "salt_law",
+        "priors",
+        "laws",
+        "warnings",
+    }
+    names = kept["covariance"]["names"]
+    matrix = np.array(kept["covariance"]["matrix"])
+    assert names[0] == "ln_rate_constant"
+    assert matrix.shape == (len(names),) * 2
+    u = np.sqrt(matrix[names.index("activation_enthalpy")][names.index("activation_enthalpy")])
+    assert u == pytest.approx(
+        kept["parameters"]["activation_enthalpy"]["standard_uncertainty"], rel=1e-9
+    )
+    pairs = [(law["temperature"], law["salt"]) for law in kept["laws"]]
+    assert ("eyring", "davies") in pairs
+    assert ("eyring-cp", "open") in pairs
+    assert kept["data_alone"]["parameters"]["charge_product"]["standard_uncertainty"] > 0.1
+    assert kept["parameters"]["charge_product"]["given"] is True
+    law = next(law for law in kept["laws"] if law["salt"] == "davies")
+    assert law["standard_errors"]["from_stated_u"]["activation_enthalpy"] > 0
+    assert law["standard_errors"]["from_scatter"]["activation_enthalpy"] > 0
+
+
+def test_a_record_without_stated_u_has_no_standard_errors_from_it() -> None:
+    kept = record(kn.assess(table(u_k=None)))
+    law = next(law for law in kept["laws"] if law["salt"] == "davies")
+    assert law["standard_errors"]["from_stated_u"]["activation_enthalpy"] is None
+    assert kept["uncertainty"]["kind"] == "scatter"
+    assert kept["parameters"]["activation_energy"]["degrees_of_freedom"] == 15
+
+
+def test_figures_draw_on_the_axes_they_are_given(assessment: kn.Assessment) -> None:
+    drawings: list[Callable[[Axes], Axes]] = [
+        lambda ax: figures.temperature_dependence(assessment, ax),
+        lambda ax: figures.salt_effect(assessment, ax),
+        lambda ax: figures.residuals_against(assessment, "order", ax),
+    ]
+    for draw in drawings:
+        ax = blank_figure().add_subplot()
+        assert draw(ax) is ax
+        assert isinstance(ax, Axes)
+        assert ax.get_xlabel()
+        assert ax.get_ylabel()
+
+
+def test_the_temperature_figure_shows_points_lines_and_celsius(
+    assessment: kn.Assessment,
+) -> None:
+    figure = blank_figure()
+    ax = figures.temperature_dependence(assessment, figure.add_subplot())
+    figure.canvas.draw()
+    points = [line for line in ax.lines if (line.get_gid() or "").startswith("run-")]
+    assert len(points) == 18
+    rates = assessment.rates
+    assert np.asarray(points[0].get_xdata()) == pytest.approx([1000 / rates.T[0]])
+    assert np.asarray(points[0].get_ydata()) == pytest.approx([np.log(rates.k[0])])
+    dashed = next(line for line in ax.lines if line.get_label() == "→ 0")
+    x, y = np.asarray(dashed.get_xdata(), float), np.asarray(dashed.get_ydata(), float)
+    rising = np.argsort(x)
+    at_ref = np.interp(1000 / 298.15, x[rising], y[rising])
+    assert at_ref == pytest.approx(
+        np.log(float(assessment.parameters["rate_constant"].value)), abs=1e-3
+    )
+    top = ax.child_axes[0]
+    assert "°C" in top.get_xlabel()
+    celsius = [float(label.get_text()) for label in top.get_xticklabels()]
+    assert celsius == pytest.approx([1000 / x - 273.15 for x in top.get_xticks()], abs=0.5)
+
+
+def test_the_limiting_slope_is_drawn_with_its_slope(assessment: kn.Assessment) -> None:
+    ax = figures.salt_effect(assessment, blank_figure().add_subplot())
+    dotted = [line for line in ax.lines if line.get_linestyle() == ":"]
+    assert len(dotted) == 3
+    x, y = np.asarray(dotted[1].get_xdata()), np.asarray(dotted[1].get_ydata())
+    A = float(kn.debye_huckel(np.array(298.15)).A)
+    assert (y[-1] - y[0]) / (x[-1] - x[0]) == pytest.approx(2 * 2 * A, rel=1e-9)
+
+
+def test_colours_are_ordered_in_grey() -> None:
+    luminance = [0.299 * r + 0.587 * g + 0.114 * b for r, g, b, _ in sequential(7)]
+    assert np.all(np.diff(luminance) > 0.05)
+
+
+def test_svg_files_are_the_same_for_the_same_study(assessment: kn.Assessment) -> None:
+    report = kn.Report(assessment, "x")
+    picture = report.pictures[0]
+    text = report.svg(picture)
+    assert text == kn.Report(assessment, "x").svg(picture)
+    assert fromstring(text).tag.endswith("svg")
+
+
+def test_tables_line_up(assessment: kn.Assessment) -> None:
+    lines = plain_lines(tables.headline_table(assessment))
+    assert len({len(line) for line in lines[1:2]}) == 1
+    assert all(len(line) <= 100 for line in lines)
+    for table_ in kn.Report(assessment, "x").tables:
+        for row in table_.rows:
+            assert len(row) == len(table_.columns), table_.name
+
+
+def test_one_temperature_and_no_salt_have_fewer_figures() -> None:
+    alone = kn.assess(kn.RateTable.from_arrays([288.15, 298.15, 308.15], [1.0, 2.1, 4.0]))
+    assert [picture.name for picture in kn.Report(alone, "x").pictures] == [
+        "temperature",
+        "residuals",
+    ]
+    assert page(kn.Report(alone, "x")).count("<svg") == 2
+    isothermal = kn.assess(
+        kn.RateTable.from_arrays(
+            [298.15] * 4, [1.0, 1.2, 1.4, 1.6], [0.01, 0.02, 0.05, 0.1], unit="L mol^-1 s^-1"
+        )
+    )
+    assert [picture.name for picture in kn.Report(isothermal, "x").pictures] == [
+        "salt",
+        "residuals",
+    ]
+    assert "E_a" not in summary(isothermal, "ascii")
+
+
+def test_ascii_has_a_word_for_every_sign_that_we_use(assessment: kn.Assessment) -> None:
+    text = to_ascii(summary(assessment, "ascii"))
+    assert text.isascii()
+    assert "?" not in text.replace("salt law?", "")

@@ -1,0 +1,52 @@
+"""The invented studies: reproducible, and found to be what they are."""
+
+from __future__ import annotations
+
+import json
+import runpy
+from pathlib import Path
+
+import pytest
+
+import knought as kn
+from knought.cli import main
+from knought.demo import STUDIES
+
+DATASETS = Path(__file__).parent.parent / "datasets"
+
+
+@pytest.mark.parametrize("name", STUDIES)
+def test_the_script_makes_the_same_bytes_again(name: str, tmp_path: Path) -> None:
+    make = runpy.run_path(str(DATASETS / "make.py"))
+    make["write"](tmp_path)
+    for file in ("rates.csv", "truth.json"):
+        assert (tmp_path / name / file).read_bytes() == (DATASETS / name / file).read_bytes()
+
+
+@pytest.mark.parametrize("name", STUDIES)
+@pytest.mark.parametrize("given", [False, True])
+def test_the_true_values_lie_in_the_intervals(name: str, given: bool) -> None:
+    truth = json.loads((DATASETS / name / "truth.json").read_text(encoding="utf-8"))["parameters"]
+    charges = truth["charge_product"] if given else None
+    found = kn.assess(kn.read_rates(DATASETS / name / "rates.csv"), charge_product=charges)
+    for parameter, true in truth.items():
+        estimate = found.parameters[parameter]
+        low, high = (estimate.quantity.shown(float(end)) for end in estimate.interval(0.95))
+        assert low <= true <= high, parameter
+
+
+def test_the_demo_writes_every_study_and_says_what_is_true(
+    tmp_path: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    out = tmp_path / "demo"
+    assert main(["demo", "--out", str(out)]) == 0
+    said = capsys.readouterr().out
+    assert said.count("inside") >= 15
+    assert "outside" not in said
+    for name in STUDIES:
+        page = (out / name / "report" / "report.html").read_text(encoding="utf-8")
+        assert "(invented)" in page
+        assert (out / name / "study.toml").exists()
+    assert main(["demo", "--out", str(out)]) == 2
+    assert main(["demo", "--out", str(out), "--overwrite", "--format", "ascii"]) == 0
+    assert capsys.readouterr().out.isascii()

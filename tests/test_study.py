@@ -1,0 +1,137 @@
+"""Study files: what they say, what is refused, and folders written whole or not at all."""
+
+from __future__ import annotations
+
+import json
+from typing import TYPE_CHECKING
+
+import pytest
+
+import knought as kn
+from knought.cli import main
+from knought.study import read_study
+from tests.test_cli import LIKE_CHARGES
+
+if TYPE_CHECKING:
+    from pathlib import Path
+
+STUDY = """\
+[study]
+title = "Like charges"
+reference_temperature = "25 °C"
+
+[rates]
+file = "rates.csv"
+"""
+
+
+@pytest.fixture
+def folder(tmp_path: Path) -> Path:
+    (tmp_path / "rates.csv").write_text(LIKE_CHARGES, encoding="utf-8")
+    (tmp_path / "study.toml").write_text(STUDY, encoding="utf-8")
+    return tmp_path
+
+
+def with_lines(folder: Path, *lines: str) -> Path:
+    path = folder / "study.toml"
+    path.write_text("\n".join([STUDY, *lines]), encoding="utf-8")
+    return path
+
+
+def test_a_study_makes_one_folder_with_everything(folder: Path) -> None:
+    report = kn.run_study(folder / "study.toml", folder / "out")
+    made = {str(path.relative_to(folder / "out")) for path in (folder / "out").rglob("*.*")}
+    assert {"report.html", "results.json", "summary.txt", "figures/temperature.svg"} <= made
+    assert {"tables/parameters.txt", "tables/laws.txt", "tables/runs.txt"} <= made
+    record = json.loads((folder / "out" / "results.json").read_text(encoding="utf-8"))
+    assert [each["path"] for each in record["inputs"]] == ["study.toml", "rates.csv"]
+    assert record["reference_temperature"] == {"value": 298.15, "unit": "K"}
+    assert report.title == "Like charges"
+    assert not [path for path in folder.iterdir() if path.name.startswith(".")]
+
+
+def test_laws_priors_and_reactants_are_taken_from_the_file(folder: Path) -> None:
+    path = with_lines(
+        folder,
+        "[reaction]",
+        'reactants = "A^2- + B^-"',
+        "[laws]",
+        'temperature = "arrhenius"',
+        "[priors]",
+        'ion_size = ["3 Å", "0.6 nm"]',
+        'linear_coefficient = ["0.1 L/mol", "0.1 L/mol"]',
+        'interaction_coefficient = ["0 L/mol", "0.05 L/mol"]',
+    )
+    found = read_study(path).report().assessment
+    assert found.temperature_law == "arrhenius"
+    assert found.choices.charge_product == 2
+    assert found.choices.priors.ion_size == pytest.approx((3e-10, 6e-10))
+    assert found.choices.priors.interaction_coefficient == pytest.approx((0.0, 0.05))
+
+
+@pytest.mark.parametrize(
+    ("lines", "messages"),
+    [
+        (["[lawz]"], ["no such key", "'laws'"]),
+        (["[laws]", 'temprature = "eyring"'], ["[laws] temprature", "'temperature'"]),
+        (["[reaction]", "charge_product = 'two'"], ["[reaction] charge_product"]),
+        (["[priors]", "ion_size = [3, 6]"], ["a quantity is a string with its unit"]),
+        (["[priors]", 'ion_size = ["3 K", "6 Å"]'], ["[priors.ion_size] 0"]),
+        (["[laws"], ["not valid TOML"]),
+    ],
+)
+def test_what_is_wrong_in_a_study_file_is_named_with_its_remedy(
+    folder: Path, lines: list[str], messages: list[str]
+) -> None:
+    path = with_lines(folder, *lines)
+    with pytest.raises(kn.InputError) as caught:
+        read_study(path)
+    for message in ["study.toml", *messages]:
+        assert message in str(caught.value)
+
+
+def test_all_problems_of_a_study_file_are_told_at_once(folder: Path) -> None:
+    path = with_lines(folder, "[laws]", 'tempreature = "x"', "[reaction]", "reactant = 1")
+    with pytest.raises(kn.InputError) as caught:
+        read_study(path)
+    assert len(caught.value.problems) == 2
+
+
+def test_a_study_file_needs_its_table(folder: Path) -> None:
+    (folder / "study.toml").write_text("[study]\n", encoding="utf-8")
+    with pytest.raises(kn.InputError, match="needed and missing"):
+        read_study(folder / "study.toml")
+    with pytest.raises(kn.InputError, match="cannot be read"):
+        read_study(folder / "no.toml")
+
+
+def test_a_table_outside_the_folder_is_refused(folder: Path) -> None:
+    inner = folder / "inner"
+    inner.mkdir()
+    text = STUDY.replace('"rates.csv"', '"../rates.csv"')
+    (inner / "study.toml").write_text(text, encoding="utf-8")
+    with pytest.raises(kn.InputError, match="outside the folder"):
+        read_study(inner / "study.toml").report()
+
+
+def test_an_existing_folder_is_not_replaced_without_being_told(folder: Path) -> None:
+    out = folder / "out"
+    kn.run_study(folder / "study.toml", out)
+    before = (out / "report.html").read_bytes()
+    assert main(["report", str(folder / "study.toml"), "--out", str(out)]) == 2
+    assert (out / "report.html").read_bytes() == before
+    assert main(["report", str(folder / "study.toml"), "--out", str(out), "--overwrite"]) == 0
+    assert (out / "report.html").read_bytes() == before  # the same input, the same bytes
+
+
+def test_a_failing_study_leaves_nothing(folder: Path) -> None:
+    (folder / "rates.csv").write_text("T/K,k/s^-1\n298,x\n", encoding="utf-8")
+    with pytest.raises(kn.InputError):
+        kn.run_study(folder / "study.toml", folder / "out")
+    assert sorted(path.name for path in folder.iterdir()) == ["rates.csv", "study.toml"]
+
+
+def test_no_output_holds_an_absolute_path(folder: Path) -> None:
+    kn.run_study(folder / "study.toml", folder / "out")
+    for path in (folder / "out").rglob("*.*"):
+        assert str(folder) not in path.read_text(encoding="utf-8")
