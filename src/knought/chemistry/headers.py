@@ -28,7 +28,7 @@ from knought.chemistry.unit_symbols import DIMENSIONLESS
 from knought.chemistry.units import Unit, parse_unit, reaction_order
 from knought.errors import InputError, Problem
 
-__all__ = ["Function", "Header", "Role", "TEXT_ROLES", "parse_header"]
+__all__ = ["TEXT_ROLES", "Function", "Header", "Role", "parse_header"]
 
 Role: TypeAlias = Literal[
     "T", "k", "I", "c", "n", "run", "salt", "batch", "use", "reason", "note", "time", "neighbour"
@@ -96,15 +96,15 @@ _TEXT_NAMES: dict[str, Role] = {
     "n": "n", "determinations": "n", "replicates": "n", "number of determinations": "n",
 }  # fmt: skip
 
-_TEMPERATURE = re.compile(r"T|temp\.?|temperature|abs(?:olute|\.)? ?temp(?:erature|\.)?", re.I)
-_IONIC_STRENGTH = re.compile(r"I(?:_?c|_?m)?|µ|ionic[ _-]?str(?:ength|\.)", re.I)
+_TEMPERATURE = re.compile(r"T|temp\.?|temperature|abs(?:olute|\.)? ?temp(?:erature|\.)?", re.IGNORECASE)
+_IONIC_STRENGTH = re.compile(r"I(?:_?c|_?m)?|µ|ionic[ _-]?str(?:ength|\.)", re.IGNORECASE)
 _RATE_CONSTANT = re.compile(
     r"(?:k(?P<index>_\{?[A-Za-z0-9ψΨ°,+-]{1,12}\}?|[0-9°]{1,2}|obsd?|app|exp|cat|ψ|Ψ|II?)?"
     r"(?P<prime>['′’]{0,2})"
     r"|(?P<words>(?:obs(?:erved|\.)? |second-order |first-order |pseudo-first-order )?"
     r"rate[ _-]?(?:constant|coefficient)))"
 )
-_OBSERVED = re.compile(r"_?\{?(?:obs|obsd|app|ψ|Ψ|psi)\}?", re.I)
+_OBSERVED = re.compile(r"_?\{?(?:obs|obsd|app|ψ|Ψ|psi)\}?", re.IGNORECASE)
 _FUNCTIONS: tuple[tuple[str, Function], ...] = (
     (r"ln(?=[ (\[{])", "ln"),
     (r"log_?e(?=[ (\[{])", "ln"),
@@ -153,9 +153,9 @@ def parse_header(text: str) -> Header | None:
 
 _RECIPROCAL = re.compile(
     r"(?P<ten>1|10{1,6}|10 ?\^ ?\(?[0-9]{1,2}\)?|1[eE][0-9]{1,2}) ?[* ]? ?"
-    r"(?:\(?(?P<unit>K)\)? ?/ ?T"                 # 1000 K/T
-    r"|/ ?\(? ?T ?/ ?(?P<below>K) ?\)?"           # 1000/(T/K)
-    r"|/ ?T(?P<tail>.*))"                         # 1000/T, (K^-1)
+    r"(?:\(?(?P<unit>K)\)? ?/ ?T"  # 1000 K/T
+    r"|/ ?\(? ?T ?/ ?(?P<below>K) ?\)?"  # 1000/(T/K)
+    r"|/ ?T(?P<tail>.*))"  # 1000/T, (K^-1)
 )
 
 
@@ -208,7 +208,7 @@ def _quantity(text: str, plain: str) -> Header | None:
 _SAID = re.compile(
     r" ?\((?P<said>(?:± ?)?(?:[12] ?(?:s|sd|σ|u|se|sem)|sd|se|sem|95 ?%[A-Za-z -]*"
     r"|standard [a-z ]+|k ?= ?2))\)(?=$|[ /,])",
-    re.I,
+    re.IGNORECASE,
 )
 
 

@@ -115,7 +115,11 @@ def parse_meaning(text: str) -> Meaning:
     """
     plain = re.sub(r"\s+", " ", normalised(text).lower()).strip(" .,±")
     rest, relative = plain, False
-    for words in (r"\brelative\b,?", r",? ?\b(?:in )?(?:percent|per cent)$", r"(?<!95)(?<!95 ),? ?%$"):
+    for words in (
+        r"\brelative\b,?",
+        r",? ?\b(?:in )?(?:percent|per cent)$",
+        r"(?<!95)(?<!95 ),? ?%$",
+    ):
         shorter = re.sub(words, "", rest).strip(" ,")
         relative = relative or shorter != rest
         rest = shorter

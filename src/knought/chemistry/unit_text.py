@@ -82,7 +82,10 @@ class UnitText:
     def canonical(self) -> str:
         """Return the one spelling, ``"10^-3 L mol^-1 s^-1"``."""
         parts = [f"10^{self.power_of_ten}"] if self.power_of_ten else []
-        parts += [symbol if power == 1 else f"{symbol}^{_written(power)}" for symbol, power in self.factors]
+        parts += [
+            symbol if power == 1 else f"{symbol}^{_written(power)}"
+            for symbol, power in self.factors
+        ]
         return " ".join(parts) or "1"
 
 

@@ -6,7 +6,7 @@ positive, ionic strengths are not negative, and every run that is left out says 
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field, replace
+from dataclasses import dataclass, field, fields, replace
 from fractions import Fraction
 from types import MappingProxyType
 from typing import TYPE_CHECKING, Any
@@ -14,9 +14,10 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 
 from knought.arrays import BoolArray, FloatArray, frozen
-from knought.chemistry.quantities import quantity, rate_constant_unit
-from knought.chemistry.units import parse_unit, reaction_order
-from knought.errors import InputError, Problem
+from knought.chemistry.quantities import rate_constant_unit
+from knought.chemistry.units import parse_unit, reaction_order, scaled
+from knought.errors import InputError
+from knought.measurement.table_checks import problems_of
 
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
@@ -25,6 +26,9 @@ if TYPE_CHECKING:
     from numpy.typing import ArrayLike
 
 __all__ = ["RateTable", "Source"]
+
+_NUMBERS = ("I", "u_k", "u_T", "u_I", "determinations")
+_WORDS = ("salt", "batch")
 
 
 @dataclass(frozen=True)
@@ -38,7 +42,7 @@ class Source:
     sha256
         Hash of its bytes.
     sheet
-        Sheet of a spreadsheet.
+        Sheet of a workbook.
     """
 
     name: str
@@ -67,7 +71,7 @@ class RateTable:
     determinations : (n,) array_like, optional
         Number of determinations that each k averages.
     run
-        Labels; ``"1"``, ``"2"``, ... if not given.
+        Labels; ``"1"``, ``"2"``, ... where not given.
     salt, batch
         What sets the ionic strength; runs that share a stock, a day or an instrument.
     used : (n,) array_like of bool, optional
@@ -108,59 +112,34 @@ class RateTable:
     account: tuple[object, ...] = ()
 
     def __post_init__(self) -> None:
-        n = np.size(self.k)
-        for name in ("k", "T", *_OPTIONAL_NUMBERS):
+        n = int(np.size(self.k))
+        for name in ("k", "T", *_NUMBERS):
             values = getattr(self, name)
             if values is not None:
                 object.__setattr__(self, name, frozen(values))
-        if not self.run:
-            object.__setattr__(self, "run", tuple(str(i + 1) for i in range(n)))
         used = np.ones(n, dtype=bool) if np.size(self.used) == 0 else np.array(self.used, bool)
         used.setflags(write=False)
         object.__setattr__(self, "used", used)
-        for name in ("reason", "note"):
-            object.__setattr__(self, name, tuple(getattr(self, name)) or ("",) * n)
+        self._keep_words(n)
         kept = {key: frozen(value) for key, value in self.concentrations.items()}
         object.__setattr__(self, "concentrations", MappingProxyType(kept))
         object.__setattr__(self, "order", Fraction(self.order))
-        problems = [*self._length_problems(n)] or [*self._value_problems()]
+        problems = problems_of(self)
         if problems:
             raise InputError(problems)
 
-    def _length_problems(self, n: int) -> list[Problem]:
-        """Columns that are not as long as k."""
-        if np.ndim(self.k) != 1 or n == 0:
-            return [Problem("the table has no runs", "give at least one row")]
-        columns: dict[str, Any] = {name: getattr(self, name) for name in _COLUMNS}
-        columns |= {f"c({name})": values for name, values in self.concentrations.items()}
-        return [
-            Problem(f"has {len(values)} values for {n} runs", "give one a run", column=name)
-            for name, values in columns.items()
-            if values is not None and (np.ndim(values) != 1 or len(values) != n)
-        ]
-
-    def _value_problems(self) -> list[Problem]:
-        """Values that cannot be, run by run."""
-        problems = []
-        for name, lowest_allowed, rule in _RULES:
-            values = getattr(self, name)
-            if values is None:
-                continue
-            wrong = ~np.isfinite(values) | (values < 0 if lowest_allowed else values <= 0)
-            problems += [
-                Problem(f"run {self.run[i]}: {name} is {values[i]:g}", rule, column=name)
-                for i in np.flatnonzero(wrong)
-            ]
-        problems += [
-            Problem(
-                f"run {self.run[i]} is left out without a reason",
-                "say why in the column reason",
-                column="reason",
-            )
-            for i in np.flatnonzero(~self.used)
-            if not self.reason[i].strip()
-        ]
-        return problems
+    def _keep_words(self, n: int) -> None:
+        """Strip labels, number runs that have none, and drop columns without a word."""
+        run = tuple(str(label).strip() for label in self.run) or ("",) * n
+        labels = tuple(label or str(place) for place, label in enumerate(run, start=1))
+        object.__setattr__(self, "run", labels)
+        for name in ("reason", "note", *_WORDS):
+            given = getattr(self, name)
+            words = tuple(str(word).strip() for word in given or ())
+            if name in _WORDS:
+                object.__setattr__(self, name, words if any(words) else None)
+            else:
+                object.__setattr__(self, name, words or ("",) * n)
 
     @classmethod
     def from_arrays(
@@ -200,13 +179,13 @@ class RateTable:
         """
         parsed = parse_unit(unit)
         order = reaction_order(parsed)
-        factor = float(parsed.factor_to(parse_unit(rate_constant_unit(order))))
+        factor = parsed.factor_to(parse_unit(rate_constant_unit(order)))
         return cls(
-            k=np.asarray(k, dtype=float) * factor,
+            k=scaled(k, factor),
             T=np.asarray(T, dtype=float),
             order=order,
             I=_maybe(I),
-            u_k=None if u_k is None else np.asarray(u_k, dtype=float) * factor,
+            u_k=None if u_k is None else scaled(u_k, factor),
             u_T=_maybe(u_T),
             u_I=_maybe(u_I),
             determinations=_maybe(determinations),
@@ -223,74 +202,85 @@ class RateTable:
         """Unit of k, ``"L mol^-1 s^-1"``."""
         return rate_constant_unit(self.order)
 
+    @property
+    def ln_k(self) -> FloatArray:
+        """Natural logarithm of k in its unit, ``(n,)``."""
+        return frozen(np.log(self.k))
+
+    @property
+    def u_ln_k(self) -> FloatArray | None:
+        """Standard uncertainty of ln k, u(k)/k (GUM 5.1.2), ``(n,)``; None where u(k) is unknown."""
+        return None if self.u_k is None else frozen(self.u_k / self.k)
+
     def used_only(self) -> RateTable:
         """Return the table with only the runs that count."""
         if bool(np.all(self.used)):
             return self
         kept = np.flatnonzero(self.used)
+        changes: dict[str, Any] = {
+            name: None if getattr(self, name) is None else getattr(self, name)[kept]
+            for name in ("k", "T", "used", *_NUMBERS)
+        }
+        for name in ("run", "reason", "note", *_WORDS):
+            words = getattr(self, name)
+            changes[name] = None if words is None else tuple(words[place] for place in kept)
+        amounts = {key: values[kept] for key, values in self.concentrations.items()}
+        return replace(self, **changes, concentrations=amounts)
 
-        def words(values: tuple[str, ...]) -> tuple[str, ...]:
-            return tuple(values[i] for i in kept)
+    def same_runs(self, other: RateTable) -> bool:
+        """Whether both tables hold the same runs, number for number and word for word.
 
-        changes: dict[str, Any] = {"k": self.k[kept], "T": self.T[kept]}
-        for name in _OPTIONAL_NUMBERS:
-            values = getattr(self, name)
-            changes[name] = None if values is None else values[kept]
-        for name in ("salt", "batch"):
-            values = getattr(self, name)
-            changes[name] = None if values is None else words(values)
-        return replace(
-            self,
-            **changes,
-            run=words(self.run),
-            used=self.used[kept],
-            reason=words(self.reason),
-            note=words(self.note),
-            concentrations={key: values[kept] for key, values in self.concentrations.items()},
+        Source and account don't count.
+        """
+        mine, theirs = self._compared(), other._compared()
+        return mine.keys() == theirs.keys() and all(
+            np.array_equal(mine[name], theirs[name]) for name in mine
         )
+
+    def _compared(self) -> dict[str, Any]:
+        """Everything that makes the runs, by name; columns that are not there left out."""
+        parts: dict[str, Any] = {
+            each.name: getattr(self, each.name)
+            for each in fields(self)
+            if each.name not in {"source", "account", "concentrations"}
+            and getattr(self, each.name) is not None
+        }
+        return parts | {f"c({name})": values for name, values in self.concentrations.items()}
+
+    def headed_columns(self) -> dict[str, FloatArray | tuple[str, ...]]:
+        """Return every column under its ``quantity/unit`` header, numbers in the table's units."""
+        k = _headed("k", self.rate_constant_unit)
+        columns: dict[str, FloatArray | tuple[str, ...]] = {"run": self.run, "T/K": self.T}
+        optional = {
+            "I/(mol/L)": self.I,
+            k: self.k,
+            f"u({k[0]}){k[1:]}": self.u_k,
+            "u(T)/K": self.u_T,
+            "u(I)/(mol/L)": self.u_I,
+            "n": self.determinations,
+            "salt": self.salt,
+            "batch": self.batch,
+        }
+        columns |= {header: values for header, values in optional.items() if values is not None}
+        columns |= {f"c({name})/(mol/L)": values for name, values in self.concentrations.items()}
+        columns["use"] = tuple("yes" if used else "no" for used in self.used)
+        columns["reason"], columns["note"] = self.reason, self.note
+        return columns
 
     def to_frame(self) -> pd.DataFrame:
         """Return the table as a pandas frame with ``quantity/unit`` headers."""
         import pandas as pd
 
-        k = quantity("measured_rate_constant", self.order).unit
-        columns: dict[str, object] = {"run": list(self.run), "T/K": self.T}
-        columns.update(
+        return pd.DataFrame(
             {
-                header: values
-                for header, values in (
-                    ("I/(mol/L)", self.I),
-                    (f"k/({k})", self.k),
-                    (f"u(k)/({k})", self.u_k),
-                    ("u(T)/K", self.u_T),
-                    ("u(I)/(mol/L)", self.u_I),
-                    ("n", self.determinations),
-                    ("salt", self.salt),
-                    ("batch", self.batch),
-                )
-                if values is not None
+                header: list(values) if isinstance(values, tuple) else np.array(values)
+                for header, values in self.headed_columns().items()
             }
         )
-        for name, amounts in self.concentrations.items():
-            columns[f"c({name})/(mol/L)"] = amounts
-        columns["use"] = ["yes" if used else "no" for used in self.used]
-        columns["reason"], columns["note"] = list(self.reason), list(self.note)
-        return pd.DataFrame(columns)
 
 
-_OPTIONAL_NUMBERS = ("I", "u_k", "u_T", "u_I", "determinations")
-_COLUMNS = ("T", *_OPTIONAL_NUMBERS, "run", "salt", "batch", "used", "reason", "note")
-
-#: Column, whether zero is allowed, and what to do about a value that is not.
-_RULES = (
-    ("k", False, "a rate constant is positive; leave the run out with a reason if it failed"),
-    ("T", False, "give temperatures in K above zero"),
-    ("I", True, "an ionic strength is at least zero"),
-    ("u_k", False, "an uncertainty is positive; leave the column out if it is unknown"),
-    ("u_T", False, "an uncertainty is positive; leave the column out if it is unknown"),
-    ("u_I", False, "an uncertainty is positive; leave the column out if it is unknown"),
-    ("determinations", False, "give how many determinations were averaged, at least 1"),
-)
+def _headed(sign: str, unit: str) -> str:
+    return f"{sign}/({unit})" if " " in unit else f"{sign}/{unit}"
 
 
 def _maybe(values: ArrayLike | None) -> FloatArray | None:

@@ -11,8 +11,8 @@ import io
 import zipfile
 import zlib
 from typing import TYPE_CHECKING, Any
-from xml.sax.handler import ContentHandler  # noqa: S406 - the handler only; the parser is defused
-from xml.sax.xmlreader import AttributesImpl  # noqa: S406 - a type
+from xml.sax.handler import ContentHandler
+from xml.sax.xmlreader import AttributesImpl
 
 from knought.errors import InputError, Problem
 
@@ -134,7 +134,7 @@ class Archive:
         InputError
             If the part is missing, damaged, or holds a document type declaration.
         """
-        from xml.sax import SAXException  # noqa: S406 - the exception only
+        from xml.sax import SAXException
 
         from defusedxml.common import DefusedXmlException
         from defusedxml.expatreader import DefusedExpatParser

@@ -20,7 +20,6 @@ if TYPE_CHECKING:
     from collections.abc import Mapping
 
     from knought.arrays import FloatArray
-    from knought.chemistry.headers import Header
     from knought.chemistry.uncertainty_words import Meaning
     from knought.chemistry.units import Unit
     from knought.measurement.reading.columns import Parts
@@ -307,7 +306,9 @@ def _words(draft: Draft) -> dict[str, list[str]]:
     words = {role: list(texts) for role, texts in draft.values.words.items() if role != "use"}
     run = words.get("run")
     if run is not None:
-        words["run"] = [label or f"row {row}" for label, row in zip(run, draft.values.rows, strict=True)]
+        words["run"] = [
+            label or f"row {row}" for label, row in zip(run, draft.values.rows, strict=True)
+        ]
     reasons = words.get("reason", [""] * len(draft.used))
     for place in np.flatnonzero(~draft.used):
         if not reasons[place].strip():

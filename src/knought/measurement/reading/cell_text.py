@@ -52,7 +52,7 @@ def percent_text(stored: str) -> str:
 
 def date_text(stored: str, *, from_1904: bool = False) -> str:
     """Return the date that a stored serial number stands for, so that a message can show it."""
-    start = datetime(1904, 1, 1) if from_1904 else datetime(1899, 12, 30)  # noqa: DTZ001 - no zone
+    start = datetime(1904, 1, 1) if from_1904 else datetime(1899, 12, 30)
     try:
         moment = start + timedelta(days=float(stored))
     except (ValueError, OverflowError):

@@ -114,9 +114,7 @@ def assigned(layout: Layout, grid: TextGrid, excess: str | None = None) -> Parts
 _VALUES = frozenset({"T", "k", "I", "n"})
 
 
-def _sorted(
-    columns: list[Column], wanted: Callable[[Header], bool]
-) -> dict[str, list[Column]]:
+def _sorted(columns: list[Column], wanted: Callable[[Header], bool]) -> dict[str, list[Column]]:
     """Return the columns whose header is wanted, by role."""
     found: dict[str, list[Column]] = {}
     for column in columns:

@@ -59,9 +59,7 @@ def decoded(data: bytes, name: str) -> tuple[str, str]:
     """
     for start, kind in _KNOWN_FILES:
         if data.startswith(start):
-            raise InputError(
-                Problem(f"is {kind}", "save the table as CSV, XLSX or ODS", file=name)
-            )
+            raise InputError(Problem(f"is {kind}", "save the table as CSV, XLSX or ODS", file=name))
     text, encoding = _by_rule(data, name)
     control = _CONTROL.search(text)
     if control is not None:

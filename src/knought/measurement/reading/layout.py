@@ -180,7 +180,7 @@ def _with_second_line(
         # A note or a first run without numbers beneath a good header.
         return None
     two = _joined_header(grid, one, row, lower)
-    if two is None or alone.is_header and not one.is_header:
+    if two is None or (alone.is_header and not one.is_header):
         # The lower line is a header by itself: what stands above is a title.
         return None
     better = (two.understood, two.with_unit) > (one.understood, one.with_unit)
@@ -195,9 +195,7 @@ def _joined_header(
     return two if two.is_header else None
 
 
-def _spread(
-    grid: TextGrid, row: int, upper: Sequence[str], lower: Sequence[str]
-) -> list[str]:
+def _spread(grid: TextGrid, row: int, upper: Sequence[str], lower: Sequence[str]) -> list[str]:
     """Let a title that is merged, or stands left of blanks, reach over the columns under it."""
     titles = [*upper, *[""] * (len(lower) - len(upper))]
     for place, title in enumerate(titles):
@@ -219,9 +217,7 @@ def _holds_numbers(cells: Sequence[str]) -> bool:
     )
 
 
-def _with_units_row(
-    grid: TextGrid, one: _Candidate, head: list[_Row], place: int
-) -> Layout:
+def _with_units_row(grid: TextGrid, one: _Candidate, head: list[_Row], place: int) -> Layout:
     """Take a row of units beneath a header into it."""
     following = head[place + 1] if place + 1 < len(head) else None
     if following is None or _holds_numbers(following[1]):

@@ -12,8 +12,8 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from knought.chemistry.units import parse_unit, scaled
 from knought.chemistry.uncertainty_words import Meaning
+from knought.chemistry.units import parse_unit, scaled
 from knought.measurement.reading.conversion import slope
 from knought.numerics.quantiles import student_quantile
 

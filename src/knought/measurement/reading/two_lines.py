@@ -64,7 +64,9 @@ def _one(upper: str, lower: str) -> str:
     value = _VALUE.match(lower)
     if value is not None:
         rest = lower[value.end() :].strip()
-        return f"{upper}/({unit_text(rest)})" if rest and is_unit(rest) else f"{upper} {rest}".strip()
+        return (
+            f"{upper}/({unit_text(rest)})" if rest and is_unit(rest) else f"{upper} {rest}".strip()
+        )
     return f"{upper} {lower}"
 
 

@@ -11,6 +11,7 @@ import numpy as np
 
 from knought.chemistry.numbers import Number, Unreadable, last_step, read_number
 from knought.errors import InputError, Problem
+from knought.measurement.labels import unguarded
 from knought.measurement.reading.account import AccountLine
 from knought.measurement.reading.grid import TYPED, TextGrid, shown
 from knought.measurement.reading.layout import is_header_row
@@ -159,9 +160,7 @@ class _Cells:
         """Return the column."""
         inner = np.array(self.inner) if self.sign else None
         steps = np.empty(0) if self._steps is None else np.array(self._steps)
-        return NumberColumn(
-            self.column, np.array(self.values), inner, self.sign, self.first, steps
-        )
+        return NumberColumn(self.column, np.array(self.values), inner, self.sign, self.first, steps)
 
 
 def read_values(
@@ -302,7 +301,7 @@ class _Body:
                 self._tell(wrong.what, wrong.remedy, row, column.column, cells[place])
         for role, column_of_words in self._parts.words.items():
             place = column_of_words.place
-            self._words[role].append(shown(cells[place]) if place < count else "")
+            self._words[role].append(unguarded(shown(cells[place])) if place < count else "")
         if count > self._layout.width and self._grid.delimiter in {",", ";"}:
             self._check_width(row, cells)
 
@@ -344,5 +343,3 @@ class _Body:
                 column=column.address,
             )
         )
-
-

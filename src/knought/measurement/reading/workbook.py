@@ -8,8 +8,8 @@ from typing import TYPE_CHECKING, Protocol
 from knought.errors import InputError, Problem
 from knought.measurement.reading.archive import Archive
 from knought.measurement.reading.grid import Span, TextGrid, packed
-from knought.measurement.reading.merged import filled
 from knought.measurement.reading.layout import SEARCHED_ROWS, find_layout
+from knought.measurement.reading.merged import filled
 
 if TYPE_CHECKING:
     from collections.abc import Iterator
@@ -89,9 +89,7 @@ def _named(sheets: tuple[Sheet, ...], wanted: str | int, name: str) -> Sheet:
     if isinstance(wanted, str) and wanted.isdecimal() and 0 < int(wanted) <= len(sheets):
         return sheets[int(wanted) - 1]
     names = ", ".join(f"{i} {sheet.name}" for i, sheet in enumerate(sheets, start=1))
-    raise InputError(
-        Problem(f"has no sheet {wanted!r}", f"the sheets are {names}", file=name)
-    )
+    raise InputError(Problem(f"has no sheet {wanted!r}", f"the sheets are {names}", file=name))
 
 
 def _only_table(sheets: tuple[Sheet, ...], name: str) -> Sheet:

@@ -14,7 +14,11 @@ from typing import TYPE_CHECKING
 from knought.errors import InputError, Problem
 from knought.measurement.reading.archive import Archive, AttributesImpl, Handler
 from knought.measurement.reading.cell_text import (
-    NumberFormat, date_text, format_kind, percent_text, rows_words,
+    NumberFormat,
+    date_text,
+    format_kind,
+    percent_text,
+    rows_words,
 )  # fmt: skip
 from knought.measurement.reading.grid import MOST_COLUMNS, TYPED, Span, column_letter
 
@@ -258,9 +262,7 @@ class _SheetHandler(Handler):
     def begin(self, name: str, attributes: AttributesImpl) -> None:
         if name == "c":
             self._begin_cell(attributes)
-        elif name == "v":
-            self._into, self._has_value = self._pieces, True
-        elif name == "t":
+        elif name == "v" or name == "t":
             self._into, self._has_value = self._pieces, True
         elif name == "f":
             self._into, self._has_formula = self._formula, True
