@@ -13,6 +13,7 @@ import numpy as np
 import pytest
 
 from knought.fitting.open_fit import fit_open, open_solver
+from knought.fitting.run_errors import run_errors
 from knought.laws.open_law import open_grid
 from knought.laws.surface import Surface
 from knought.laws.temperature import temperature_law
@@ -30,7 +31,9 @@ def probabilities(studies: Studies) -> dict[str, FloatArray]:
     seen = studies.observations
     grid = open_grid()
     surface = Surface(temperature_law("eyring"), grid.law, 298.15, seen.order)
-    solutions = open_solver(seen, surface, grid, seen.u).solve(studies.ln_k)
+    solutions = open_solver(
+        seen, surface, grid, run_errors(seen, np.zeros(seen.runs), np.zeros(seen.runs))
+    ).solve(studies.ln_k)
     weights, p = solutions.weights, len(surface.parameters)
     means = solutions.means.reshape(len(weights), -1, p)
     scales = np.sqrt(np.diagonal(solutions.covariances.reshape(-1, p, p), axis1=1, axis2=2))

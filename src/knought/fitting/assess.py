@@ -6,6 +6,7 @@ from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
 from knought.errors import Caveat, InputError
+from knought.fitting.budget import Budget, budget
 from knought.fitting.fit import Choices, fit_chosen, resolve
 from knought.fitting.observations import observe
 from knought.fitting.surface_fit import SurfaceFit
@@ -14,7 +15,7 @@ from knought.laws.salt import SALT_LAWS
 from knought.laws.temperature import TEMPERATURE_LAWS
 
 if TYPE_CHECKING:
-    from collections.abc import Mapping
+    from collections.abc import Mapping, Sequence
 
     from numpy.typing import ArrayLike
     from uncertainties import AffineScalarFunc
@@ -25,6 +26,7 @@ if TYPE_CHECKING:
     from knought.fitting.observations import Observations
     from knought.fitting.scatter import ScatterChoice
     from knought.laws.open_law import Priors
+    from knought.measurement.shared_errors import SharedError
     from knought.measurement.table import RateTable
 
 __all__ = ["Assessment", "Refusal", "assess"]
@@ -118,6 +120,10 @@ class Assessment:
         """Return values that keep their correlations; see :meth:`Found.correlated`."""
         return self.headline.correlated(T, I)
 
+    def budget(self, name: str, *, T: float | None = None, I: float = 0.0) -> Budget:
+        """Return what each source adds to the variance of a result; see :func:`budget`."""
+        return budget(self.headline, name, T=T, I=I)
+
     def covariance(self) -> tuple[tuple[str, ...], FloatArray]:
         """Return names and covariance of the linear parameters; see :meth:`Found.covariance`."""
         return self.headline.covariance()
@@ -135,6 +141,7 @@ def assess(
     ion_size: float | None = None,
     priors: Priors | None = None,
     scatter: ScatterChoice | None = None,
+    shared_errors: Sequence[SharedError] = (),
 ) -> Assessment:
     """Find everything a table of rate constants can tell, with every named law beside it.
 
@@ -147,7 +154,7 @@ def assess(
     charge_product, reactants
         z_A z_B, or the reactants that give it, where the charges are known; this narrows k at
         I → 0 more than anything else. What the runs alone say of the charges stands beside it.
-    ion_size, priors, scatter
+    ion_size, priors, scatter, shared_errors
         As for :func:`knought.fit`.
 
     Returns
@@ -159,7 +166,7 @@ def assess(
     InputError
         If a law is unknown, or the runs cannot determine the parameters of the headline.
     """
-    seen = observe(rates)
+    seen = observe(rates, shared_errors)
     choices = resolve(
         seen,
         temperature_law=temperature_law,

@@ -110,8 +110,18 @@ def refuse_undetermined(found: RankDeficiencyError, surface: Surface) -> NoRetur
     ) from found
 
 
-def design_caveats(seen: Observations, surface: Surface) -> tuple[Caveat, ...]:
-    """Say what the design of the runs leaves untested or hardly separated."""
+def design_caveats(seen: Observations, surface: Surface, u: FloatArray) -> tuple[Caveat, ...]:
+    """Say what the design of the runs leaves untested or hardly separated.
+
+    Parameters
+    ----------
+    seen
+        The runs.
+    surface
+        The surface; not stacked.
+    u : (n,) ndarray
+        Standard uncertainties of ln k, or relative weights.
+    """
     found: list[Caveat] = []
     temperatures = len(seen.temperature_levels)
     if temperatures == 1:
@@ -130,7 +140,7 @@ def design_caveats(seen: Observations, surface: Surface) -> tuple[Caveat, ...]:
                 "beyond them, would show whether ln k against 1/T is straight.",
             )
         )
-    share = _explained_share(seen, surface)
+    share = _explained_share(seen, surface, u)
     if share > _CONFOUNDED:
         found.append(
             Caveat(
@@ -143,13 +153,13 @@ def design_caveats(seen: Observations, surface: Surface) -> tuple[Caveat, ...]:
     return tuple(found)
 
 
-def _explained_share(seen: Observations, surface: Surface) -> float:
+def _explained_share(seen: Observations, surface: Surface, u: FloatArray) -> float:
     """Share of the first salt column's variation that the temperature columns explain (R²)."""
     thermal = len(surface.temperature_law.parameters)
     if thermal == len(surface.parameters):
         return 0.0
     rows = surface.ln_k(seen.T, seen.ionic_strength).rows
-    weighted = rows / seen.u[:, None]
+    weighted = rows / u[:, None]
     basis, _ = np.linalg.qr(weighted[:, :thermal])
     first, _ = np.linalg.qr(weighted[:, :1])
     column = weighted[:, thermal]

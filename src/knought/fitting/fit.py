@@ -19,8 +19,11 @@ from knought.laws.open_law import DEFAULT_PRIORS, Priors
 from knought.laws.salt import OPEN
 
 if TYPE_CHECKING:
+    from collections.abc import Sequence
+
     from knought.fitting.found import Found
     from knought.fitting.scatter import ScatterChoice
+    from knought.measurement.shared_errors import SharedError
     from knought.measurement.table import RateTable
 
 __all__ = ["Choices", "fit", "fit_chosen", "resolve"]
@@ -202,6 +205,7 @@ def fit(
     ion_size: float | None = None,
     priors: Priors | None = None,
     scatter: ScatterChoice | None = None,
+    shared_errors: Sequence[SharedError] = (),
 ) -> Found:
     """Fit one temperature law and one salt law to ln k.
 
@@ -229,6 +233,8 @@ def fit(
         What is known of the open law's å, c and β.
     scatter
         ``"given"`` or ``"scatter"``: what the headline ± is made of, against our rule.
+    shared_errors
+        Errors that all runs, or those of a batch, share.
 
     Returns
     -------
@@ -241,7 +247,7 @@ def fit(
     InputError
         If a law is unknown, or the runs cannot determine its parameters.
     """
-    seen = observe(rates)
+    seen = observe(rates, shared_errors)
     choices = resolve(
         seen,
         temperature_law=temperature_law,

@@ -32,6 +32,7 @@ if TYPE_CHECKING:
     from knought.errors import Caveat
     from knought.fitting.distribution import ParameterDistribution
     from knought.fitting.observations import Observations
+    from knought.fitting.run_errors import RunErrors
     from knought.fitting.scatter import Scatter
     from knought.laws.surface import Surface
 
@@ -69,6 +70,8 @@ class Found:
         What is known of the linear parameters.
     scatter
         How the runs scatter, and what the headline ± is made of.
+    errors
+        Errors of ln k of the runs, source by source, with u(k) as given.
     caveats
         What must be said with the result.
     """
@@ -77,6 +80,7 @@ class Found:
     surface: Surface
     distribution: ParameterDistribution
     scatter: Scatter
+    errors: RunErrors
     caveats: tuple[Caveat, ...]
 
     @property
@@ -110,6 +114,9 @@ class Found:
         parts = [self.scatter.words]
         if self.observations.has_abscissa_errors:
             parts.append("with the stated errors of each run's temperature and ionic strength")
+        if self.errors.shared_sources:
+            names = ", ".join(self.errors.shared_sources)
+            parts.append(f"with errors that runs share ({names})")
         return ", ".join(parts)
 
     @cached_property
@@ -276,11 +283,11 @@ class Found:
 
     @cached_property
     def effective_u(self) -> FloatArray:
-        """U of ln k of each run with its own errors of T and I carried along, ``(n,)``.
+        """Standard uncertainty of ln k of each run from all its independent errors, ``(n,)``.
 
         Multiplied by the scatter's factor where that is the headline.
         """
-        return _effective_u(self) * self.scatter.factor
+        return self.errors.u * self.scatter.factor
 
     @property
     def standardised_residuals(self) -> FloatArray:
@@ -288,28 +295,8 @@ class Found:
         return self.residuals / self.effective_u
 
 
-def _effective_u(found: Found) -> FloatArray:
-    seen = found.observations
-    if not seen.has_abscissa_errors:
-        return seen.u
-    I = seen.ionic_strength
-    slope_T = found.distribution.of(found.surface.ln_k_dT(seen.T, I)).mean
-    slope_I = None
-    if found.describes_salt:
-        above = np.where(I > 0, I, 1.0)
-        slope_I = found.distribution.of(found.surface.ln_k_dI(seen.T, above)).mean
-    return seen.effective(slope_T, slope_I)
-
-
 def _first(mixture: Mixture, scalar: bool) -> Mixture:
-    if not scalar:
-        return mixture
-    return Mixture(
-        mixture.weights,
-        mixture.locations[:, 0],
-        mixture.scales[:, 0],
-        mixture.degrees_of_freedom,
-    )
+    return mixture.first() if scalar else mixture
 
 
 def _stack(parts: list[Rows]) -> Rows:

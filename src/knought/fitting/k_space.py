@@ -13,6 +13,7 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
+from knought.arrays import frozen
 from knought.errors import InputError
 from knought.fitting.distribution import ParameterDistribution
 from knought.fitting.fit import resolve
@@ -88,17 +89,23 @@ def fit_in_k(
     judged = judge_scatter(
         solution.chi_square, solution.degrees_of_freedom, stated=seen.u_given, choice=scatter
     )
+    scale = judged.factor
     return replace(
         start,
+        solution=solution,
+        scatter_solution=replace(
+            solution,
+            covariance=frozen(solution.covariance * judged.birge_ratio**2),
+            gain=frozen(solution.gain * judged.birge_ratio),
+        ),
         distribution=ParameterDistribution(
             names=start.distribution.names,
             weights=np.ones(1),
             means=solution.parameters[None],
-            covariances=solution.covariance[None] * judged.factor**2,
+            covariances=solution.covariance[None] * scale**2,
             degrees_of_freedom=judged.headline_degrees_of_freedom,
         ),
         scatter=judged,
-        solution=solution,
     )
 
 

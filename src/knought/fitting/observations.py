@@ -1,9 +1,4 @@
-"""What a fit sees of a rate table: ln k with its uncertainty, at T and I, used runs only.
-
-Random errors of a run's own temperature and ionic strength enter through the slope of the surface
-("effective variance", Clutton-Brock, Technometrics 9 (1967) 261; Orear, Am. J. Phys. 50 (1982)
-912): u_eff² = u(ln k)² + (∂ln k/∂T)² u(T)² + (∂ln k/∂I)² u(I)², iterated with the fit.
-"""
+"""What a fit sees of a rate table: ln k with its uncertainty, at T and I, used runs only."""
 
 from __future__ import annotations
 
@@ -16,8 +11,10 @@ from knought.arrays import FloatArray, frozen
 from knought.errors import InputError
 
 if TYPE_CHECKING:
+    from collections.abc import Sequence
     from fractions import Fraction
 
+    from knought.measurement.shared_errors import SharedError
     from knought.measurement.table import RateTable
 
 __all__ = ["Observations", "distinct_levels", "observe"]
@@ -48,6 +45,10 @@ class Observations:
         Whether the table states uncertainties of k.
     order
         Overall order of the reaction.
+    batch, salt
+        Batch and salt of each run, where the table has them.
+    shared
+        Errors that several runs share.
     """
 
     ln_k: FloatArray
@@ -58,6 +59,9 @@ class Observations:
     u_I: FloatArray | None
     u_given: bool
     order: Fraction
+    batch: tuple[str, ...] | None = None
+    salt: tuple[str, ...] | None = None
+    shared: tuple[SharedError, ...] = ()
 
     @property
     def runs(self) -> int:
@@ -81,35 +85,23 @@ class Observations:
             return np.zeros(0)
         return distinct_levels(self.I, relative=_SAME_IONIC_STRENGTH)
 
-    def effective(self, slope_T: FloatArray, slope_I: FloatArray | None) -> FloatArray:
-        """Return u of ln k with the errors of T and I carried along the given slopes.
-
-        Parameters
-        ----------
-        slope_T : (n,) ndarray
-            ∂ln k/∂T in K^-1.
-        slope_I : (n,) ndarray or None
-            ∂ln k/∂I in L/mol.
-        """
-        variance = self.u**2
-        if self.u_T is not None:
-            variance = variance + (slope_T * self.u_T) ** 2
-        if self.u_I is not None and slope_I is not None:
-            # At I = 0 the slope of √I is infinite; an exact zero carries no error of I.
-            at_zero = self.ionic_strength == 0
-            variance = variance + np.where(at_zero, 0.0, (slope_I * self.u_I)) ** 2
-        return np.asarray(np.sqrt(variance))
-
     @property
     def has_abscissa_errors(self) -> bool:
         """Whether u(T) or u(I) are given and count: beside a stated u(k) only."""
         return self.u_given and (self.u_T is not None or self.u_I is not None)
 
 
-def observe(rates: RateTable) -> Observations:
+def observe(rates: RateTable, shared_errors: Sequence[SharedError] = ()) -> Observations:
     """Return what a fit sees of `rates`.
 
     Where the table states no uncertainty of k, runs that average more determinations weigh more.
+
+    Parameters
+    ----------
+    rates
+        The table.
+    shared_errors
+        Errors that several runs share.
 
     Raises
     ------
@@ -134,6 +126,9 @@ def observe(rates: RateTable) -> Observations:
         u_I=used.u_I,
         u_given=used.u_k is not None,
         order=used.order,
+        batch=used.batch,
+        salt=used.salt,
+        shared=tuple(shared_errors),
     )
 
 

@@ -20,9 +20,9 @@ from knought.fitting import checks
 from knought.fitting.distribution import ParameterDistribution
 from knought.fitting.found import Found
 from knought.fitting.observations import Observations, observe
+from knought.fitting.run_errors import settle
 from knought.fitting.scatter import Scatter, judge_scatter
 from knought.fitting.surface_fit import DEFAULT_REFERENCE_TEMPERATURE, DEFAULT_TEMPERATURE_LAW
-from knought.fitting.weights import settle_weights
 from knought.laws.open_law import DEFAULT_PRIORS, OpenGrid, Priors, open_grid
 from knought.laws.surface import Surface
 from knought.laws.temperature import temperature_law as named_temperature_law
@@ -35,8 +35,10 @@ if TYPE_CHECKING:
 
     from knought.errors import Caveat
     from knought.fitting.estimate import Estimate
+    from knought.fitting.run_errors import RunErrors
     from knought.fitting.scatter import ScatterChoice
     from knought.measurement.table import RateTable
+    from knought.numerics.least_squares import LinearFit
 
 __all__ = ["OpenFit", "fit_open", "open_solver"]
 
@@ -59,6 +61,10 @@ class OpenFit(Found):
     ----------
     grid
         The open law as cells.
+    solver
+        The solver of the cells, for budgets and simulations.
+    kept : (k,) ndarray of int
+        Which of the solver's cells and scales, flattened, the mixture's components are.
     cell_weights : (c,) ndarray
         Weight of each cell after the data.
     log_evidence
@@ -66,6 +72,8 @@ class OpenFit(Found):
     """
 
     grid: OpenGrid
+    solver: CellSolver
+    kept: IndexArray
     cell_weights: FloatArray
     log_evidence: float
 
@@ -164,13 +172,13 @@ def fit_open(
     )
     checks.require_levels(seen, surface, charges_given=charge_product is not None)
     centre = replace(surface, salt_law=grid.central)
-    u, unsettled = _settled_u(seen, centre, priors)
+    errors, unsettled = _settled_errors(seen, centre, priors)
     caveats = (
         *checks.uncertainty_caveats(seen),
-        *checks.design_caveats(replace(seen, u=frozen(u)), centre),
+        *checks.design_caveats(seen, centre, errors.u),
         *unsettled,
     )
-    solver = open_solver(seen, surface, grid, u)
+    solver = open_solver(seen, surface, grid, errors)
     solutions = solver.solve(seen.ln_k[None])
     # Priors count as observations of the parameters they describe, so that only the parameters
     # with flat priors use up degrees of freedom.
@@ -179,16 +187,16 @@ def fit_open(
     judged = judge_scatter(best, seen.runs - flat, stated=seen.u_given, choice=scatter)
     if judged.from_scatter:
         scales = scale_nodes(best, seen.runs - flat)
-        solver = open_solver(seen, surface, grid, u, scales)
+        solver = open_solver(seen, surface, grid, errors, scales)
         solutions = solver.solve(seen.ln_k[None])
-    return _collected(seen, surface, grid, solutions, judged, caveats)
+    return _collected(seen, surface, grid, solver, solutions, judged, errors, caveats)
 
 
 def open_solver(
     seen: Observations,
     surface: Surface,
     grid: OpenGrid,
-    u: FloatArray,
+    errors: RunErrors,
     scales: FloatArray | None = None,
 ) -> CellSolver:
     """Return the solver of the open law at the conditions of `seen`, for any number of data sets.
@@ -201,8 +209,8 @@ def open_solver(
         The surface with the stacked salt law of `grid`.
     grid
         The open law as cells.
-    u : (n,) ndarray
-        Standard uncertainties of ln k, or relative weights.
+    errors
+        Errors of ln k of the runs, or relative weights.
     scales : (s,) ndarray, optional
         Values of σ where it is found from the scatter.
     """
@@ -212,10 +220,11 @@ def open_solver(
     return CellSolver(
         design,
         rows.offset,
-        u,
+        errors.u,
         grid.log_weight,
         prior_rows=prior_rows,
         prior_values=prior_values,
+        shared=errors.shared,
         scales=scales,
     )
 
@@ -231,10 +240,10 @@ def _interaction_prior(surface: Surface, priors: Priors) -> tuple[FloatArray, Fl
     return row, np.array([mean / deviation])
 
 
-def _settled_u(
+def _settled_errors(
     seen: Observations, centre: Surface, priors: Priors
-) -> tuple[FloatArray, tuple[Caveat, ...]]:
-    """Return u of ln k with the errors of T and I carried along the slope of the central cell.
+) -> tuple[RunErrors, tuple[Caveat, ...]]:
+    """Return the errors of the runs, those of T and I carried along the slope of the central cell.
 
     The slopes hardly depend on å and c, so that one cell's serve for all.
 
@@ -243,23 +252,25 @@ def _settled_u(
     InputError
         If the runs leave a combination of parameters undetermined.
     """
-    I = seen.ionic_strength
-    rows = centre.ln_k(seen.T, I)
+    rows = centre.ln_k(seen.T, seen.ionic_strength)
+    target = seen.ln_k - rows.offset
     prior_rows, prior_values = _interaction_prior(centre, priors)
+
+    def solved(errors: RunErrors) -> LinearFit:
+        return solve(
+            rows.rows,
+            target,
+            errors.u,
+            shared=errors.shared,
+            prior_rows=prior_rows,
+            prior_values=prior_values,
+        )
+
     try:
-        return settle_weights(
-            seen,
-            lambda u: solve(
-                rows.rows,
-                seen.ln_k - rows.offset,
-                u,
-                prior_rows=prior_rows,
-                prior_values=prior_values,
-            ),
-            centre,
-        )[1:]
+        _, errors, unsettled = settle(seen, centre, solved)
     except RankDeficiencyError as found:
         checks.refuse_undetermined(found, centre)
+    return errors, unsettled
 
 
 def scale_nodes(chi_square: float, degrees_of_freedom: int) -> FloatArray:
@@ -289,11 +300,15 @@ def _collected(
     seen: Observations,
     surface: Surface,
     grid: OpenGrid,
+    solver: CellSolver,
     solutions: CellSolutions,
     judged: Scatter,
+    errors: RunErrors,
     caveats: tuple[Caveat, ...],
 ) -> OpenFit:
     cells, scales, p = solutions.means.shape[1:]
+    # A shared error keeps its size, so that scatter and shared errors have no common factor.
+    judged = replace(judged, shared_scale=None)
     weights = solutions.weights[0]
     kept = _kept(weights)
     highest = float(solutions.log_weight.max())
@@ -308,8 +323,11 @@ def _collected(
             cell=np.repeat(np.arange(cells), scales)[kept],
         ),
         scatter=judged,
+        errors=errors,
         caveats=caveats,
         grid=grid,
+        solver=solver,
+        kept=kept,
         cell_weights=frozen(weights.reshape(cells, scales).sum(axis=1)),
         log_evidence=highest + float(np.log(np.exp(solutions.log_weight - highest).sum())),
     )

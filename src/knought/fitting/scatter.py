@@ -38,12 +38,16 @@ class Scatter:
     kind
         ``"given"`` (stated and taken as absolute), ``"scatter"`` (from the scatter) or
         ``"enlarged"`` (stated, but too small to explain the scatter).
+    shared_scale
+        Where runs share errors, whose size the scatter does not tell: the factor on independent
+        uncertainties alone that makes χ² equal to its degrees of freedom.
     """
 
     chi_square: float
     degrees_of_freedom: int
     stated: bool
     kind: Literal["given", "scatter", "enlarged"]
+    shared_scale: float | None = None
 
     @property
     def reduced_chi_square(self) -> float:
@@ -70,8 +74,10 @@ class Scatter:
 
     @property
     def factor(self) -> float:
-        """What the standard uncertainties from u as given are multiplied by for the headline."""
-        return self.birge_ratio if self.from_scatter else 1.0
+        """What independent uncertainties of the runs are multiplied by for the headline."""
+        if not self.from_scatter:
+            return 1.0
+        return self.birge_ratio if self.shared_scale is None else self.shared_scale
 
     @property
     def headline_degrees_of_freedom(self) -> float:

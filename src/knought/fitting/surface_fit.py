@@ -14,8 +14,8 @@ from knought.fitting import checks
 from knought.fitting.distribution import ParameterDistribution
 from knought.fitting.found import Found
 from knought.fitting.observations import Observations, observe
+from knought.fitting.run_errors import settle
 from knought.fitting.scatter import judge_scatter
-from knought.fitting.weights import settle_weights
 from knought.laws.salt import salt_law as named_salt_law
 from knought.laws.surface import Surface
 from knought.laws.temperature import temperature_law as named_temperature_law
@@ -28,10 +28,12 @@ from knought.numerics.least_squares import (
 )
 
 if TYPE_CHECKING:
+    from collections.abc import Callable
+
     from numpy.typing import ArrayLike
 
-    from knought.errors import Caveat
-    from knought.fitting.scatter import ScatterChoice
+    from knought.fitting.run_errors import RunErrors
+    from knought.fitting.scatter import Scatter, ScatterChoice
     from knought.laws.salt import SaltLaw
     from knought.measurement.table import RateTable
 
@@ -39,6 +41,13 @@ __all__ = ["DEFAULT_TEMPERATURE_LAW", "ManySurfaceFits", "SurfaceFit", "fit_many
 
 DEFAULT_TEMPERATURE_LAW = "eyring"
 DEFAULT_REFERENCE_TEMPERATURE = 298.15
+
+#: The scale of the scatter is iterated until it moves by less than this fraction.
+_SCALE_SETTLED = 1e-12
+_MOST_SCALINGS = 200
+
+#: Data that a law passes through exactly have no scatter; their u is then this part of that given.
+_LEAST_SCALE = 1e-12
 
 
 @dataclass(frozen=True, eq=False)
@@ -49,9 +58,13 @@ class SurfaceFit(Found):
     ----------
     solution
         The least-squares solution, with the uncertainties as given.
+    scatter_solution
+        The same with independent uncertainties that explain the scatter; None without degrees of
+        freedom.
     """
 
     solution: LinearFit
+    scatter_solution: LinearFit | None
 
     @property
     def standard_errors_given(self) -> FloatArray:
@@ -61,7 +74,16 @@ class SurfaceFit(Found):
     @property
     def standard_errors_scatter(self) -> FloatArray:
         """The same from the scatter about the fit; nan without degrees of freedom, ``(p,)``."""
-        return self.standard_errors_given * self.scatter.birge_ratio
+        if self.scatter_solution is None:
+            return np.full(len(self.distribution.names), np.nan)
+        return np.sqrt(np.diag(self.scatter_solution.covariance))
+
+    @property
+    def headline_solution(self) -> LinearFit:
+        """The solution behind the headline ±."""
+        if self.scatter.from_scatter and self.scatter_solution is not None:
+            return self.scatter_solution
+        return self.solution
 
     @property
     def leverage(self) -> FloatArray:
@@ -145,41 +167,104 @@ def fit_surface(
         standard_concentration,
     )
     checks.require_levels(seen, surface, charges_given=charge_product is not None)
-    solution, u, unsettled = _solve_surface(seen, surface)
-    caveats = (
-        *checks.uncertainty_caveats(seen),
-        *checks.domain_caveats(seen, law),
-        *checks.design_caveats(replace(seen, u=frozen(u)), surface),
-        *unsettled,
-    )
+    rows = surface.ln_k(seen.T, seen.ionic_strength)
+    target = seen.ln_k - rows.offset
+
+    def solved(errors: RunErrors) -> LinearFit:
+        return solve(rows.rows, target, errors.u, shared=errors.shared)
+
+    try:
+        solution, errors, unsettled = settle(seen, surface, solved)
+        scale, scaled = scatter_scale(solution, errors, solved)
+    except RankDeficiencyError as found:
+        checks.refuse_undetermined(found, surface)
     judged = judge_scatter(
         solution.chi_square, solution.degrees_of_freedom, stated=seen.u_given, choice=scatter
     )
+    judged = replace(judged, shared_scale=scale if errors.shared_sources else None)
     return SurfaceFit(
         observations=seen,
         surface=surface,
-        distribution=ParameterDistribution(
-            names=surface.parameters,
-            weights=np.ones(1),
-            means=solution.parameters[None],
-            covariances=solution.covariance[None] * judged.factor**2,
-            degrees_of_freedom=judged.headline_degrees_of_freedom,
-        ),
+        distribution=_distribution(surface, solution, scaled, judged, bool(errors.shared_sources)),
         scatter=judged,
-        caveats=caveats,
+        errors=errors,
+        caveats=(
+            *checks.uncertainty_caveats(seen),
+            *checks.domain_caveats(seen, law),
+            *checks.design_caveats(seen, surface, errors.u),
+            *unsettled,
+        ),
         solution=solution,
+        scatter_solution=scaled,
     )
 
 
-def _solve_surface(
-    seen: Observations, surface: Surface
-) -> tuple[LinearFit, FloatArray, tuple[Caveat, ...]]:
-    rows = surface.ln_k(seen.T, seen.ionic_strength)
-    target = seen.ln_k - rows.offset
-    try:
-        return settle_weights(seen, lambda u: solve(rows.rows, target, u), surface)
-    except RankDeficiencyError as found:
-        checks.refuse_undetermined(found, surface)
+def _distribution(
+    surface: Surface,
+    solution: LinearFit,
+    scaled: LinearFit | None,
+    judged: Scatter,
+    shares_errors: bool,
+) -> ParameterDistribution:
+    """Return the distribution of the parameters behind the headline ±."""
+    chosen = scaled if judged.from_scatter and scaled is not None else solution
+    independent = None
+    if judged.from_scatter and shares_errors:
+        # Only what the scatter tells has its degrees of freedom.
+        own = chosen.gain[:, : len(chosen.residuals)]
+        independent = own @ own.T
+    return ParameterDistribution(
+        names=surface.parameters,
+        weights=np.ones(1),
+        means=chosen.parameters[None],
+        covariances=chosen.covariance[None],
+        degrees_of_freedom=judged.headline_degrees_of_freedom,
+        scatter_covariance=independent,
+    )
+
+
+def scatter_scale(
+    solution: LinearFit, errors: RunErrors, solved: Callable[[RunErrors], LinearFit]
+) -> tuple[float, LinearFit | None]:
+    """Return the factor on independent uncertainties that explains the scatter, and the fit there.
+
+    Without shared errors it is the Birge ratio; with them it is iterated until the generalised χ²
+    equals its degrees of freedom, as shared errors keep their size.
+
+    Parameters
+    ----------
+    solution
+        The fit with uncertainties as given.
+    errors
+        The errors that it used.
+    solved
+        Fits with other errors.
+
+    Returns
+    -------
+    float
+        The factor; nan without degrees of freedom.
+    LinearFit or None
+        The fit with it.
+    """
+    nu = solution.degrees_of_freedom
+    if nu <= 0:
+        return float("nan"), None
+    scale = float(np.sqrt(solution.chi_square / nu))
+    if not errors.shared_sources:
+        return scale, replace(
+            solution,
+            covariance=frozen(solution.covariance * scale**2),
+            gain=frozen(solution.gain * scale),
+        )
+    scaled = solution
+    for _ in range(_MOST_SCALINGS):
+        scaled = solved(errors.scaled(max(scale, _LEAST_SCALE)))
+        factor = float(np.sqrt(scaled.chi_square / nu))
+        scale *= factor
+        if abs(factor - 1) < _SCALE_SETTLED or scale < _LEAST_SCALE:
+            break
+    return scale, scaled
 
 
 @dataclass(frozen=True, eq=False)

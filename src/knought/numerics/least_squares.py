@@ -62,6 +62,9 @@ class LinearFit:
         From the uncertainties as given (scale one).
     estimator : (p, n) ndarray
         G in θ = G y (+ what the priors add): what each observation contributes.
+    gain : (p, n + s + r) ndarray
+        What one standard deviation of each observation, shared error and prior does to θ, in that
+        order; gain gainᵀ is the covariance, so that its squares are the budget of every result.
     residuals : (n,) ndarray
         y - X θ, in the unit of y; shared errors are not taken out of them.
     leverage : (n,) ndarray
@@ -77,6 +80,7 @@ class LinearFit:
     parameters: FloatArray
     covariance: FloatArray
     estimator: FloatArray
+    gain: FloatArray
     residuals: FloatArray
     leverage: FloatArray
     chi_square: float
@@ -140,11 +144,12 @@ def solve(
     solution, residual = _refined(matrix / scale, right, q, upper)
 
     inverse = _triangular_inverse(upper) / scale[:, None]
-    estimator = inverse @ q.T
+    gain = (inverse @ q.T)[:p]
     return LinearFit(
         parameters=frozen((solution / scale)[:p]),
         covariance=frozen((inverse @ inverse.T)[:p, :p]),
-        estimator=frozen(estimator[:p, :n] * weight),
+        estimator=frozen(gain[:, :n] * weight),
+        gain=frozen(gain),
         residuals=frozen(residual[:n] / weight + shared @ (solution / scale)[p:]),
         leverage=frozen(np.sum(q[:n] ** 2, axis=1)),
         chi_square=float(residual @ residual),

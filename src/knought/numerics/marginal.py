@@ -125,6 +125,20 @@ class CellSolver:
         """Covariance of the parameters in each cell and at each scale, ``(c, s, p, p)``."""
         return self._covariances
 
+    def gains(self) -> FloatArray:
+        """Return what one standard deviation of each observation, shared error and prior does.
+
+        Returns
+        -------
+        (c, s, p, n + q + r) ndarray
+            To the parameters in each cell and at each scale; gain gainᵀ is the covariance there.
+        """
+        size = self._r.shape[-1]
+        top = np.swapaxes(self._small_q[..., :size, :], -1, -2)
+        bottom = np.swapaxes(self._small_q[..., size:, :], -1, -2)
+        data = self._inverse @ (top @ np.swapaxes(self._q, 1, 2)[:, None])
+        return np.concatenate([data, self._inverse @ bottom], axis=-1)[..., : self._p, :]
+
     def solve(self, observed: FloatArray) -> CellSolutions:
         """Solve data sets that share the conditions and the weights.
 

@@ -26,6 +26,9 @@ _RELATIVE_TOLERANCE = 1e-13
 
 _MOST_STEPS = 200
 
+#: With this many degrees of freedom, Student's t is the normal distribution to 1e-9.
+_AS_GOOD_AS_NORMAL = 1e9
+
 
 def normal_quantile(probability: float) -> float:
     """Return the standard normal quantile of `probability`."""
@@ -61,14 +64,14 @@ class Mixture:
     locations, scales : (c, ...) ndarray
         Location and scale of each component for each result. A scale may be zero: that component
         is then certain.
-    degrees_of_freedom
-        Of the Student t components; infinite (the default) makes them normal.
+    degrees_of_freedom : float or (...) ndarray
+        Of the Student t components of each result; infinite (the default) makes them normal.
     """
 
     weights: FloatArray
     locations: FloatArray
     scales: FloatArray
-    degrees_of_freedom: float = math.inf
+    degrees_of_freedom: FloatArray | float = math.inf
     _shape: tuple[int, ...] = field(init=False, repr=False)
 
     def __post_init__(self) -> None:
@@ -79,6 +82,20 @@ class Mixture:
         object.__setattr__(self, "locations", frozen(locations))
         object.__setattr__(self, "scales", frozen(scales))
         object.__setattr__(self, "_shape", locations.shape[1:])
+
+    def first(self) -> Mixture:
+        """Return the first of several results alone, zero-dimensional."""
+        nu = self.degrees_of_freedom
+        return Mixture(
+            self.weights,
+            self.locations[:, 0],
+            self.scales[:, 0],
+            float(np.ravel(nu)[0]) if np.ndim(nu) else nu,
+        )
+
+    @property
+    def _normal(self) -> bool:
+        return bool(np.all(np.isinf(self.degrees_of_freedom)))
 
     @property
     def mean(self) -> FloatArray:
@@ -103,14 +120,11 @@ class Mixture:
 
     def pdf(self, x: FloatArray | float) -> FloatArray:
         """Return the probability density at `x`, shape ``(...)``."""
-        nu = self.degrees_of_freedom
         standard = self._standardised(x)
-        if math.isinf(nu):
+        if self._normal:
             density = np.exp(-0.5 * standard**2) / math.sqrt(2 * math.pi)
         else:
-            log_norm = math.lgamma((nu + 1) / 2) - math.lgamma(nu / 2)
-            density = np.exp(log_norm - (nu + 1) / 2 * np.log1p(standard**2 / nu))
-            density /= math.sqrt(nu * math.pi)
+            density = _student_density(standard, self.degrees_of_freedom)
         return np.asarray(np.tensordot(self.weights, density / self.scales, axes=1))
 
     def quantile(self, probability: float) -> FloatArray:
@@ -129,7 +143,7 @@ class Mixture:
                 f"a probability must lie between 0 and 1, not {probability}",
                 "give the coverage as a fraction, 0.95",
             )
-        step = student_quantile(probability, self.degrees_of_freedom)
+        step = _quantile_steps(probability, self.degrees_of_freedom)
         ends = self.locations + step * self.scales
         low, high = ends.min(axis=0), ends.max(axis=0)
         if self.weights.size == 1:
@@ -172,13 +186,32 @@ class Mixture:
         return np.where(self.scales == 0, step, standard)
 
     def _component_cdf(self, standard: FloatArray) -> FloatArray:
-        if math.isinf(self.degrees_of_freedom):
-            from scipy.special import ndtr
+        from scipy.special import ndtr, stdtr
 
+        if self._normal:
             return np.asarray(ndtr(standard))
-        from scipy.special import stdtr
+        nu = np.minimum(self.degrees_of_freedom, _AS_GOOD_AS_NORMAL)
+        return np.asarray(stdtr(nu, standard))
 
-        return np.asarray(stdtr(self.degrees_of_freedom, standard))
+
+def _quantile_steps(
+    probability: float, degrees_of_freedom: FloatArray | float
+) -> FloatArray | float:
+    """Return Student's quantile for one or several degrees of freedom."""
+    if np.ndim(degrees_of_freedom) == 0:
+        return student_quantile(probability, float(degrees_of_freedom))
+    from scipy.special import stdtrit
+
+    nu = np.minimum(degrees_of_freedom, _AS_GOOD_AS_NORMAL)
+    return np.asarray(stdtrit(nu, probability))
+
+
+def _student_density(standard: FloatArray, degrees_of_freedom: FloatArray | float) -> FloatArray:
+    from scipy.special import gammaln
+
+    nu = np.minimum(degrees_of_freedom, _AS_GOOD_AS_NORMAL)
+    log_norm = gammaln((nu + 1) / 2) - gammaln(nu / 2) - 0.5 * np.log(nu * np.pi)
+    return np.asarray(np.exp(log_norm - (nu + 1) / 2 * np.log1p(standard**2 / nu)))
 
 
 @dataclass(frozen=True, eq=False)

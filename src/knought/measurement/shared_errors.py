@@ -1,0 +1,178 @@
+"""Errors that several runs share, and what one of them does to every ln k.
+
+A probe that reads 0.2 K high moves every run the same way: treated as independent, such an error
+would seem to average out. Each shared error keeps its name, so that every result has a budget. What
+one standard uncertainty of it does to ln k of each run, J, follows from the slopes of the surface,
+which the fit supplies:
+
+| kind | u is | J |
+| temperature-offset | in K | u ∂ln k/∂T |
+| temperature-gain | relative, about a calibration point | u (T - T_cal) ∂ln k/∂T |
+| factor | relative, on k | u |
+| ionic-strength-factor | relative | u I ∂ln k/∂I |
+
+Molar absorptivity, path length and a stock's concentration are factors on k.
+"""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+from typing import TYPE_CHECKING, Literal
+
+import numpy as np
+
+from knought.errors import InputError
+
+if TYPE_CHECKING:
+    from knought.arrays import FloatArray
+
+__all__ = ["DISTRIBUTIONS", "KINDS", "SharedError", "unit_draws"]
+
+Kind = Literal["temperature-offset", "temperature-gain", "factor", "ionic-strength-factor"]
+Distribution = Literal["normal", "rectangular", "triangular", "t"]
+
+#: Kinds of shared error, with the unit of u.
+KINDS = {
+    "temperature-offset": "K",
+    "temperature-gain": "1",
+    "factor": "1",
+    "ionic-strength-factor": "1",
+}
+
+DISTRIBUTIONS = ("normal", "rectangular", "triangular", "t")
+
+
+@dataclass(frozen=True)
+class SharedError:
+    """An error common to all runs, or to those of a batch.
+
+    Parameters
+    ----------
+    name
+        What it is called in the budget, ``"probe offset"``.
+    kind
+        ``"temperature-offset"``, ``"temperature-gain"``, ``"factor"`` or
+        ``"ionic-strength-factor"``.
+    u
+        Its standard uncertainty: in K for an offset, relative for the others. Of a rectangular
+        error of half-width a it is a/√3, of a triangular one a/√6 (JCGM 100, 4.3.7 and 4.3.9).
+    batch
+        The batch that shares it; all runs if not given.
+    distribution
+        ``"normal"``, ``"rectangular"``, ``"triangular"`` or ``"t"``: its shape in Monte Carlo.
+    degrees_of_freedom
+        Of a ``"t"`` distribution, above 2.
+    calibrated_at
+        Temperature in K at which a gain does nothing.
+
+    Raises
+    ------
+    InputError
+        If the kind or distribution is unknown, or a number cannot be.
+    """
+
+    name: str
+    kind: Kind
+    u: float
+    batch: str | None = None
+    distribution: Distribution = "normal"
+    degrees_of_freedom: float | None = None
+    calibrated_at: float = 298.15
+
+    def __post_init__(self) -> None:
+        if not self.name.strip():
+            raise InputError("a shared error has no name", "name it as the budget should")
+        if self.kind not in KINDS:
+            raise InputError(
+                f"a shared error is of kind {self.kind!r}", f"choose from {', '.join(KINDS)}"
+            )
+        if self.distribution not in DISTRIBUTIONS:
+            raise InputError(
+                f"a shared error has the distribution {self.distribution!r}",
+                f"choose from {', '.join(DISTRIBUTIONS)}",
+            )
+        if not 0 < self.u < math.inf:
+            raise InputError(
+                f"the shared error {self.name!r} has u = {self.u:g}",
+                "give its standard uncertainty, above zero; leave it out if there is none",
+            )
+        if self.kind != "temperature-offset" and self.u >= 1:
+            raise InputError(
+                f"the shared error {self.name!r} has a relative u of {self.u:g}",
+                "give it as a fraction: 2 % is 0.02",
+            )
+        needs = self.distribution == "t"
+        if needs and not (self.degrees_of_freedom or 0) > 2:
+            raise InputError(
+                f"the shared error {self.name!r} needs more than 2 degrees of freedom",
+                "a t distribution has no standard uncertainty otherwise",
+            )
+        if not 0 < self.calibrated_at < math.inf:
+            raise InputError(
+                f"the shared error {self.name!r} is calibrated at {self.calibrated_at:g} K",
+                "give a temperature in K",
+            )
+
+    def effect(
+        self,
+        T: FloatArray,
+        I: FloatArray,
+        slope_T: FloatArray,
+        slope_I: FloatArray,
+        batch: tuple[str, ...] | None,
+    ) -> FloatArray:
+        """Return what one standard uncertainty does to ln k of each run, shape ``(n,)``.
+
+        Parameters
+        ----------
+        T, I : (n,) ndarray
+            Conditions of the runs, K and mol/L.
+        slope_T, slope_I : (n,) ndarray
+            ∂ln k/∂T in K^-1 and ∂ln k/∂I in L/mol there.
+        batch
+            Batch of each run.
+
+        Raises
+        ------
+        InputError
+            If the error belongs to a batch that no run has.
+        """
+        if self.kind == "temperature-offset":
+            whole = slope_T
+        elif self.kind == "temperature-gain":
+            whole = (T - self.calibrated_at) * slope_T
+        elif self.kind == "factor":
+            whole = np.ones_like(T)
+        else:
+            # At I = 0 a relative error of I does nothing, though the slope of √I is infinite.
+            whole = np.where(I > 0, I * np.where(I > 0, slope_I, 0.0), 0.0)
+        return np.asarray(self.u * whole * self._reach(len(T), batch))
+
+    def _reach(self, runs: int, batch: tuple[str, ...] | None) -> FloatArray:
+        if self.batch is None:
+            return np.ones(runs)
+        member = np.array([each == self.batch for each in batch or ("",) * runs], dtype=float)
+        if not member.any():
+            known = sorted(set(batch or ())) or ["no batches"]
+            raise InputError(
+                f"the shared error {self.name!r} belongs to the batch {self.batch!r}, which no "
+                "run has",
+                f"the runs have {', '.join(known)}",
+            )
+        return member
+
+
+def unit_draws(error: SharedError, random: np.random.Generator, count: int) -> FloatArray:
+    """Draw a shared error in units of its standard uncertainty, mean zero, shape ``(count,)``.
+
+    JCGM 101, 6.4: rectangular ±√3, triangular ±√6, t scaled to unit standard deviation.
+    """
+    if error.distribution == "rectangular":
+        return random.uniform(-math.sqrt(3), math.sqrt(3), count)
+    if error.distribution == "triangular":
+        return random.triangular(-math.sqrt(6), 0.0, math.sqrt(6), count)
+    if error.distribution == "t" and error.degrees_of_freedom is not None:
+        nu = error.degrees_of_freedom
+        return random.standard_t(nu, count) * math.sqrt((nu - 2) / nu)
+    return random.standard_normal(count)
