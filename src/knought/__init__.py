@@ -28,6 +28,7 @@ if TYPE_CHECKING:
     from knought.fitting.surface_fit import SurfaceFit, fit_many
     from knought.laws.open_law import Priors
     from knought.measurement.reading import read_rates
+    from knought.measurement.shared_errors import SharedError
     from knought.measurement.table import RateTable
     from knought.reporting.report import Report
     from knought.study import run_study
@@ -42,6 +43,7 @@ __all__ = [
     "Problem",
     "RateTable",
     "Report",
+    "SharedError",
     "Species",
     "SurfaceFit",
     "__version__",
@@ -68,6 +70,7 @@ _HOMES = {
     "Problem": "errors",
     "RateTable": "measurement.table",
     "Report": "reporting.report",
+    "SharedError": "measurement.shared_errors",
     "Species": "chemistry.species",
     "SurfaceFit": "fitting.surface_fit",
     "assess": "fitting.assess",

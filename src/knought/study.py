@@ -83,6 +83,7 @@ class Study:
             reactants=said.reaction.reactants,
             ion_size=said.laws.ion_size,
             priors=said.priors.priors(),
+            shared_errors=[each.error() for each in said.shared_errors],
         )
         inputs = ((self.path.name, sha256_of(self.path)), *_source(self))
         return Report(assessment, said.study.title, inputs, said.study.seed)

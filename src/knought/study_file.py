@@ -8,13 +8,21 @@ from __future__ import annotations
 
 import difflib
 import tomllib
-from typing import TYPE_CHECKING, Annotated, Any
+from typing import TYPE_CHECKING, Annotated, Any, Literal, get_args
 
-from pydantic import BaseModel, BeforeValidator, ConfigDict, Field, ValidationError
+from pydantic import (
+    BaseModel,
+    BeforeValidator,
+    ConfigDict,
+    Field,
+    ValidationError,
+    model_validator,
+)
 
 from knought.chemistry.units import parse_quantity
 from knought.errors import InputError, Problem
 from knought.laws.open_law import DEFAULT_PRIORS, Priors
+from knought.measurement.shared_errors import KINDS, SharedError
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -95,6 +103,41 @@ class PriorsSection(_Section):
         )
 
 
+class SharedErrorSection(_Section):
+    """``[[shared_errors]]``: an error that all runs, or those of a batch, share."""
+
+    name: str
+    kind: Literal["temperature-offset", "temperature-gain", "factor", "ionic-strength-factor"]
+    u: str
+    batch: str | None = None
+    distribution: Literal["normal", "rectangular", "triangular", "t"] = "normal"
+    degrees_of_freedom: float | None = None
+    calibrated_at: Kelvin = 298.15
+
+    @model_validator(mode="after")
+    def _check(self) -> SharedErrorSection:
+        self.error()
+        return self
+
+    def error(self) -> SharedError:
+        """Return it as the fit takes it.
+
+        Raises
+        ------
+        InputError
+            If u has the wrong unit, or a number cannot be.
+        """
+        return SharedError(
+            self.name,
+            self.kind,
+            parse_quantity(self.u, KINDS[self.kind]),
+            self.batch,
+            self.distribution,
+            self.degrees_of_freedom,
+            self.calibrated_at,
+        )
+
+
 class StudyFile(_Section):
     """A whole study file; sections that are left out keep their defaults."""
 
@@ -103,6 +146,7 @@ class StudyFile(_Section):
     reaction: ReactionSection = ReactionSection()
     laws: LawsSection = LawsSection()
     priors: PriorsSection = PriorsSection()
+    shared_errors: tuple[SharedErrorSection, ...] = ()
 
 
 def read_study_file(path: Path) -> StudyFile:
@@ -169,7 +213,10 @@ def _problem(file: str, detail: dict[str, Any]) -> Problem:
 def _known_keys(where: list[str]) -> list[str]:
     model: type[BaseModel] = StudyFile
     for part in where:
+        if part.isdigit():
+            continue  # the number of a section that may be repeated
         annotation = model.model_fields[part].annotation
+        annotation = next(iter(get_args(annotation)), annotation)
         if isinstance(annotation, type) and issubclass(annotation, BaseModel):
             model = annotation
     return list(model.model_fields)

@@ -47,6 +47,15 @@ file = "rates.xlsx"                        # or .csv, .tsv; beside this file
 # temperature = "eyring"                   # arrhenius, modified-arrhenius, eyring, eyring-cp
 # salt = "open"                            # left open unless you have a reason to name one
 
+# An error that all runs share, or those of one batch; repeat the section for each.
+# kinds: temperature-offset, temperature-gain, factor (on k: absorptivity, path length, a stock),
+# ionic-strength-factor
+# [[shared_errors]]
+# name = "probe offset"
+# kind = "temperature-offset"
+# u = "0.2 K"                              # standard uncertainty; "2 %" for the other kinds
+# batch = "A"
+
 [priors]
 # What is known of the open salt law before the data; narrow them only if you know better.
 # ion_size = ["1 Å", "12 Å"]               # uniform between

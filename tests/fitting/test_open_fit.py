@@ -38,7 +38,7 @@ def test_the_mixture_is_what_sampling_from_prior_times_likelihood_gives() -> Non
     study = seen()
     found = fit_open(study, scatter="given")
     random = np.random.default_rng(1)
-    draws = 20_000
+    draws = 6_000
     size = random.uniform(1e-10, 12e-10, draws)
     c = random.normal(0.1, 0.3, draws)
     I = study.ionic_strength
@@ -99,8 +99,11 @@ def test_a_finer_grid_does_not_move_the_answer() -> None:
 def test_giving_the_charges_is_conditioning_on_them() -> None:
     """Evidence at a charge product is the density of the mixture there (flat prior)."""
     study = seen()
-    free = fit_open(study, scatter="given")
-    known = {z: fit_open(study, scatter="given", charge_product=z) for z in (1.8, 2.0, 2.3)}
+    free = fit_open(study, scatter="given", refinement=1)
+    known = {
+        z: fit_open(study, scatter="given", charge_product=z, refinement=1)
+        for z in (1.8, 2.0, 2.3)
+    }
     density = free.distribution.parameter("charge_product").pdf
     for one, other in ((1.8, 2.0), (2.0, 2.3)):
         assert known[one].log_evidence - known[other].log_evidence == pytest.approx(
@@ -281,3 +284,20 @@ def test_davies_with_both_coefficients_lies_inside() -> None:
         study = simulate(davies(coefficient), -2, STRENGTHS, studies=1, seed=11).observations
         low, high = fit_open(study, scatter="given").parameters["charge_product"].interval(0.95)
         assert float(low) < -2 < float(high)
+
+
+def test_precise_runs_get_a_finer_grid() -> None:
+    """u of 0.05 %: the default grid would be too coarse, and the answer still holds the truth."""
+    study = simulate(extended(5.3), 2, STRENGTHS, studies=1, seed=4, u=5e-4).observations
+    found = fit_open(study, scatter="given")
+    assert found.grid.cells > 17 * 13
+    low, high = found.parameters["charge_product"].interval(0.99)
+    assert float(low) < 2 < float(high)
+    finest = fit_open(study, scatter="given", refinement=8)
+    one, other = (each.parameters["charge_product"] for each in (found, finest))
+    assert abs(float(one.value) - float(other.value)) < 0.02 * float(other.standard_uncertainty)
+
+
+def test_runs_too_precise_for_any_grid_say_so() -> None:
+    study = simulate(extended(5.3), 4, STRENGTHS, studies=1, seed=4, u=1e-6).observations
+    assert "coarse-grid" in [caveat.code for caveat in fit_open(study, scatter="given").caveats]

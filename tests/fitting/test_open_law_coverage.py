@@ -31,9 +31,7 @@ def probabilities(studies: Studies) -> dict[str, FloatArray]:
     seen = studies.observations
     grid = open_grid()
     surface = Surface(temperature_law("eyring"), grid.law, 298.15, seen.order)
-    solutions = open_solver(
-        seen, surface, grid, run_errors(seen, np.zeros(seen.runs), np.zeros(seen.runs))
-    ).solve(studies.ln_k)
+    solutions = open_solver(seen, surface, grid, run_errors(seen)).solve(studies.ln_k)
     weights, p = solutions.weights, len(surface.parameters)
     means = solutions.means.reshape(len(weights), -1, p)
     scales = np.sqrt(np.diagonal(solutions.covariances.reshape(-1, p, p), axis1=1, axis2=2))

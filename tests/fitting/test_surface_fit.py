@@ -187,8 +187,11 @@ def test_uncertain_temperatures_widen_as_their_slope_says() -> None:
     wider = table(u_T=np.full(18, 0.2))
     one = fitted(rates, salt_law="davies", scatter="given")
     other = fitted(wider, salt_law="davies", scatter="given")
-    energy = np.asarray(other.at(rates.T, strengths(rates))["activation_energy"].value)
-    slope = energy / (GAS_CONSTANT * rates.T**2)
+    # Slopes are those at the conditions that the fit adjusts within their uncertainty.
+    T = other.errors.T
+    assert np.all(np.abs(T - rates.T) < 0.2 * 3)
+    energy = np.asarray(other.at(T, other.errors.I)["activation_energy"].value)
+    slope = energy / (GAS_CONSTANT * T**2)
     assert other.effective_u == pytest.approx(np.hypot(0.02, 0.2 * slope), rel=1e-9)
     assert np.all(other.effective_u > one.effective_u * 1.2)
     assert "temperature" in other.includes

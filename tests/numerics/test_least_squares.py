@@ -128,6 +128,11 @@ def test_columns_that_cannot_be_told_apart_are_named() -> None:
     assert np.all(np.abs(caught.value.direction[1:]) > 0.1)
 
 
+def test_fewer_observations_than_parameters_are_no_problem_to_solve() -> None:
+    with pytest.raises(RankDeficiencyError):
+        solve(np.ones((2, 3)) + np.eye(3)[:2], np.ones(2))
+
+
 def test_a_column_of_zeros_is_named() -> None:
     design = np.column_stack([np.ones(5), np.zeros(5)])
     with pytest.raises(RankDeficiencyError) as caught:

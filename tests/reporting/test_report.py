@@ -67,7 +67,7 @@ def test_the_page_stands_alone(html: str) -> None:
     found = structure(html)
     assert found.outward == []
     assert "script" not in found.tags
-    assert found.tags.count("svg") == 3
+    assert found.tags.count("svg") == 4
     assert "@import" not in html
     assert "http" not in re.sub(r'xmlns(:\w+)?="[^"]*"', "", html).replace(
         "https://", "http://"
@@ -234,6 +234,7 @@ def test_one_temperature_and_no_salt_have_fewer_figures() -> None:
     assert [picture.name for picture in kn.Report(isothermal, "x").pictures] == [
         "salt",
         "residuals",
+        "budget",
     ]
     assert "E_a" not in summary(isothermal, "ascii")
 
@@ -242,3 +243,36 @@ def test_ascii_has_a_word_for_every_sign_that_we_use(assessment: kn.Assessment) 
     text = to_ascii(summary(assessment, "ascii"))
     assert text.isascii()
     assert "?" not in text.replace("salt law?", "")
+
+
+def test_the_budget_is_told_alike_in_table_figure_and_record(assessment: kn.Assessment) -> None:
+    from knought.reporting.uncertainty_figures import budget_bars
+    from knought.reporting.uncertainty_tables import budget_table
+
+    made = budget_table(assessment)
+    assert made is not None
+    shares = {row[0].raw: row[2].raw for row in made.rows}
+    parts = assessment.budget("rate_constant")
+    assert shares["repeatability of k"] == pytest.approx(parts.shares["repeatability of k"])
+    assert sum(
+        float(value)
+        for name, value in shares.items()
+        if name != "all together" and not isinstance(value, str) and value is not None
+    ) == pytest.approx(1)
+    ax = budget_bars(assessment, blank_figure().add_subplot())
+    widths = sum(float(patch.get_width()) for patch in ax.patches)  # type: ignore[attr-defined]
+    assert widths == pytest.approx(3)  # three results, each adding up to one
+    kept = record(assessment)["budget"]["rate_constant"]["variances"]
+    assert sum(kept.values()) == pytest.approx(
+        record(assessment)["parameters"]["rate_constant"]["standard_uncertainty"] ** 2, rel=1e-8
+    )
+
+
+def test_tables_of_priors_and_influence_have_their_rows(assessment: kn.Assessment) -> None:
+    from knought.reporting.uncertainty_tables import influence_table, prior_table
+
+    priors, moved = prior_table(assessment), influence_table(assessment)
+    assert priors is not None
+    assert [row[0].raw for row in priors.rows] == ["as they are", "widths halved", "widths doubled"]
+    assert moved is not None
+    assert len(moved.rows) == 10

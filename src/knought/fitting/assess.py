@@ -7,12 +7,20 @@ from typing import TYPE_CHECKING
 
 from knought.errors import Caveat, InputError
 from knought.fitting.budget import Budget, budget
+from knought.fitting.diagnostics import diagnose
 from knought.fitting.fit import Choices, fit_chosen, resolve
+from knought.fitting.influence import influence
+from knought.fitting.k_space import cross_check
+from knought.fitting.monte_carlo import monte_carlo
 from knought.fitting.observations import observe
+from knought.fitting.open_fit import OpenFit
+from knought.fitting.replicates import replicates
+from knought.fitting.sensitivity import prior_sensitivity
 from knought.fitting.surface_fit import SurfaceFit
-from knought.fitting.verdicts import verdicts
+from knought.fitting.verdicts import residual_verdicts, verdicts
 from knought.laws.salt import SALT_LAWS
 from knought.laws.temperature import TEMPERATURE_LAWS
+from knought.numerics.seeds import DEFAULT_SEED
 
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
@@ -21,10 +29,16 @@ if TYPE_CHECKING:
     from uncertainties import AffineScalarFunc
 
     from knought.arrays import FloatArray
+    from knought.fitting.diagnostics import Diagnostics
     from knought.fitting.estimate import Estimate
     from knought.fitting.found import Found
+    from knought.fitting.influence import Influence
+    from knought.fitting.k_space import CrossCheck
+    from knought.fitting.monte_carlo import MonteCarlo
     from knought.fitting.observations import Observations
+    from knought.fitting.replicates import Replicates
     from knought.fitting.scatter import ScatterChoice
+    from knought.fitting.sensitivity import PriorCase
     from knought.laws.open_law import Priors
     from knought.measurement.shared_errors import SharedError
     from knought.measurement.table import RateTable
@@ -70,6 +84,12 @@ class Assessment:
         The headline's salt law with every other temperature law that the runs can carry.
     refused
         Laws that the runs cannot carry, and why.
+    diagnostics
+        What the residuals of the headline say.
+    replicates
+        What repeated runs say; None where nothing was repeated.
+    cross_check
+        The best named law fitted to k itself beside ln k; None where it cannot be.
     caveats
         What must be said with the headline.
     """
@@ -81,6 +101,9 @@ class Assessment:
     laws: tuple[SurfaceFit, ...]
     temperature_laws: tuple[Found, ...]
     refused: tuple[Refusal, ...]
+    diagnostics: Diagnostics
+    replicates: Replicates | None
+    cross_check: CrossCheck | None
     caveats: tuple[Caveat, ...]
 
     @property
@@ -123,6 +146,18 @@ class Assessment:
     def budget(self, name: str, *, T: float | None = None, I: float = 0.0) -> Budget:
         """Return what each source adds to the variance of a result; see :func:`budget`."""
         return budget(self.headline, name, T=T, I=I)
+
+    def monte_carlo(self, draws: int | None = None, *, seed: int = DEFAULT_SEED) -> MonteCarlo:
+        """Propagate every distribution by Monte Carlo; see :func:`monte_carlo`."""
+        return monte_carlo(self.headline, draws, seed=seed)
+
+    def influence(self) -> tuple[Influence, ...]:
+        """Return what moves when runs or conditions are left out; see :func:`influence`."""
+        return influence(self.headline)
+
+    def prior_sensitivity(self) -> tuple[PriorCase, ...]:
+        """Return the answer under other priors; empty where the salt law is not open."""
+        return prior_sensitivity(self.headline) if isinstance(self.headline, OpenFit) else ()
 
     def covariance(self) -> tuple[tuple[str, ...], FloatArray]:
         """Return names and covariance of the linear parameters; see :meth:`Found.covariance`."""
@@ -183,6 +218,8 @@ def assess(
     data_alone = _data_alone(seen, choices)
     laws, refused = _named_laws(seen, choices)
     variants, refused_variants = _other_temperature_laws(seen, choices)
+    diagnostics, repeated = diagnose(headline), replicates(headline)
+    checked = cross_check(laws)
     return Assessment(
         rates=rates,
         choices=choices,
@@ -191,10 +228,14 @@ def assess(
         laws=laws,
         temperature_laws=variants,
         refused=(*refused, *refused_variants),
+        diagnostics=diagnostics,
+        replicates=repeated,
+        cross_check=checked,
         caveats=(
             *choices.caveats,
             *headline.caveats,
             *verdicts(headline, data_alone, laws, rates),
+            *residual_verdicts(headline, diagnostics, repeated, checked),
         ),
     )
 

@@ -9,7 +9,6 @@ the means given å), then that of c (the rest).
 
 from __future__ import annotations
 
-from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
@@ -22,6 +21,8 @@ from knought.laws.activation import activation_rows
 from knought.laws.surface import Rows
 
 if TYPE_CHECKING:
+    from collections.abc import Mapping
+
     from knought.arrays import FloatArray
     from knought.chemistry.quantities import Quantity
     from knought.fitting.found import Found
@@ -33,6 +34,9 @@ _BETA = "prior of β"
 _ION_SIZE = "salt law left open: å"
 _LINEAR = "salt law left open: c"
 _SCATTER = "size of the scatter"
+
+#: What rounding leaves of a contribution that is zero, relative to the variance.
+_ROUNDING = 1e-20
 
 
 @dataclass(frozen=True)
@@ -159,8 +163,9 @@ def _open_variances(found: OpenFit, rows: Rows) -> dict[str, float]:
     variances = _by_source(found.errors, squares, distribution.weights)
     means = distribution.of(rows).locations[:, 0]
     size, linear = found.grid.ion_size[cell], found.grid.linear_coefficient[cell]
+    total = sum(variances.values())
     for source, part in _between(means, distribution.weights, size, linear).items():
-        if part > 0:
+        if part > _ROUNDING * total:
             variances[source] = part
     return variances
 

@@ -28,10 +28,10 @@ if TYPE_CHECKING:
     from knought.fitting.scatter import ScatterChoice
     from knought.measurement.table import RateTable
 
-__all__ = ["fit_ion_size"]
+__all__ = ["ION_SIZE_BOUNDS", "fit_ion_size"]
 
 #: å is sought between these bounds (m); ions in water are 2 to 11 Å (Kielland 1937).
-_BOUNDS = (0.3e-10, 30e-10)
+ION_SIZE_BOUNDS = (0.3e-10, 30e-10)
 _START = 4.5e-10
 _ANGSTROM = 1e-10
 
@@ -170,7 +170,7 @@ def _optimum(
         return np.asarray(found.residuals / found.effective_u * found.scatter.factor)
 
     parameters = lmfit.Parameters()
-    low, high = (bound / _ANGSTROM for bound in _BOUNDS)
+    low, high = (bound / _ANGSTROM for bound in ION_SIZE_BOUNDS)
     parameters.add("angstrom", value=_START / _ANGSTROM, min=low, max=high)
     result = lmfit.minimize(residuals, parameters, method="leastsq")
     if not result.success:
@@ -184,7 +184,7 @@ def _optimum(
 def _size_caveats(fitted: SurfaceFit) -> tuple[Caveat, ...]:
     size = fitted.parameters["ion_size"]
     value, u = float(size.value), float(size.standard_uncertainty)
-    if u < 0.5 * value and _BOUNDS[0] * 1.05 < value < _BOUNDS[1] * 0.95:
+    if u < 0.5 * value and ION_SIZE_BOUNDS[0] * 1.05 < value < ION_SIZE_BOUNDS[1] * 0.95:
         return ()
     return (
         Caveat(

@@ -8,7 +8,8 @@ Jacobian k X.
 
 from __future__ import annotations
 
-from dataclasses import replace
+import math
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -17,29 +18,34 @@ from knought.arrays import frozen
 from knought.errors import InputError
 from knought.fitting.distribution import ParameterDistribution
 from knought.fitting.fit import resolve
-from knought.fitting.observations import observe
+from knought.fitting.observations import Observations, observe
 from knought.fitting.scatter import judge_scatter
 from knought.fitting.surface_fit import SurfaceFit, fit_surface
 from knought.numerics.least_squares import LinearFit, solve
 
 if TYPE_CHECKING:
+    from collections.abc import Mapping, Sequence
+
     from knought.arrays import FloatArray
     from knought.fitting.scatter import ScatterChoice
+    from knought.laws.salt import SaltLaw
     from knought.laws.surface import Rows
     from knought.measurement.table import RateTable
 
-__all__ = ["fit_in_k"]
+__all__ = ["CrossCheck", "cross_check", "fit_in_k"]
 
 _MOST_STEPS = 200
 _MOST_HALVINGS = 40
-_CONVERGED = 1e-12
+
+#: Settled once a step is this part of a standard uncertainty.
+_SETTLED_STEP = 1e-7
 
 
 def fit_in_k(
-    rates: RateTable,
+    rates: RateTable | Observations,
     *,
     temperature_law: str | None = None,
-    salt_law: str = "none",
+    salt_law: str | SaltLaw = "none",
     reference_temperature: float | None = None,
     charge_product: float | None = None,
     ion_size: float | None = None,
@@ -50,7 +56,7 @@ def fit_in_k(
     Parameters
     ----------
     rates
-        The table; where it states no uncertainties, every k has the same absolute weight.
+        The table, or what :func:`observe` made of it; where it states no uncertainties, every k has the same absolute weight.
     temperature_law, salt_law, reference_temperature, charge_product, ion_size, scatter
         As for :func:`knought.fit`; the salt law must be a named one.
 
@@ -64,11 +70,11 @@ def fit_in_k(
     InputError
         If the runs cannot determine the parameters, or the iteration does not converge.
     """
-    seen = observe(rates)
+    seen = rates if isinstance(rates, Observations) else observe(rates)
     choices = resolve(
         seen,
         temperature_law=temperature_law,
-        salt_law=salt_law,
+        salt_law=salt_law if isinstance(salt_law, str) else salt_law.name,
         reference_temperature=reference_temperature,
         charge_product=charge_product,
     )
@@ -85,7 +91,7 @@ def fit_in_k(
     # Equal absolute weights need a size near that of k, so that nothing under- or overflows.
     u = seen.u * k if seen.u_given else np.full(seen.runs, k.max()) * seen.u
     rows = start.surface.ln_k(seen.T, seen.ionic_strength)
-    solution = _gauss_newton(rows, k, u, start.solution.parameters)
+    solution = _gauss_newton(_Problem(rows, k, u, start.errors.shared), start.solution.parameters)
     judged = judge_scatter(
         solution.chi_square, solution.degrees_of_freedom, stated=seen.u_given, choice=scatter
     )
@@ -109,47 +115,113 @@ def fit_in_k(
     )
 
 
-def _gauss_newton(rows: Rows, k: FloatArray, u: FloatArray, start: FloatArray) -> LinearFit:
-    """Minimise Σ((k - exp(offset + X θ))/u)²; the last linear problem carries the covariance.
+@dataclass(frozen=True, eq=False)
+class CrossCheck:
+    """One named law fitted to k and to ln k.
+
+    Attributes
+    ----------
+    in_ln_k, in_k
+        The two fits.
+    shifts
+        Parameter to (fit of k less fit of ln k) over the standard uncertainty of the latter.
+    """
+
+    in_ln_k: SurfaceFit
+    in_k: SurfaceFit
+    shifts: Mapping[str, float]
+
+
+def cross_check(laws: Sequence[SurfaceFit]) -> CrossCheck | None:
+    """Fit the law of the lowest AICc to k itself.
+
+    Parameters
+    ----------
+    laws
+        Named laws fitted to ln k.
+
+    Returns
+    -------
+    CrossCheck or None
+        None where no law has an AICc, or the fit of k does not converge: errors of k are then so
+        large that no fit of it means anything, which its uncertainties say already.
+    """
+    able = [law for law in laws if not math.isnan(law.aicc)]
+    if not able:
+        return None
+    best = min(able, key=lambda law: law.aicc)
+    salt_law = best.surface.salt_law
+    try:
+        other = fit_in_k(
+            best.observations,
+            temperature_law=best.temperature_law,
+            salt_law=salt_law,
+            reference_temperature=best.reference_temperature,
+            scatter="scatter" if best.scatter.from_scatter else "given",
+        )
+    except InputError:
+        return None
+    shifts = {}
+    for name, before in best.parameters.items():
+        u = float(before.standard_uncertainty)
+        if not before.given and u > 0:
+            shifts[name] = (float(other.parameters[name].value) - float(before.value)) / u
+    return CrossCheck(best, other, shifts)
+
+
+@dataclass(frozen=True, eq=False)
+class _Problem:
+    """k with its errors, and ln k as an affine function of the parameters."""
+
+    rows: Rows
+    k: FloatArray
+    u: FloatArray
+    shared: FloatArray
+
+    def model(self, theta: FloatArray) -> FloatArray:
+        with np.errstate(over="ignore"):
+            return np.asarray(np.exp(self.rows.offset + self.rows.rows @ theta))
+
+    def step(self, theta: FloatArray) -> LinearFit:
+        """Linearise at `theta`; errors that runs share move ln k by J, and so k by k J."""
+        model = self.model(theta)[:, None]
+        return solve(
+            model * self.rows.rows, self.k - model[:, 0], self.u, shared=model * self.shared
+        )
+
+    def misfit(self, theta: FloatArray) -> float:
+        """Generalised χ² at `theta`, by Woodbury's identity; infinite where k overflows."""
+        model = self.model(theta)
+        if not np.all(np.isfinite(model)):
+            return np.inf
+        residual = (self.k - model) / self.u
+        J = (model / self.u)[:, None] * self.shared
+        pulled = J.T @ residual
+        inner = np.eye(J.shape[1]) + J.T @ J
+        return float(residual @ residual - pulled @ np.linalg.solve(inner, pulled))
+
+
+def _gauss_newton(problem: _Problem, start: FloatArray) -> LinearFit:
+    """Minimise the generalised χ² of k; the last linear problem carries the covariance.
 
     Raises
     ------
     InputError
         If it does not converge.
     """
-    theta = start
-    model = np.exp(rows.offset + rows.rows @ theta)
-    misfit = float(np.sum(((k - model) / u) ** 2))
+    theta, misfit = start, problem.misfit(start)
     for _ in range(_MOST_STEPS):
-        step = solve(model[:, None] * rows.rows, k - model, u)
+        step = problem.step(theta)
         size = float(np.max(np.abs(step.parameters) / np.sqrt(np.diag(step.covariance))))
-        theta, model, better = _halved(rows, k, u, theta, step.parameters, misfit)
-        gained = misfit - better
-        misfit = better
-        # Settled once a step is a negligible part of a standard uncertainty, or gains nothing.
-        if size < 1e-9 or gained <= _CONVERGED * misfit:
-            final = solve(model[:, None] * rows.rows, k - model, u)
-            return replace(final, parameters=theta + final.parameters)
+        if size < _SETTLED_STEP:
+            return replace(step, parameters=frozen(theta + step.parameters))
+        for halvings in range(_MOST_HALVINGS):
+            moved = theta + step.parameters * 0.5**halvings
+            better = problem.misfit(moved)
+            if better <= misfit:
+                break
+        theta, misfit = moved, better
     raise InputError(
         f"the fit of k itself did not converge in {_MOST_STEPS} steps",
         "fit ln k instead, or look for runs far from the others",
     )
-
-
-def _halved(
-    rows: Rows,
-    k: FloatArray,
-    u: FloatArray,
-    theta: FloatArray,
-    step: FloatArray,
-    misfit: float,
-) -> tuple[FloatArray, FloatArray, float]:
-    """Take the step, halved until the misfit does not rise."""
-    for halvings in range(_MOST_HALVINGS):
-        moved = theta + step * 0.5**halvings
-        with np.errstate(over="ignore"):
-            model = np.exp(rows.offset + rows.rows @ moved)
-            better = float(np.sum(((k - model) / u) ** 2))
-        if better <= misfit:
-            return moved, model, better
-    return theta, np.exp(rows.offset + rows.rows @ theta), misfit

@@ -16,6 +16,7 @@ import numpy as np
 
 from knought.arrays import FloatArray, IndexArray, frozen
 from knought.chemistry.quantities import quantity
+from knought.errors import Caveat
 from knought.fitting import checks
 from knought.fitting.distribution import ParameterDistribution
 from knought.fitting.found import Found
@@ -33,7 +34,6 @@ from knought.numerics.quantiles import Histogram
 if TYPE_CHECKING:
     from collections.abc import Mapping
 
-    from knought.errors import Caveat
     from knought.fitting.estimate import Estimate
     from knought.fitting.run_errors import RunErrors
     from knought.fitting.scatter import ScatterChoice
@@ -48,6 +48,12 @@ _NEGLIGIBLE_WEIGHT = 1e-10
 #: Nodes of σ where it is found from the scatter, and the tail probability of σ left out.
 _SCALE_NODES = 24
 _SCALE_TAIL = 5e-4
+
+#: A grid is refined where its effective number of cells is below this, up to this refinement,
+#: until results move by less than this part of their u.
+_FEWEST_CELLS = 12
+_FINEST = 8
+_SETTLED_GRID = 0.01
 
 #: Integer charge products that are weighed against each other.
 CHARGE_PRODUCTS = tuple(range(-9, 10))
@@ -134,7 +140,7 @@ def fit_open(
     charge_product: float | None = None,
     priors: Priors = DEFAULT_PRIORS,
     scatter: ScatterChoice | None = None,
-    refinement: int = 1,
+    refinement: int | None = None,
 ) -> OpenFit:
     """Fit a temperature law with the salt law left open.
 
@@ -147,7 +153,9 @@ def fit_open(
     priors
         What is known of å, c and β.
     refinement
-        Multiplies the nodes of the grid in å and c.
+        Multiplies the nodes of the grid in å and c; as fine as the runs need if not given: where
+        few cells carry the weight, it is doubled until neither ln k° nor the charge product moves
+        by a hundredth of its standard uncertainty.
 
     Returns
     -------
@@ -160,6 +168,70 @@ def fit_open(
         0-100 °C.
     """
     seen = rates if isinstance(rates, Observations) else observe(rates)
+
+    def fitted(refinement: int) -> OpenFit:
+        return _fit_on_grid(
+            seen,
+            refinement,
+            temperature_law=temperature_law,
+            reference_temperature=reference_temperature,
+            standard_concentration=standard_concentration,
+            charge_product=charge_product,
+            priors=priors,
+            scatter=scatter,
+        )
+
+    if refinement is not None:
+        return fitted(refinement)
+    found, finer = fitted(1), 1
+    while _few_cells(found) and finer < _FINEST:
+        finer *= 2
+        before, found = found, fitted(finer)
+        if _moved(before, found) < _SETTLED_GRID:
+            return found
+    if _few_cells(found):
+        caveat = Caveat(
+            "coarse-grid",
+            "The runs are so precise that few shapes of the salt law carry all the weight: the "
+            "intervals may be off by more than a hundredth of u. Narrow the priors about "
+            f"å = {found.parameters['ion_size'].written()}.",
+        )
+        return replace(found, caveats=(*found.caveats, caveat))
+    return found
+
+
+def _few_cells(found: OpenFit) -> bool:
+    """Return whether too few cells of a grid with several carry the weight."""
+    if found.grid.cells == 1:
+        return False
+    return 1.0 / float(np.sum(found.cell_weights**2)) < _FEWEST_CELLS
+
+
+def _moved(before: OpenFit, after: OpenFit) -> float:
+    """Return by how much a finer grid moved value or u of any parameter, over its u."""
+    moves = []
+    for name in ("ln_rate_constant", "charge_product"):
+        if name in after.distribution.names:
+            one, other = (each.distribution.parameter(name) for each in (before, after))
+            u = float(other.standard_deviation)
+            moves += [
+                abs(float(one.mean - other.mean)) / u,
+                abs(float(one.standard_deviation) / u - 1),
+            ]
+    return max(moves)
+
+
+def _fit_on_grid(
+    seen: Observations,
+    refinement: int,
+    *,
+    temperature_law: str,
+    reference_temperature: float,
+    standard_concentration: float,
+    charge_product: float | None,
+    priors: Priors,
+    scatter: ScatterChoice | None,
+) -> OpenFit:
     grid = open_grid(priors, refinement)
     if charge_product is not None:
         grid = grid.with_charges(charge_product)
@@ -214,12 +286,12 @@ def open_solver(
     scales : (s,) ndarray, optional
         Values of σ where it is found from the scatter.
     """
-    rows = surface.ln_k(seen.T, seen.ionic_strength)
+    rows = surface.ln_k(errors.T, errors.I)
     design = np.broadcast_to(rows.rows, (grid.cells, *rows.rows.shape[-2:]))
     prior_rows, prior_values = _interaction_prior(surface, grid.priors)
     return CellSolver(
         design,
-        rows.offset,
+        rows.offset - errors.shift,
         errors.u,
         grid.log_weight,
         prior_rows=prior_rows,
@@ -245,21 +317,20 @@ def _settled_errors(
 ) -> tuple[RunErrors, tuple[Caveat, ...]]:
     """Return the errors of the runs, those of T and I carried along the slope of the central cell.
 
-    The slopes hardly depend on å and c, so that one cell's serve for all.
+    Slopes and adjusted conditions hardly depend on å and c, so that one cell's serve for all.
 
     Raises
     ------
     InputError
         If the runs leave a combination of parameters undetermined.
     """
-    rows = centre.ln_k(seen.T, seen.ionic_strength)
-    target = seen.ln_k - rows.offset
     prior_rows, prior_values = _interaction_prior(centre, priors)
 
     def solved(errors: RunErrors) -> LinearFit:
+        rows = centre.ln_k(errors.T, errors.I)
         return solve(
             rows.rows,
-            target,
+            seen.ln_k + errors.shift - rows.offset,
             errors.u,
             shared=errors.shared,
             prior_rows=prior_rows,

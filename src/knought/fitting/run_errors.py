@@ -1,14 +1,16 @@
 """Errors of ln k, run by run and source by source, and those that runs share.
 
-Random errors of a run's own temperature and ionic strength enter through the slope of the surface
-("effective variance": Clutton-Brock, Technometrics 9 (1967) 261; Orear, Am. J. Phys. 50 (1982)
-912): u_eff² = u(ln k)² + (∂ln k/∂T)² u(T)² + (∂ln k/∂I)² u(I)². Errors that runs share enter as
-columns J. The slopes depend on the fit and the fit on the weights, so the two are iterated.
+Random errors of a run's own temperature and ionic strength are unknown shifts δ of its conditions,
+known to be 0 ± u. Linearised about the fitted surface, they add the variance
+(∂ln k/∂T)² u(T)² + (∂ln k/∂I)² u(I)² to that of ln k ("effective variance"), and the surface is
+evaluated at the shifted conditions; repeated until nothing moves, this is the exact least-squares
+solution with errors in all variables (York et al., Am. J. Phys. 72 (2004) 367; ISO/TS 28037:2010,
+clause 7). Errors that runs share enter as columns J along the same slopes.
 """
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -23,16 +25,16 @@ if TYPE_CHECKING:
     from knought.laws.surface import Surface
     from knought.numerics.least_squares import LinearFit
 
-__all__ = ["REPEATABILITY", "RunErrors", "settle"]
+__all__ = ["REPEATABILITY", "RunErrors", "run_errors", "settle"]
 
 #: Names of the independent sources in budgets.
 REPEATABILITY = "repeatability of k"
 _TEMPERATURES = "temperature of each run"
 _STRENGTHS = "ionic strength of each run"
 
-#: The weights have settled when no u of ln k moves by more than this fraction.
-_SETTLED = 1e-12
-_MOST_ITERATIONS = 60
+#: The weights have settled when nothing moves by more than this part of a u.
+_SETTLED = 1e-10
+_MOST_ITERATIONS = 200
 
 
 @dataclass(frozen=True, eq=False)
@@ -49,21 +51,24 @@ class RunErrors:
         Names of the s shared errors.
     shared : (n, s) ndarray
         What one standard uncertainty of each does to ln k of each run.
+    T, I : (n,) ndarray
+        Conditions of the runs as the fit adjusts them, K and mol/L: those measured, where they
+        have no error of their own.
+    shift : (n,) ndarray
+        What the adjustment changes ln k by, along the slopes.
     """
 
     sources: tuple[str, ...]
     variances: FloatArray
     shared_sources: tuple[str, ...]
     shared: FloatArray
+    T: FloatArray
+    I: FloatArray
+    shift: FloatArray
 
     def scaled(self, factor: float) -> RunErrors:
         """Return the errors with every independent u multiplied by `factor`."""
-        return RunErrors(
-            self.sources,
-            frozen(self.variances * factor**2),
-            self.shared_sources,
-            self.shared,
-        )
+        return replace(self, variances=frozen(self.variances * factor**2))
 
     @property
     def u(self) -> FloatArray:
@@ -71,41 +76,61 @@ class RunErrors:
         return np.sqrt(self.variances.sum(axis=0))
 
 
-def run_errors(seen: Observations, slope_T: FloatArray, slope_I: FloatArray) -> RunErrors:
+def run_errors(
+    seen: Observations,
+    slope_T: FloatArray | None = None,
+    slope_I: FloatArray | None = None,
+    residual: FloatArray | None = None,
+) -> RunErrors:
     """Return the errors of the runs at given slopes of the surface.
 
     Parameters
     ----------
     seen
         The runs.
-    slope_T, slope_I : (n,) ndarray
-        ∂ln k/∂T in K^-1 and ∂ln k/∂I in L/mol.
+    slope_T, slope_I : (n,) ndarray, optional
+        ∂ln k/∂T in K^-1 and ∂ln k/∂I in L/mol; zero if not given. An infinite slope (that of √I
+        at I = 0) counts as zero: an exact zero carries no error of I.
+    residual : (n,) ndarray, optional
+        Observed less fitted ln k along the slopes, of which each run's T and I take their part;
+        zero if not given.
     """
+    n = seen.runs
+    slope_T = np.zeros(n) if slope_T is None else slope_T
+    slope_I = np.zeros(n) if slope_I is None else np.where(np.isfinite(slope_I), slope_I, 0.0)
+    residual = np.zeros(n) if residual is None else residual
+    u_T, u_I = np.zeros(n), np.zeros(n)
     sources, variances = [REPEATABILITY], [seen.u**2]
     if seen.u_given and seen.u_T is not None:
+        u_T = seen.u_T
         sources.append(_TEMPERATURES)
-        variances.append((slope_T * seen.u_T) ** 2)
+        variances.append((slope_T * u_T) ** 2)
     if seen.u_given and seen.u_I is not None:
-        # At I = 0 the slope of √I is infinite; an exact zero carries no error of I.
-        above = seen.ionic_strength > 0
+        u_I = seen.u_I
         sources.append(_STRENGTHS)
-        variances.append(np.where(above, np.where(above, slope_I, 0.0) * seen.u_I, 0.0) ** 2)
+        variances.append((slope_I * u_I) ** 2)
     effects = [
         error.effect(seen.T, seen.ionic_strength, slope_T, slope_I, seen.batch)
         for error in seen.shared
     ]
+    part = residual / np.sum(variances, axis=0)
+    in_T = slope_T * u_T**2 * part
+    in_I = np.maximum(slope_I * u_I**2 * part, -seen.ionic_strength)
     return RunErrors(
         tuple(sources),
         frozen(np.stack(variances)),
         tuple(error.name for error in seen.shared),
-        frozen(np.stack(effects, axis=1) if effects else np.zeros((seen.runs, 0))),
+        frozen(np.stack(effects, axis=1) if effects else np.zeros((n, 0))),
+        frozen(seen.T + in_T),
+        frozen(seen.ionic_strength + in_I),
+        frozen(slope_T * in_T + slope_I * in_I),
     )
 
 
 def settle(
     seen: Observations, surface: Surface, solve: Callable[[RunErrors], LinearFit]
 ) -> tuple[LinearFit, RunErrors, tuple[Caveat, ...]]:
-    """Fit, carry errors of T and I along the fitted slopes, and repeat until the weights settle.
+    """Fit, carry errors of T and I along the fitted slopes, and repeat until nothing moves.
 
     Parameters
     ----------
@@ -114,7 +139,7 @@ def settle(
     surface
         The surface that is fitted; not stacked.
     solve
-        Fits the surface with given errors of the runs.
+        Fits the surface with given errors, at the conditions that they adjust.
 
     Returns
     -------
@@ -125,20 +150,20 @@ def settle(
     caveats
         Says so if the weights did not settle.
     """
-    n, I = seen.runs, seen.ionic_strength
-    errors = run_errors(seen, np.zeros(n), np.zeros(n))
+    errors = run_errors(seen)
     solution = solve(errors)
     if not (seen.has_abscissa_errors or seen.shared):
         return solution, errors, ()
-    in_T, in_I = surface.ln_k_dT(seen.T, I), surface.ln_k_dI(seen.T, np.where(I > 0, I, 1.0))
     for _ in range(_MOST_ITERATIONS):
-        theta = solution.parameters
-        moved = run_errors(seen, in_T.offset + in_T.rows @ theta, in_I.offset + in_I.rows @ theta)
-        change = float(np.max(np.abs(moved.u / errors.u - 1)))
-        shift = np.max(np.abs(moved.shared - errors.shared), initial=0.0)
+        moved = _along(seen, surface, errors, solution)
+        change = max(
+            float(np.max(np.abs(moved.u / errors.u - 1))),
+            float(np.max(np.abs(moved.shift - errors.shift) / errors.u)),
+            float(np.max(np.abs(moved.shared - errors.shared) / errors.u[:, None], initial=0.0)),
+        )
         errors = moved
         solution = solve(errors)
-        if change < _SETTLED and shift <= _SETTLED * np.max(np.abs(errors.shared), initial=1.0):
+        if change < _SETTLED:
             return solution, errors, ()
     return (
         solution,
@@ -151,3 +176,19 @@ def settle(
             ),
         ),
     )
+
+
+def _along(
+    seen: Observations, surface: Surface, errors: RunErrors, solution: LinearFit
+) -> RunErrors:
+    """Return the errors along the slopes of a fit, at the conditions that it was made at."""
+    theta = solution.parameters
+    in_T, in_I = surface.ln_k_dT(errors.T, errors.I), surface.ln_k_dI(errors.T, errors.I)
+    with np.errstate(invalid="ignore"):  # 0 times the infinite slope of √I at I = 0
+        slope_T = in_T.offset + in_T.rows @ theta
+        slope_I = in_I.offset + in_I.rows @ theta
+    fitted = surface.ln_k(errors.T, errors.I)
+    residual = seen.ln_k + errors.shift - fitted.offset - fitted.rows @ theta
+    if not seen.has_abscissa_errors:
+        residual = np.zeros(seen.runs)
+    return run_errors(seen, slope_T, slope_I, residual)

@@ -167,10 +167,10 @@ def fit_surface(
         standard_concentration,
     )
     checks.require_levels(seen, surface, charges_given=charge_product is not None)
-    rows = surface.ln_k(seen.T, seen.ionic_strength)
-    target = seen.ln_k - rows.offset
 
     def solved(errors: RunErrors) -> LinearFit:
+        rows = surface.ln_k(errors.T, errors.I)
+        target = seen.ln_k + errors.shift - rows.offset
         return solve(rows.rows, target, errors.u, shared=errors.shared)
 
     try:

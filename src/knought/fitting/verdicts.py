@@ -13,15 +13,25 @@ from knought.fitting.checks import extrapolation
 if TYPE_CHECKING:
     from collections.abc import Sequence
 
+    from knought.fitting.diagnostics import Diagnostics
     from knought.fitting.estimate import Estimate
     from knought.fitting.found import Found
+    from knought.fitting.k_space import CrossCheck
+    from knought.fitting.replicates import Replicates
     from knought.fitting.surface_fit import SurfaceFit
     from knought.measurement.table import RateTable
 
-__all__ = ["NOT_DESCRIBED", "integers_in", "verdicts"]
+__all__ = ["NOT_DESCRIBED", "integers_in", "residual_verdicts", "verdicts"]
 
 #: A law whose χ² has a probability below this does not describe the data.
 NOT_DESCRIBED = 1e-3
+
+#: Findings among several that are looked for are said below this probability; single tests below
+#: the other.
+_UNLIKELY, _SIGNIFICANT = 0.01, 0.05
+
+#: A shift between the fits of k and of ln k that is said, in standard uncertainties.
+_K_SPACE_SHIFT = 1.0
 
 
 def verdicts(
@@ -163,6 +173,142 @@ def _agreement_verdict(laws: Sequence[SurfaceFit]) -> list[Caveat]:
                 )
             )
     return found
+
+
+def residual_verdicts(
+    headline: Found,
+    diagnostics: Diagnostics,
+    repeated: Replicates | None,
+    checked: CrossCheck | None,
+) -> tuple[Caveat, ...]:
+    """Return what the residuals say that must be said.
+
+    Parameters
+    ----------
+    headline
+        The answer.
+    diagnostics
+        Of its residuals.
+    repeated
+        What repeated runs say, if any were.
+    checked
+        The fit of k beside that of ln k.
+    """
+    return (
+        *_replicate_verdict(repeated),
+        *_outlier_verdict(headline, diagnostics),
+        *_pattern_verdict(diagnostics),
+        *_curvature_verdict(diagnostics),
+        *_salt_verdict(diagnostics),
+        *_k_space_verdict(checked),
+    )
+
+
+def _replicate_verdict(repeated: Replicates | None) -> list[Caveat]:
+    if repeated is None:
+        return []
+    found = []
+    if repeated.probability < _UNLIKELY:
+        ratio = repeated.standard_deviation / repeated.typical_u
+        found.append(
+            Caveat(
+                "replicates-scatter",
+                f"Repeated runs scatter {ratio:.1f} times as much as their stated u (s(ln k) = "
+                f"{repeated.standard_deviation:.3f} against {repeated.typical_u:.3f}, p = "
+                f"{repeated.probability:.1g}): u(k) looks like the fit error of one trace. Take it "
+                "from replicates instead.",
+            )
+        )
+    if repeated.lack_probability < _UNLIKELY:
+        found.append(
+            Caveat(
+                "lack-of-fit",
+                "The laws miss the means of repeated runs by more than the replicates scatter "
+                f"(p = {repeated.lack_probability:.1g}): something that the laws do not describe "
+                "changes with T, I or time.",
+            )
+        )
+    return found
+
+
+def _outlier_verdict(headline: Found, diagnostics: Diagnostics) -> list[Caveat]:
+    if not diagnostics.outliers:
+        return []
+    listed = ", ".join(
+        f"run {i + 1} of those used ({diagnostics.studentised[i]:+.1f} u at "
+        f"{headline.observations.T[i]:.2f} K)"
+        for i in diagnostics.outliers[:5]
+    )
+    return [
+        Caveat(
+            "outlier",
+            f"Chance hardly explains {listed}. Nothing is dropped: look for a cause, and leave a "
+            "run out only with a reason, which is then printed.",
+        )
+    ]
+
+
+def _pattern_verdict(diagnostics: Diagnostics) -> list[Caveat]:
+    worst = min(diagnostics.runs_test.items(), key=lambda pair: pair[1])
+    if worst[1] >= _UNLIKELY / len(diagnostics.runs_test):
+        return []
+    along = "the order of the runs" if worst[0] == "order" else worst[0]
+    return [
+        Caveat(
+            "pattern",
+            f"Residuals keep their sign along {along} more than chance would have it (p = "
+            f"{worst[1]:.1g}): drift, or a law that does not fit there.",
+        )
+    ]
+
+
+def _curvature_verdict(diagnostics: Diagnostics) -> list[Caveat]:
+    bent = diagnostics.curvature
+    if bent is None or bent.probability >= _SIGNIFICANT:
+        return []
+    return [
+        Caveat(
+            "curvature",
+            f"ln k against 1/T is curved: ΔCₚ‡ = ({bent.value:.0f} ± {bent.standard_uncertainty:.0f}) "
+            f"J K⁻¹ mol⁻¹, p = {bent.probability:.2g}. Before it is called a heat capacity, rule "
+            "out a temperature error that grows, a second path, a pre-equilibrium that shifts, and "
+            "the approach to the diffusion limit.",
+        )
+    ]
+
+
+def _salt_verdict(diagnostics: Diagnostics) -> list[Caveat]:
+    test = diagnostics.salt
+    if test is None or test.probability >= _SIGNIFICANT:
+        return []
+    listed = ", ".join(
+        f"{salt}: {offset:+.3f} ± {u:.3f}" for salt, (offset, u) in test.offsets.items()
+    )
+    return [
+        Caveat(
+            "salt-matters",
+            f"At the same T and I, ln k depends on the salt (against {test.reference}: {listed}; "
+            f"p = {test.probability:.1g}). I alone does not describe the medium: ions pair, or the "
+            "counter-ion takes part.",
+        )
+    ]
+
+
+def _k_space_verdict(checked: CrossCheck | None) -> list[Caveat]:
+    if checked is None:
+        return []
+    name, shift = max(checked.shifts.items(), key=lambda pair: abs(pair[1]), default=("", 0.0))
+    if abs(shift) < _K_SPACE_SHIFT:
+        return []
+    words = checked.in_ln_k.parameters[name].quantity.words
+    return [
+        Caveat(
+            "k-space",
+            f"Fitting k instead of ln k moves the {words} by {shift:+.1f} of its standard "
+            f"uncertainties ({checked.in_ln_k.surface.salt_law.words} law): the answer depends on "
+            "how errors of k are distributed. Say which was used, and why.",
+        )
+    ]
 
 
 def _left_out(rates: RateTable) -> list[Caveat]:

@@ -119,10 +119,13 @@ class OpenGrid:
     @property
     def central(self) -> SaltLaw:
         """The ordinary salt law of the cell with the largest prior weight."""
-        middle = int(np.argmax(self.log_weight))
+        return self.cell(int(np.argmax(self.log_weight)))
+
+    def cell(self, number: int) -> SaltLaw:
+        """Return the ordinary salt law of one cell."""
         form = OpenForm(
-            ion_size=float(self.ion_size[middle]),
-            linear_coefficient=float(self.linear_coefficient[middle]),
+            ion_size=float(self.ion_size[number]),
+            linear_coefficient=float(self.linear_coefficient[number]),
         )
         return replace(self.law, form=form)
 

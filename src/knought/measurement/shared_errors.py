@@ -129,7 +129,7 @@ class SharedError:
         T, I : (n,) ndarray
             Conditions of the runs, K and mol/L.
         slope_T, slope_I : (n,) ndarray
-            ∂ln k/∂T in K^-1 and ∂ln k/∂I in L/mol there.
+            ∂ln k/∂T in K^-1 and ∂ln k/∂I in L/mol there, finite.
         batch
             Batch of each run.
 
@@ -145,8 +145,7 @@ class SharedError:
         elif self.kind == "factor":
             whole = np.ones_like(T)
         else:
-            # At I = 0 a relative error of I does nothing, though the slope of √I is infinite.
-            whole = np.where(I > 0, I * np.where(I > 0, slope_I, 0.0), 0.0)
+            whole = I * slope_I
         return np.asarray(self.u * whole * self._reach(len(T), batch))
 
     def _reach(self, runs: int, batch: tuple[str, ...] | None) -> FloatArray:

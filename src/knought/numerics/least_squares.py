@@ -139,6 +139,9 @@ def solve(
     right = np.concatenate([observed * weight, np.zeros(s), prior_values])
 
     scale = _column_scale(matrix)
+    if len(matrix) < p + s:
+        _, _, right_vectors = np.linalg.svd(matrix / scale)
+        raise RankDeficiencyError(right_vectors[-1][:p], np.inf)
     q, upper = np.linalg.qr(matrix / scale)
     condition = _condition(upper, p)
     solution, residual = _refined(matrix / scale, right, q, upper)

@@ -133,7 +133,7 @@ class CellSolver:
         (c, s, p, n + q + r) ndarray
             To the parameters in each cell and at each scale; gain gainᵀ is the covariance there.
         """
-        size = self._r.shape[-1]
+        size = self._r.shape[-2]
         top = np.swapaxes(self._small_q[..., :size, :], -1, -2)
         bottom = np.swapaxes(self._small_q[..., size:, :], -1, -2)
         data = self._inverse @ (top @ np.swapaxes(self._q, 1, 2)[:, None])
@@ -168,7 +168,8 @@ class CellSolver:
 
     def _solve_block(self, observed: FloatArray) -> tuple[FloatArray, FloatArray, FloatArray]:
         m, n = observed.shape
-        cells, scales, q = len(self._q), len(self._scales), self._r.shape[-1]
+        # With fewer observations than unknowns (priors make up for them), R is not square.
+        cells, scales, q = len(self._q), len(self._scales), self._r.shape[-2]
         # About a solution of one cell, so that squares of large numbers never cancel. Cells lead
         # in every array here: the products then run as matrix multiplications.
         start = self._starting_point(observed)

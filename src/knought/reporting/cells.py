@@ -19,6 +19,7 @@ if TYPE_CHECKING:
     from knought.rounding import Layout
 
 __all__ = [
+    "LAYOUTS",
     "Cell",
     "Column",
     "Table",
@@ -111,7 +112,7 @@ class Table:
     notes: tuple[str, ...] = ()
 
 
-_LAYOUTS: tuple[Layout, ...] = ("text", "ascii", "html", "latex")
+LAYOUTS: tuple[Layout, ...] = ("text", "ascii", "html", "latex")
 
 
 def text_column(title: str) -> Column:
@@ -127,7 +128,7 @@ def number_column(title: str) -> Column:
 def quantity_column(what: Quantity) -> Column:
     """Return a column of numbers headed by a quantity and its unit."""
     return Column(
-        tuple((layout, what.symbol.in_layout(layout)) for layout in _LAYOUTS), what.shown_unit
+        tuple((layout, what.symbol.in_layout(layout)) for layout in LAYOUTS), what.shown_unit
     )
 
 
@@ -138,7 +139,7 @@ def words(text: str) -> Cell:
 
 def symbol_cell(symbol: Symbol, raw: str) -> Cell:
     """Return a cell that shows a quantity's sign."""
-    return Cell(raw, tuple((layout, symbol.in_layout(layout)) for layout in _LAYOUTS))
+    return Cell(raw, tuple((layout, symbol.in_layout(layout)) for layout in LAYOUTS))
 
 
 def number(value: float, *, digits: int | None = None, decimals: int | None = None) -> Cell:
@@ -188,7 +189,7 @@ def interval_cell(estimate: Estimate, coverage: float = 0.95) -> Cell:
     low, high = (what.shown(float(end)) for end in estimate.interval(coverage))
     ends = [_like(end, pattern) for end in (low, high)]
     texts = tuple(
-        (layout, f"{ends[0].number(layout)} to {ends[1].number(layout)}") for layout in _LAYOUTS
+        (layout, f"{ends[0].number(layout)} to {ends[1].number(layout)}") for layout in LAYOUTS
     )
     return Cell(f"{low!r} {high!r}", texts)
 
@@ -196,7 +197,7 @@ def interval_cell(estimate: Estimate, coverage: float = 0.95) -> Cell:
 def unit_cell(estimate: Estimate) -> Cell:
     """Return the shown unit of an estimate."""
     unit = estimate.quantity.shown_unit
-    return Cell(unit, tuple((layout, unit_text(unit, layout)) for layout in _LAYOUTS))
+    return Cell(unit, tuple((layout, unit_text(unit, layout)) for layout in LAYOUTS))
 
 
 def _like(value: float, pattern: Rounded) -> Rounded:
@@ -207,7 +208,7 @@ def _like(value: float, pattern: Rounded) -> Rounded:
 
 def _cell(raw: float, digits: Rounded, *, pair: bool) -> Cell:
     written = digits.pair if pair else digits.number
-    return Cell(raw, tuple((layout, written(layout)) for layout in _LAYOUTS))
+    return Cell(raw, tuple((layout, written(layout)) for layout in LAYOUTS))
 
 
 def plain_lines(table: Table, layout: Layout = "text", width: int = 100) -> list[str]:

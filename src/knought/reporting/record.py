@@ -13,12 +13,14 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 
 from knought.chemistry.quantities import Quantity, quantity
+from knought.reporting.uncertainty_tables import BUDGETED
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
 
     from knought.errors import Caveat
     from knought.fitting.assess import Assessment
+    from knought.fitting.budget import Budget
     from knought.fitting.estimate import Estimate
     from knought.fitting.found import Found
     from knought.fitting.surface_fit import SurfaceFit
@@ -85,6 +87,17 @@ def record(
             {"temperature": each.temperature_law, "salt": each.salt_law, "reason": each.reason}
             for each in assessment.refused
         ],
+        "budget": {
+            name: {
+                "unit": f"({each.quantity.shown_unit})^2",
+                "variances": {
+                    source: part * each.quantity.shown(1.0) ** 2
+                    for source, part in each.variances.items()
+                },
+            }
+            for name, each in _budgets(assessment).items()
+        },
+        "diagnostics": _diagnostics_record(assessment),
         "runs": _runs_record(assessment),
         "understood": [str(line) for line in assessment.rates.account],
         "warnings": [_caveat_record(caveat) for caveat in assessment.caveats],
@@ -222,9 +235,49 @@ def _working_records(found: Found) -> list[dict[str, Any]]:
     return made
 
 
+def _budgets(assessment: Assessment) -> dict[str, Budget]:
+    parameters = assessment.headline.parameters
+    names = [n for n in BUDGETED if n in parameters and not parameters[n].given]
+    return {name: assessment.budget(name) for name in names}
+
+
+def _diagnostics_record(assessment: Assessment) -> dict[str, Any]:
+    found, repeated = assessment.diagnostics, assessment.replicates
+    checked = assessment.cross_check
+    return {
+        "runs_test": dict(found.runs_test),
+        "curvature": None
+        if found.curvature is None
+        else {
+            "value": found.curvature.value,
+            "standard_uncertainty": found.curvature.standard_uncertainty,
+            "unit": "J K^-1 mol^-1",
+            "probability": found.curvature.probability,
+        },
+        "replicates": None
+        if repeated is None
+        else {
+            "groups": repeated.groups,
+            "degrees_of_freedom": repeated.degrees_of_freedom,
+            "standard_deviation_of_ln_k": repeated.standard_deviation,
+            "between_run_variance": _finite(repeated.between),
+            "probability": _finite(repeated.probability),
+            "lack_of_fit_probability": _finite(repeated.lack_probability),
+        },
+        "fit_of_k": None
+        if checked is None
+        else {
+            "salt": checked.in_k.salt_law,
+            "shifts_in_standard_uncertainties": dict(checked.shifts),
+        },
+    }
+
+
 def _runs_record(assessment: Assessment) -> list[dict[str, Any]]:
     rates, found = assessment.rates, assessment.headline
-    residuals, standardised = iter(found.residuals), iter(found.standardised_residuals)
+    residuals = iter(found.residuals)
+    studentised = iter(assessment.diagnostics.studentised)
+    leverage = iter(assessment.diagnostics.leverage)
     made = []
     for i, run in enumerate(rates.run):
         row: dict[str, Any] = {
@@ -237,7 +290,8 @@ def _runs_record(assessment: Assessment) -> list[dict[str, Any]]:
         }
         if rates.used[i]:
             row["ln_residual"] = float(next(residuals))
-            row["standardised_residual"] = _finite(float(next(standardised)))
+            row["studentised_residual"] = _finite(float(next(studentised)))
+            row["leverage"] = float(next(leverage))
         else:
             row["reason"] = rates.reason[i]
         made.append(row)

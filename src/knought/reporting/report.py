@@ -8,9 +8,14 @@ from typing import TYPE_CHECKING, Any
 
 from knought.chemistry.quantities import quantity
 from knought.measurement.reading import account_lines
-from knought.reporting import figures, tables
+from knought.reporting import figures, tables, uncertainty_figures, uncertainty_tables
 from knought.reporting.record import record_text
-from knought.reporting.sentences import charge_sentences, laws_sentence, runs_sentence
+from knought.reporting.sentences import (
+    charge_sentences,
+    check_sentences,
+    laws_sentence,
+    runs_sentence,
+)
 from knought.reporting.style import DOUBLE_COLUMN, STYLE, blank_figure
 from knought.reporting.summary import summary
 from knought.reporting.svg import inline_svg, plain_svg
@@ -78,7 +83,10 @@ class Report:
     @cached_property
     def charges(self) -> tuple[str, ...]:
         """Sentences that say what the runs tell of the charges and of the priors."""
-        return tuple(charge_sentences(self.assessment.data_alone or self.assessment.headline))
+        return (
+            *charge_sentences(self.assessment.data_alone or self.assessment.headline),
+            *check_sentences(self.assessment),
+        )
 
     @cached_property
     def account(self) -> tuple[str, ...]:
@@ -94,6 +102,9 @@ class Report:
             tables.working_table(self.assessment),
             tables.laws_table(self.assessment),
             tables.temperature_laws_table(self.assessment),
+            uncertainty_tables.budget_table(self.assessment),
+            uncertainty_tables.prior_table(self.assessment),
+            uncertainty_tables.influence_table(self.assessment),
             tables.runs_table(self.assessment),
         )
         return tuple(table for table in made if table is not None)
@@ -108,6 +119,9 @@ class Report:
         if found.describes_salt and len(seen.ionic_strength_levels) > 1:
             made.append(self._salt_picture())
         made.append(self._residual_picture())
+        budget = self.assessment.budget("rate_constant")
+        if len(budget.variances) > 1:
+            made.append(self._budget_picture())
         return tuple(made)
 
     def summary(self, layout: Layout = "text") -> str:
@@ -180,6 +194,20 @@ class Report:
             lambda: _drawn(
                 lambda figure: figures.salt_effect(self.assessment, figure.add_subplot()),
                 height=4.2,
+            ),
+        )
+
+    def _budget_picture(self) -> Picture:
+        return Picture(
+            "budget",
+            "Which error to reduce",
+            "Bars: shares of each source of error in the variance of a result; a row adds up to "
+            "100 %.",
+            lambda: _drawn(
+                lambda figure: uncertainty_figures.budget_bars(
+                    self.assessment, figure.add_subplot()
+                ),
+                height=2.4,
             ),
         )
 

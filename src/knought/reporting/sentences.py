@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from typing import TYPE_CHECKING
 
 from knought.chemistry.quantities import quantity
@@ -15,7 +16,13 @@ if TYPE_CHECKING:
     from knought.fitting.found import Found
     from knought.laws.open_law import Priors
 
-__all__ = ["charge_sentences", "laws_sentence", "prior_sentence", "runs_sentence"]
+__all__ = [
+    "charge_sentences",
+    "check_sentences",
+    "laws_sentence",
+    "prior_sentence",
+    "runs_sentence",
+]
 
 #: Integer charge products lighter than this are not listed.
 _LISTED_WEIGHT = 0.005
@@ -111,6 +118,32 @@ def charge_sentences(found: Found) -> list[str]:
         sentences.append(
             "Left of the prior widths after the data (100 % means that the runs say nothing of "
             f"it): {join_words(shares)}."
+        )
+    return sentences
+
+
+def check_sentences(assessment: Assessment) -> list[str]:
+    """Return how the fit of k compares with that of ln k, and what replicates say."""
+    sentences = []
+    checked = assessment.cross_check
+    if checked is not None and checked.shifts:
+        name, shift = max(checked.shifts.items(), key=lambda pair: abs(pair[1]))
+        words = checked.in_ln_k.parameters[name].quantity.words
+        sentences.append(
+            f"Fitting k itself instead of ln k ({checked.in_ln_k.surface.salt_law.words} law) moves "
+            f"no result by more than {abs(shift):.2f} of its standard uncertainties ({words})."
+        )
+    repeated = assessment.replicates
+    if repeated is not None:
+        stated = (
+            ""
+            if math.isnan(repeated.typical_u)
+            else f", against a stated u of {repeated.typical_u:.3f}"
+        )
+        sentences.append(
+            f"Runs repeated at {repeated.groups} conditions scatter with s(ln k) = "
+            f"{repeated.standard_deviation:.3f} ({repeated.degrees_of_freedom} degrees of "
+            f"freedom){stated}."
         )
     return sentences
 

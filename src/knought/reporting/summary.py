@@ -6,7 +6,13 @@ import textwrap
 from typing import TYPE_CHECKING
 
 from knought.reporting.cells import plain_lines
-from knought.reporting.sentences import charge_sentences, laws_sentence, runs_sentence
+from knought.reporting.sentences import (
+    charge_sentences,
+    check_sentences,
+    laws_sentence,
+    runs_sentence,
+)
+from knought.reporting.uncertainty_tables import budget_table
 from knought.reporting.tables import (
     data_alone_table,
     headline_table,
@@ -74,11 +80,15 @@ def summary(assessment: Assessment, layout: Layout = "text") -> str:
     if alone is not None:
         blocks.append(_titled(alone, layout))
     sentences = charge_sentences(assessment.data_alone or assessment.headline)
+    sentences += check_sentences(assessment)
     if sentences:
         blocks.append([line for sentence in sentences for line in _folded(sentence)])
     working = working_table(assessment)
     if working is not None:
         blocks.append(_titled(working, layout))
+    budget = budget_table(assessment)
+    if budget is not None:
+        blocks.append(_titled(budget, layout))
     if len(assessment.laws) > 1:
         blocks.append(_titled(laws_table(assessment), layout))
     if assessment.caveats:

@@ -304,7 +304,8 @@ def runs_table(assessment: Assessment) -> Table:
     """Return every run with its fitted value and residual; runs left out say why."""
     rates, found = assessment.rates, assessment.headline
     residuals = iter(found.residuals)
-    standardised = iter(found.standardised_residuals)
+    standardised = iter(assessment.diagnostics.studentised)
+    pulls = iter(assessment.diagnostics.leverage)
     predicted = iter(np.exp(found.predicted_ln_k))
     k = quantity("measured_rate_constant", rates.order)
     rows = []
@@ -323,10 +324,11 @@ def runs_table(assessment: Assessment) -> Table:
                 number(float(next(predicted)), digits=4),
                 number(float(next(residuals)), decimals=4),
                 number(float(next(standardised)), decimals=2),
+                number(float(next(pulls)), decimals=2),
                 words(""),
             ]
         else:
-            outcome = [words("–"), words("–"), words("–"), words(f"left out: {rates.reason[i]}")]
+            outcome = [*[words("–")] * 4, words(f"left out: {rates.reason[i]}")]
         rows.append((*conditions, shown, *outcome))
     has_I = rates.I is not None
     return Table(
@@ -339,8 +341,10 @@ def runs_table(assessment: Assessment) -> Table:
             quantity_column(k),
             number_column("k fitted"),
             number_column("ln k residual"),
-            number_column("residual / u"),
+            number_column("studentised"),
+            number_column("leverage"),
             text_column(""),
         ),
         tuple(rows),
+        ("Studentised: the residual over its own standard deviation, u √(1 − leverage).",),
     )

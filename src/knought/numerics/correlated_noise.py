@@ -1,0 +1,281 @@
+"""Linear fits to a record whose noise may be correlated from one point to the next.
+
+The idea first: 2 000 readings a second apart are not 2 000 independent measurements; an instrument
+wanders. The noise is taken as white plus a wander with exponential correlation,
+
+    V = σ² [(1 - w) 1 + w C],   C_ij = exp(-|t_i - t_j|/τ),
+
+with w and τ unknown. On a grid of (w, τ) everything is closed: generalised least squares, Student
+t for the parameters, and the residual likelihood (Patterson and Thompson, Biometrika 58 (1971)
+545) as the weight of the cell. The answer is their mixture, so that not knowing the correlation is
+in the uncertainty. One factorisation of C for each τ serves every w.
+
+Long records are first averaged in bins, design included, so that nothing is lost but the white
+part within a bin.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from knought.arrays import FloatArray, frozen
+from knought.numerics.quantiles import Mixture
+
+if TYPE_CHECKING:
+    from knought.arrays import BoolArray
+
+__all__ = ["Binned", "Noise", "Projected", "binned", "project"]
+
+#: Longer records are averaged into this many bins.
+MOST_BINS = 64
+
+_SHARES = np.array([0.15, 0.35, 0.55, 0.75, 0.92])
+_CORRELATION_TIMES = 7
+
+#: Weight before the data are seen of "no correlation"; the rest is spread over the cells.
+_WHITE = 0.5
+
+
+@dataclass(frozen=True, eq=False)
+class Binned:
+    """A record in bins.
+
+    Attributes
+    ----------
+    time : (n,) ndarray
+        Mean time of each bin.
+    values : (m, n) ndarray
+        Mean of each bin for each record.
+    counts : (n,) ndarray
+        Points a bin.
+    edges : (n,) ndarray of int
+        First point of each bin.
+    """
+
+    time: FloatArray
+    values: FloatArray
+    counts: FloatArray
+    edges: FloatArray
+
+    def averaged(self, columns: FloatArray) -> FloatArray:
+        """Average rows of ``(..., points, p)`` in the same bins: ``(..., n, p)``."""
+        starts = self.edges.astype(int)
+        return np.asarray(
+            np.add.reduceat(columns, starts, axis=-2) / self.counts[:, None], dtype=float
+        )
+
+
+def binned(time: FloatArray, values: FloatArray, most: int = MOST_BINS) -> Binned:
+    """Average records into at most `most` bins of equally many points (within one).
+
+    Parameters
+    ----------
+    time : (points,) ndarray
+        Rising times.
+    values : (m, points) ndarray
+        Records on them.
+    most
+        Number of bins.
+    """
+    points = len(time)
+    bins = min(points, most)
+    edges = (np.arange(bins) * points) // bins
+    counts = np.diff(np.append(edges, points)).astype(float)
+    return Binned(
+        frozen(np.add.reduceat(time, edges) / counts),
+        frozen(np.add.reduceat(values, edges, axis=1) / counts),
+        frozen(counts),
+        frozen(edges),
+    )
+
+
+class Noise:
+    """Cells (w, τ) of the noise of one record.
+
+    Parameters
+    ----------
+    record
+        The bins.
+
+    Attributes
+    ----------
+    shares, times : (c,) ndarray
+        w, and τ in the unit of time, of each cell.
+    log_prior : (c,) ndarray
+    log_determinant : (c,) ndarray
+        ln |V/σ²|.
+    """
+
+    def __init__(self, record: Binned) -> None:
+        t, n = record.time, len(record.time)
+        span = float(t[-1] - t[0])
+        self._scale = np.sqrt(record.counts / record.counts.mean())
+        shortest, longest = span / (n - 1), span / 3
+        self._tau = np.geomspace(shortest, max(longest, 2 * shortest), _CORRELATION_TIMES)
+        distance = np.abs(t[:, None] - t)
+        scaled = np.exp(-distance / self._tau[:, None, None]) * (
+            self._scale[:, None] * self._scale
+        )
+        self._values, self._vectors = np.linalg.eigh(scaled)
+        shares = np.concatenate([[0.0], np.tile(_SHARES, _CORRELATION_TIMES)])
+        self.shares = shares
+        self.times = np.concatenate([[shortest], np.repeat(self._tau, len(_SHARES))])
+        rest = len(shares) - 1
+        self.log_prior = np.log(np.concatenate([[_WHITE], np.full(rest, (1 - _WHITE) / rest)]))
+        self._which = np.concatenate([[0], np.repeat(np.arange(_CORRELATION_TIMES), len(_SHARES))])
+        spectrum = 1 - shares[:, None] + shares[:, None] * self._values[self._which]
+        self._weights = 1.0 / spectrum
+        self.log_determinant = np.log(spectrum).sum(axis=1)
+
+    def rotated(self, rows: FloatArray) -> FloatArray:
+        """Return ``(..., n)`` rows along the eigenvectors of each τ: ``(..., τ, n)``."""
+        return np.asarray(np.einsum("...n,knj->...kj", rows * self._scale, self._vectors))
+
+    def products(self, left: FloatArray, right: FloatArray) -> FloatArray:
+        """Return leftᵀ V⁻¹ right for every cell, of ``(..., τ, n)`` that were rotated."""
+        return np.asarray(
+            np.einsum("...cn,cn->...c", (left * right)[..., self._which, :], self._weights)
+        )
+
+
+@dataclass(frozen=True, eq=False)
+class Projected:
+    """Normal equations of m records in every cell, in an orthonormal basis of nested columns.
+
+    Attributes
+    ----------
+    normal : (m or 1, c, p, p) ndarray
+        Qᵀ V⁻¹ Q.
+    right : (m, c, p) ndarray
+        Qᵀ V⁻¹ r, with r the residual of the ordinary fit.
+    square : (m, c) ndarray
+        rᵀ V⁻¹ r.
+    start : (m, p) ndarray
+        The ordinary fit, along Q.
+    back : (m or 1, p, p) ndarray
+        R⁻¹: parameters = R⁻¹ (along Q).
+    points
+        Rows.
+    log_fixed : (c,) ndarray
+        ln prior - ½ ln |V|.
+    """
+
+    normal: FloatArray
+    right: FloatArray
+    square: FloatArray
+    start: FloatArray
+    upper: FloatArray
+    points: int
+    log_fixed: FloatArray
+
+    def along(self, order: int) -> tuple[FloatArray, FloatArray, FloatArray]:
+        """Return coefficients (along Q), their unscaled covariance, and RSS, of leading columns.
+
+        Columns beyond `order` are left out of the model; what the ordinary fit put there is
+        data again.
+        """
+        p = self.normal.shape[-1]
+        tail = self.start[:, order:]
+        # r of the smaller model is r + Q_tail start_tail.
+        cross = self.normal[..., :, order:] @ tail[:, None, :, None]
+        right = self.right + cross[..., 0]
+        square = (
+            self.square
+            + 2 * np.einsum("mcj,mj->mc", self.right[..., order:], tail)
+            + np.einsum("mcj,mj->mc", cross[..., order:, 0], tail)
+        )
+        if order == p:
+            right, square = self.right, self.square
+        inverse = np.linalg.inv(self.normal[..., :order, :order])
+        moved = (inverse @ right[..., :order, None])[..., 0]
+        rss = square - np.einsum("mcj,mcj->mc", right[..., :order], moved)
+        coefficients = self.start[:, None, :order] + moved
+        return coefficients, inverse, np.maximum(rss, 1e-300)
+
+    def log_weight(self, order: int) -> FloatArray:
+        """Return ln (prior times residual likelihood) of each cell, ``(m, c)``, up to a constant."""
+        _, inverse, rss = self.along(order)
+        determinant = np.linalg.slogdet(inverse)[1]
+        return np.asarray(
+            self.log_fixed + 0.5 * determinant - 0.5 * (self.points - order) * np.log(rss)
+        )
+
+    def weights(self, order: int) -> FloatArray:
+        """Return the weights of the cells, ``(m, c)``, each row adding up to one."""
+        log = self.log_weight(order)
+        raised = np.exp(log - log.max(axis=1, keepdims=True))
+        return np.asarray(raised / raised.sum(axis=1, keepdims=True))
+
+    def parameter(
+        self, index: int, order: int
+    ) -> tuple[FloatArray, FloatArray]:
+        """Return value and scale of one parameter in every cell, each ``(m, c)``."""
+        coefficients, inverse, rss = self.along(order)
+        leading = self.upper[..., :order, :order]
+        row = np.linalg.inv(leading)[..., index, :]  # (m or 1, order)
+        value = np.einsum("mcj,mj->mc", coefficients, np.broadcast_to(row, (len(rss), order)))
+        variance = np.einsum("mj,mcjk,mk->mc", row, inverse, row)
+        return value, np.sqrt(variance * rss / (self.points - order))
+
+    def tail_probability(self, order: int, whole: int, weights: FloatArray) -> FloatArray:
+        """Return the probability of columns `order` to `whole` helping so much by chance.
+
+        F-test in each cell, averaged by the cells' weights, shape ``(m,)``.
+        """
+        from scipy.special import fdtrc
+
+        small, large = self.along(order)[2], self.along(whole)[2]
+        more, left = whole - order, self.points - whole
+        ratio = np.maximum(small - large, 0.0) / more / (large / left)
+        return np.asarray(np.sum(weights * fdtrc(more, left, ratio), axis=1))
+
+
+def project(record: Binned, design: FloatArray, noise: Noise | None = None) -> Projected:
+    """Set up the fits of a design to records.
+
+    Parameters
+    ----------
+    record
+        The bins, m records.
+    design : (n, p) or (m, n, p) ndarray
+        Columns in the order in which they are taken up, already averaged in the bins.
+    noise
+        Cells; made from the record if not given.
+    """
+    noise = Noise(record) if noise is None else noise
+    design = design if design.ndim == 3 else design[None]
+    basis, upper = np.linalg.qr(design)
+    start = np.einsum("mnp,mn->mp", np.broadcast_to(basis, (len(record.values), *basis.shape[1:])), record.values)
+    residual = record.values - np.einsum("mnp,mp->mn", np.broadcast_to(basis, (len(start), *basis.shape[1:])), start)
+    columns = noise.rotated(np.swapaxes(basis, 1, 2))  # (m or 1, p, τ, n)
+    rotated = noise.rotated(residual)  # (m, τ, n)
+    p = design.shape[2]
+    normal = np.empty((len(basis), len(noise.shares), p, p))
+    right = np.empty((len(start), len(noise.shares), p))
+    for i in range(p):
+        right[:, :, i] = noise.products(columns[:, i], rotated)
+        for j in range(i + 1):
+            normal[:, :, i, j] = normal[:, :, j, i] = noise.products(columns[:, i], columns[:, j])
+    return Projected(
+        normal,
+        right,
+        noise.products(rotated, rotated),
+        start,
+        upper,
+        len(record.time),
+        noise.log_prior - 0.5 * noise.log_determinant,
+    )
+
+
+def mixture_of(
+    weights: FloatArray, values: FloatArray, scales: FloatArray, degrees_of_freedom: int
+) -> Mixture:
+    """Return the mixture of Student t distributions of one record, from its cells ``(c,)``."""
+    kept: BoolArray = weights > 1e-9
+    total = weights[kept].sum()
+    return Mixture(
+        frozen(weights[kept] / total), values[kept], scales[kept], float(degrees_of_freedom)
+    )

@@ -1,0 +1,148 @@
+"""Tables that say where an uncertainty comes from: budget, priors, influence."""
+
+from __future__ import annotations
+
+import math
+from typing import TYPE_CHECKING
+
+from knought.chemistry.quantities import quantity
+from knought.reporting.cells import (
+    LAYOUTS,
+    Cell,
+    Column,
+    Table,
+    number,
+    number_column,
+    pair_cell,
+    quantity_column,
+    text_column,
+    words,
+)
+
+if TYPE_CHECKING:
+    from knought.fitting.assess import Assessment
+
+__all__ = ["BUDGETED", "budget_table", "influence_table", "prior_table"]
+
+#: Results whose budget is shown.
+BUDGETED = ("rate_constant", "activation_energy", "activation_entropy", "charge_product")
+
+#: At most this many of the largest influences are shown.
+_MOST_INFLUENCES = 10
+
+
+def budget_table(assessment: Assessment) -> Table | None:
+    """Return what each source of error adds to the headline results: which one to reduce.
+
+    None where there is one source only.
+    """
+    found = assessment.headline
+    names = [
+        name for name in BUDGETED if name in found.parameters and not found.parameters[name].given
+    ]
+    budgets = [assessment.budget(name) for name in names]
+    sources: list[str] = []
+    for each in budgets:
+        sources += [source for source in each.variances if source not in sources]
+    if len(sources) < 2:
+        return None
+    rows = []
+    for source in sources:
+        cells = [words(source)]
+        for each in budgets:
+            share = each.shares.get(source, 0.0)
+            u = each.quantity.shown(each.uncertainty(source)) if source in each.variances else 0.0
+            cells += [number(float(f"{u:.2g}")), Cell(share, (("text", f"{share:.1%}"),))]
+        rows.append(tuple(cells))
+    totals = [words("all together")]
+    for each in budgets:
+        totals += [
+            number(float(f"{each.quantity.shown(math.sqrt(each.total)):.2g}")),
+            words("100.0%"),
+        ]
+    columns = [text_column("source of error")]
+    for each in budgets:
+        what = each.quantity
+        columns += [
+            Column(
+                tuple((layout, f"u({what.symbol.in_layout(layout)})") for layout in LAYOUTS),
+                what.shown_unit,
+            ),
+            number_column("share"),
+        ]
+    return Table(
+        "budget",
+        "What each source of error contributes",
+        tuple(columns),
+        (*rows, tuple(totals)),
+        (
+            "u is the standard uncertainty that the source alone would leave; shares are of the "
+            "variance, and add up.",
+        ),
+    )
+
+
+def prior_table(assessment: Assessment) -> Table | None:
+    """Return the answer with the priors halved and doubled; None where no law is left open."""
+    cases = assessment.prior_sensitivity()
+    if not cases:
+        return None
+    order = assessment.observations.order
+    rows = tuple(
+        (
+            words(case.words),
+            pair_cell(case.fit.parameters["rate_constant"]),
+            pair_cell(case.fit.parameters.get("charge_product")),
+            pair_cell(case.fit.parameters.get("activation_energy")),
+        )
+        for case in cases
+    )
+    return Table(
+        "priors",
+        "How much the answer rests on the priors of the open law",
+        (
+            text_column("priors of å, c and β"),
+            quantity_column(quantity("rate_constant", order)),
+            quantity_column(quantity("charge_product")),
+            quantity_column(quantity("activation_energy")),
+        ),
+        rows,
+    )
+
+
+def influence_table(assessment: Assessment) -> Table | None:
+    """Return what moves most when something is left out; None where nothing can be."""
+    moved = sorted(assessment.influence(), key=lambda each: -each.largest)[:_MOST_INFLUENCES]
+    if not moved:
+        return None
+    names = list(moved[0].shifts)
+    rows = tuple(
+        (
+            words(f"{each.kind} {each.label}"),
+            *(Cell(each.shifts[name], (("text", f"{each.shifts[name]:+.2f}"),)) for name in names),
+        )
+        for each in moved
+    )
+    columns = [text_column("left out")]
+    for name in names:
+        symbol = quantity(name).symbol
+        columns.append(
+            Column(
+                tuple(
+                    (
+                        layout,
+                        f"Δ{symbol.in_layout(layout)}/u"
+                        if layout != "ascii"
+                        else f"d({symbol.ascii})/u",
+                    )
+                    for layout in LAYOUTS
+                )
+            )
+        )
+    return Table(
+        "influence",
+        "What moves when something is left out",
+        tuple(columns),
+        rows,
+        ("Changes in units of the standard uncertainty with everything in; the largest ones.",),
+    )
