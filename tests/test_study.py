@@ -135,3 +135,70 @@ def test_no_output_holds_an_absolute_path(folder: Path) -> None:
     kn.run_study(folder / "study.toml", folder / "out")
     for path in (folder / "out").rglob("*.*"):
         assert str(folder) not in path.read_text(encoding="utf-8")
+
+
+LITERATURE = """\
+label,year,T/K,I/(mol/L),k/(L mol^-1 s^-1),u(k)/(L mol^-1 s^-1)
+Paper A,1988,298.15,0.1,16.1,0.5
+Paper B,1995,303.15,0.05,18.6,0.6
+"""
+
+
+def test_a_study_with_literature_and_candidates_discusses_them(folder: Path) -> None:
+    (folder / "literature.csv").write_text(LITERATURE, encoding="utf-8")
+    path = with_lines(
+        folder,
+        "[literature]",
+        'file = "literature.csv"',
+        "[[candidates]]",
+        'name = "direct"',
+        'reactants = "A^2- + B^-"',
+        "[[candidates]]",
+        'name = "protonated"',
+        'reactants = "A^2- + X"',
+    )
+    report = kn.run_study(path, folder / "out")
+    record = json.loads((folder / "out" / "results.json").read_text(encoding="utf-8"))
+    assert [each["label"] for each in record["literature"]] == ["Paper A", "Paper B"]
+    weights = {each["name"]: each["weight"] for each in record["candidates"]}
+    assert weights["direct"] > 0.99
+    assert [each["path"] for each in record["inputs"]][-1] == "literature.csv"
+    page = (folder / "out" / "report.html").read_text(encoding="utf-8")
+    assert "Paper A" in page
+    assert len(report.discussion) > 4
+    assert not any("proves" in sentence for sentence in report.discussion)
+
+
+def test_shared_errors_of_a_study_file_reach_the_budget(folder: Path) -> None:
+    path = with_lines(
+        folder,
+        "[[shared_errors]]",
+        'name = "probe offset"',
+        'kind = "temperature-offset"',
+        'u = "0.3 K"',
+        "[[shared_errors]]",
+        'name = "absorptivity"',
+        'kind = "factor"',
+        'u = "3 %"',
+    )
+    found = read_study(path).report().assessment
+    assert {"probe offset", "absorptivity"} <= set(found.budget("rate_constant").variances)
+    k = float(found.parameters["rate_constant"].value)
+    assert found.budget("rate_constant").uncertainty("absorptivity") == pytest.approx(0.03 * k)
+
+
+@pytest.mark.parametrize(
+    ("line", "message"),
+    [
+        ('u = "3 K"', "does not measure"),
+        ('kind = "colour"', "temperature-offset"),
+        ('battch = "A"', "'batch'"),
+    ],
+)
+def test_a_wrong_shared_error_is_named(folder: Path, line: str, message: str) -> None:
+    lines = ["[[shared_errors]]", 'name = "x"', 'kind = "factor"', 'u = "3 %"']
+    key = line.split(" ", 1)[0]
+    lines = [each for each in lines if not each.startswith(f"{key} ")] + [line]
+    with pytest.raises(kn.InputError) as caught:
+        read_study(with_lines(folder, *lines))
+    assert message in str(caught.value)

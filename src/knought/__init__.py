@@ -18,6 +18,14 @@ from knought.version import __version__
 if TYPE_CHECKING:
     from knought.chemistry.debye_huckel import debye_huckel
     from knought.chemistry.species import Species, charge_product, parse_reactants, parse_species
+    from knought.discussion.candidates import Candidate, Expectation
+    from knought.discussion.compare import compare
+    from knought.discussion.consensus import consensus
+    from knought.discussion.electrostatics import electrostatic_part
+    from knought.discussion.encounter import encounter_limit
+    from knought.discussion.literature import LiteratureValue
+    from knought.discussion.literature_table import read_literature
+    from knought.discussion.mechanism import weigh
     from knought.errors import Caveat, InputError, Problem
     from knought.fitting.assess import Assessment, assess
     from knought.fitting.estimate import Estimate
@@ -35,9 +43,12 @@ if TYPE_CHECKING:
 
 __all__ = [
     "Assessment",
+    "Candidate",
     "Caveat",
     "Estimate",
+    "Expectation",
     "InputError",
+    "LiteratureValue",
     "OpenFit",
     "Priors",
     "Problem",
@@ -49,22 +60,31 @@ __all__ = [
     "__version__",
     "assess",
     "charge_product",
+    "compare",
+    "consensus",
     "debye_huckel",
+    "electrostatic_part",
+    "encounter_limit",
     "fit",
     "fit_in_k",
     "fit_ion_size",
     "fit_many",
     "parse_reactants",
     "parse_species",
+    "read_literature",
     "read_rates",
     "run_study",
+    "weigh",
 ]
 
 _HOMES = {
     "Assessment": "fitting.assess",
+    "Candidate": "discussion.candidates",
     "Caveat": "errors",
     "Estimate": "fitting.estimate",
+    "Expectation": "discussion.candidates",
     "InputError": "errors",
+    "LiteratureValue": "discussion.literature",
     "OpenFit": "fitting.open_fit",
     "Priors": "laws.open_law",
     "Problem": "errors",
@@ -75,15 +95,21 @@ _HOMES = {
     "SurfaceFit": "fitting.surface_fit",
     "assess": "fitting.assess",
     "charge_product": "chemistry.species",
+    "compare": "discussion.compare",
+    "consensus": "discussion.consensus",
     "debye_huckel": "chemistry.debye_huckel",
+    "electrostatic_part": "discussion.electrostatics",
+    "encounter_limit": "discussion.encounter",
     "fit": "fitting.fit",
     "fit_in_k": "fitting.k_space",
     "fit_ion_size": "fitting.ion_size",
     "fit_many": "fitting.surface_fit",
     "parse_reactants": "chemistry.species",
     "parse_species": "chemistry.species",
+    "read_literature": "discussion.literature_table",
     "read_rates": "measurement.reading",
     "run_study": "study",
+    "weigh": "discussion.mechanism",
 }
 
 

@@ -16,6 +16,8 @@ from knought.reporting.report import Report
 from knought.study_file import read_study_file
 
 if TYPE_CHECKING:
+    from knought.fitting.assess import Assessment
+    from knought.reporting.discussed import Discussed
     from knought.study_file import StudyFile
 
 __all__ = ["Study", "read_study", "run_study", "write_report"]
@@ -36,9 +38,15 @@ class Study:
     path: Path
     settings: StudyFile
 
-    @property
-    def rates_path(self) -> Path:
-        """Where the table of rate constants is; below the study file's folder.
+    def beside(self, file: str, key: str) -> Path:
+        """Return where a file that the study names is; below the study file's folder.
+
+        Parameters
+        ----------
+        file
+            The relative path, as the study file gives it.
+        key
+            The key that gives it, for the message.
 
         Raises
         ------
@@ -46,18 +54,23 @@ class Study:
             If it points outside that folder.
         """
         folder = self.path.parent.resolve()
-        target = (folder / self.settings.rates.file).resolve()
+        target = (folder / file).resolve()
         if not target.is_relative_to(folder):
             raise InputError(
                 Problem(
                     "the table lies outside the folder of the study file",
                     "put it beside the study file and name it by its relative path",
-                    read=self.settings.rates.file,
+                    read=file,
                     file=self.path.name,
-                    column="[rates] file",
+                    column=key,
                 )
             )
         return target
+
+    @property
+    def rates_path(self) -> Path:
+        """Where the table of rate constants is."""
+        return self.beside(self.settings.rates.file, "[rates] file")
 
     def report(self) -> Report:
         """Read the table, assess it, and return the report.
@@ -85,12 +98,57 @@ class Study:
             priors=said.priors.priors(),
             shared_errors=[each.error() for each in said.shared_errors],
         )
-        inputs = ((self.path.name, sha256_of(self.path)), *_source(self))
-        return Report(assessment, said.study.title, inputs, said.study.seed)
+        return Report(
+            assessment,
+            said.study.title,
+            self._inputs(),
+            said.study.seed,
+            _discussed(self, assessment),
+        )
+
+    def _inputs(self) -> tuple[tuple[str, str], ...]:
+        """Name and hash of every file that the study reads."""
+        said = self.settings
+        files = [(said.rates.file, self.rates_path)]
+        if said.literature is not None:
+            file = said.literature.file
+            files.append((file, self.beside(file, "[literature] file")))
+        return (
+            (self.path.name, sha256_of(self.path)),
+            *((name, sha256_of(path)) for name, path in files),
+        )
 
 
-def _source(study: Study) -> tuple[tuple[str, str], ...]:
-    return ((study.settings.rates.file, sha256_of(study.rates_path)),)
+def _discussed(study: Study, assessment: Assessment) -> Discussed | None:
+    """Return the pieces of the discussion that the study asks for."""
+    said = study.settings
+    if said.literature is None and not said.candidates:
+        return None
+    from knought.discussion.background import background
+    from knought.discussion.compare import compare
+    from knought.discussion.literature_table import read_literature
+    from knought.discussion.mechanism import weigh
+    from knought.reporting.discussed import Discussed
+
+    comparison = weighing = beside = None
+    if said.literature is not None:
+        literature = said.literature
+        comparison = compare(
+            assessment,
+            read_literature(
+                study.beside(literature.file, "[literature] file"),
+                sheet=literature.sheet,
+                uncertainty_means=literature.uncertainty_means,
+            ),
+            method=literature.consensus,
+            T=literature.temperature,
+            I=literature.ionic_strength,
+        )
+    if said.candidates:
+        weighing = weigh(assessment, [each.candidate() for each in said.candidates])
+        leading = max(weighing.candidates, key=lambda each: each.weight)
+        beside = background(assessment, leading.candidate)
+    return Discussed(comparison, weighing, beside)
 
 
 def read_study(path: str | Path) -> Study:

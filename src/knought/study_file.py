@@ -23,6 +23,7 @@ from knought.chemistry.units import parse_quantity
 from knought.errors import InputError, Problem
 from knought.laws.open_law import DEFAULT_PRIORS, Priors
 from knought.measurement.shared_errors import KINDS, SharedError
+from knought.study_sections.discussion import CandidateSection, LiteratureSection
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -147,6 +148,8 @@ class StudyFile(_Section):
     laws: LawsSection = LawsSection()
     priors: PriorsSection = PriorsSection()
     shared_errors: tuple[SharedErrorSection, ...] = ()
+    literature: LiteratureSection | None = None
+    candidates: tuple[CandidateSection, ...] = ()
 
 
 def read_study_file(path: Path) -> StudyFile:

@@ -16,7 +16,7 @@ from knought.chemistry.quantities import Quantity, quantity
 from knought.reporting.uncertainty_tables import BUDGETED
 
 if TYPE_CHECKING:
-    from collections.abc import Sequence
+    from collections.abc import Mapping, Sequence
 
     from knought.errors import Caveat
     from knought.fitting.assess import Assessment
@@ -38,7 +38,11 @@ def record_text(assessment: Assessment, **about: Any) -> str:
 
 
 def record(
-    assessment: Assessment, *, inputs: Sequence[tuple[str, str]] = (), seed: int | None = None
+    assessment: Assessment,
+    *,
+    inputs: Sequence[tuple[str, str]] = (),
+    seed: int | None = None,
+    discussed: Mapping[str, Any] | None = None,
 ) -> dict[str, Any]:
     """Return the record of an assessment as data that JSON can hold.
 
@@ -50,6 +54,8 @@ def record(
         Name and SHA-256 of every file read; those of the rate table if not given.
     seed
         Seed of everything random.
+    discussed
+        What is kept of the discussion, by its keys.
     """
     from knought.version import __version__
 
@@ -101,6 +107,7 @@ def record(
         "runs": _runs_record(assessment),
         "understood": [str(line) for line in assessment.rates.account],
         "warnings": [_caveat_record(caveat) for caveat in assessment.caveats],
+        **(discussed or {}),
     }
 
 

@@ -25,8 +25,10 @@ if TYPE_CHECKING:
 
     from matplotlib.figure import Figure
 
+    from knought.discussion.compare import Comparison
     from knought.fitting.assess import Assessment
     from knought.reporting.cells import Table
+    from knought.reporting.discussed import Discussed
     from knought.rounding import Layout
 
 __all__ = ["Picture", "Report"]
@@ -68,12 +70,15 @@ class Report:
         Name and SHA-256 of every file read.
     seed
         Seed of everything random, if anything was.
+    discussed
+        Pieces of the discussion, where the study asked for any.
     """
 
     assessment: Assessment
     title: str
     inputs: tuple[tuple[str, str], ...] = ()
     seed: int | None = None
+    discussed: Discussed | None = None
 
     @cached_property
     def introduction(self) -> tuple[str, ...]:
@@ -107,7 +112,13 @@ class Report:
             uncertainty_tables.influence_table(self.assessment),
             tables.runs_table(self.assessment),
         )
-        return tuple(table for table in made if table is not None)
+        discussed = () if self.discussed is None else self.discussed.tables
+        return (*(table for table in made if table is not None), *discussed)
+
+    @property
+    def discussion(self) -> tuple[str, ...]:
+        """Sentences of the discussion, each with its number; none where none was asked for."""
+        return () if self.discussed is None else self.discussed.sentences
 
     @cached_property
     def pictures(self) -> tuple[Picture, ...]:
@@ -122,6 +133,8 @@ class Report:
         budget = self.assessment.budget("rate_constant")
         if len(budget.variances) > 1:
             made.append(self._budget_picture())
+        if self.discussed is not None and self.discussed.comparison is not None:
+            made += _forest_pictures(self.discussed.comparison)
         return tuple(made)
 
     def summary(self, layout: Layout = "text") -> str:
@@ -133,6 +146,8 @@ class Report:
         about: dict[str, Any] = {"seed": self.seed}
         if self.inputs:
             about["inputs"] = self.inputs
+        if self.discussed is not None:
+            about["discussed"] = self.discussed.record()
         return record_text(self.assessment, **about)
 
     def inline(self, picture: Picture) -> str:
@@ -229,6 +244,29 @@ class Report:
             "temperature.",
             lambda: _drawn(draw, height=2.5),
         )
+
+
+def _words(name: str) -> str:
+    return quantity("measured_rate_constant" if name == "rate_constant" else name).words
+
+
+def _forest_pictures(comparison: Comparison) -> list[Picture]:
+    """One forest figure for each quantity of which several papers are combined."""
+    from knought.reporting.literature_figures import forest
+
+    return [
+        Picture(
+            f"forest-{name.replace('_', '-')}",
+            f"Literature and this work: {_words(name)}",
+            "Points: literature values carried to our conditions, with 95 % intervals; diamond: "
+            "their consensus; vertical line and band: this work with its 95 % interval.",
+            lambda carried=carried: _drawn(  # type: ignore[misc]
+                lambda figure: forest(carried, figure.add_subplot()),
+                height=1.2 + 0.3 * len(carried.carried),
+            ),
+        )
+        for name, carried in comparison.consensuses.items()
+    ]
 
 
 def _drawn(draw: Callable[[Figure], object], height: float) -> Figure:

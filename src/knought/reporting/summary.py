@@ -31,6 +31,8 @@ _WIDTH = 100
 
 #: What terminals without Unicode get instead of the signs of the text.
 _ASCII = {
+    **{sign: f"^{plain}" for sign, plain in zip("⁰⁴⁵⁶⁷⁸⁹⁺", "0456789+", strict=True)},
+    **dict(zip("₀₁₂₃₄₅₆₇₈₉", "0123456789", strict=True)),
     "°": "0",
     "‡": "++",
     "Δ": "D",

@@ -1,0 +1,1 @@
+"""The sections of a study file, each beside what it fills."""
