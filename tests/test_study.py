@@ -190,7 +190,7 @@ def test_shared_errors_of_a_study_file_reach_the_budget(folder: Path) -> None:
 @pytest.mark.parametrize(
     ("line", "message"),
     [
-        ('u = "3 K"', "does not measure"),
+        ('u = "3 K"', "is not a quantity in %"),
         ('kind = "colour"', "temperature-offset"),
         ('battch = "A"', "'batch'"),
     ],

@@ -26,13 +26,19 @@ if TYPE_CHECKING:
     from knought.discussion.literature import LiteratureValue
     from knought.discussion.literature_table import read_literature
     from knought.discussion.mechanism import weigh
+    from knought.discussion.next_runs import Plan, plan
+    from knought.discussion.reach import Forbidden
+    from knought.discussion.runs_curve import runs_curve
     from knought.errors import Caveat, InputError, Problem
     from knought.fitting.assess import Assessment, assess
+    from knought.fitting.bootstrap import bootstrap
     from knought.fitting.estimate import Estimate
     from knought.fitting.fit import fit
     from knought.fitting.ion_size import fit_ion_size
     from knought.fitting.k_space import fit_in_k
+    from knought.fitting.monte_carlo import monte_carlo
     from knought.fitting.open_fit import OpenFit
+    from knought.fitting.profile import profile_ion_size
     from knought.fitting.surface_fit import SurfaceFit, fit_many
     from knought.laws.open_law import Priors
     from knought.measurement.reading import read_rates
@@ -47,9 +53,11 @@ __all__ = [
     "Caveat",
     "Estimate",
     "Expectation",
+    "Forbidden",
     "InputError",
     "LiteratureValue",
     "OpenFit",
+    "Plan",
     "Priors",
     "Problem",
     "RateTable",
@@ -59,6 +67,7 @@ __all__ = [
     "SurfaceFit",
     "__version__",
     "assess",
+    "bootstrap",
     "charge_product",
     "compare",
     "consensus",
@@ -69,11 +78,15 @@ __all__ = [
     "fit_in_k",
     "fit_ion_size",
     "fit_many",
+    "monte_carlo",
     "parse_reactants",
     "parse_species",
+    "plan",
+    "profile_ion_size",
     "read_literature",
     "read_rates",
     "run_study",
+    "runs_curve",
     "weigh",
 ]
 
@@ -83,9 +96,11 @@ _HOMES = {
     "Caveat": "errors",
     "Estimate": "fitting.estimate",
     "Expectation": "discussion.candidates",
+    "Forbidden": "discussion.reach",
     "InputError": "errors",
     "LiteratureValue": "discussion.literature",
     "OpenFit": "fitting.open_fit",
+    "Plan": "discussion.next_runs",
     "Priors": "laws.open_law",
     "Problem": "errors",
     "RateTable": "measurement.table",
@@ -94,6 +109,7 @@ _HOMES = {
     "Species": "chemistry.species",
     "SurfaceFit": "fitting.surface_fit",
     "assess": "fitting.assess",
+    "bootstrap": "fitting.bootstrap",
     "charge_product": "chemistry.species",
     "compare": "discussion.compare",
     "consensus": "discussion.consensus",
@@ -104,11 +120,15 @@ _HOMES = {
     "fit_in_k": "fitting.k_space",
     "fit_ion_size": "fitting.ion_size",
     "fit_many": "fitting.surface_fit",
+    "monte_carlo": "fitting.monte_carlo",
     "parse_reactants": "chemistry.species",
     "parse_species": "chemistry.species",
+    "plan": "discussion.next_runs",
+    "profile_ion_size": "fitting.profile",
     "read_literature": "discussion.literature_table",
     "read_rates": "measurement.reading",
     "run_study": "study",
+    "runs_curve": "discussion.runs_curve",
     "weigh": "discussion.mechanism",
 }
 

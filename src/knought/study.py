@@ -16,6 +16,7 @@ from knought.reporting.report import Report
 from knought.study_file import read_study_file
 
 if TYPE_CHECKING:
+    from knought.discussion.next_runs import Plan
     from knought.fitting.assess import Assessment
     from knought.reporting.discussed import Discussed
     from knought.study_file import StudyFile
@@ -122,7 +123,7 @@ class Study:
 def _discussed(study: Study, assessment: Assessment) -> Discussed | None:
     """Return the pieces of the discussion that the study asks for."""
     said = study.settings
-    if said.literature is None and not said.candidates:
+    if said.literature is None and not said.candidates and said.plan is None:
         return None
     from knought.discussion.background import background
     from knought.discussion.compare import compare
@@ -148,7 +149,17 @@ def _discussed(study: Study, assessment: Assessment) -> Discussed | None:
         weighing = weigh(assessment, [each.candidate() for each in said.candidates])
         leading = max(weighing.candidates, key=lambda each: each.weight)
         beside = background(assessment, leading.candidate)
-    return Discussed(comparison, weighing, beside)
+    return Discussed(comparison, weighing, beside, _planned(study, assessment))
+
+
+def _planned(study: Study, assessment: Assessment) -> Plan | None:
+    """Return the next runs, in addition to those already made."""
+    said = study.settings
+    if said.plan is None:
+        return None
+    from knought.discussion.next_runs import plan
+
+    return plan(**said.plan.arguments(), found=assessment, seed=said.study.seed)
 
 
 def read_study(path: str | Path) -> Study:
@@ -216,6 +227,8 @@ def write_report(report: Report, out: str | Path, *, overwrite: bool = False) ->
         files[f"tables/{table.name}.txt"] = "\n".join([table.title, *plain_lines(table)]) + "\n"
     for picture in report.pictures:
         files[f"figures/{picture.name}.svg"] = report.svg(picture)
+    if report.discussed is not None and report.discussed.plan is not None:
+        files["next-runs.csv"] = report.discussed.plan.csv()
     with whole_folder(Path(out), overwrite=overwrite) as folder:
         for name, text in files.items():
             target = folder / name

@@ -1,32 +1,32 @@
 """The study file: TOML that says what to read and how to look at it, checked as a whole.
 
 Unknown keys are refused with the nearest known one named, and all problems are told together.
-Quantities are strings with units, read by the one grammar of :mod:`knought.chemistry.units`.
+Quantities are strings with units, read by the one grammar of :mod:`knought.chemistry.units`. The
+sections themselves are in :mod:`knought.study_sections`.
 """
 
 from __future__ import annotations
 
 import difflib
 import tomllib
-from typing import TYPE_CHECKING, Annotated, Any, Literal, get_args
+from typing import TYPE_CHECKING, Any, get_args
 
-from pydantic import (
-    BaseModel,
-    BeforeValidator,
-    ConfigDict,
-    Field,
-    ValidationError,
-    model_validator,
-)
+from pydantic import BaseModel, ValidationError
 
-from knought.chemistry.units import parse_quantity
 from knought.errors import InputError, Problem
-from knought.laws.open_law import DEFAULT_PRIORS, Priors
-from knought.measurement.shared_errors import KINDS, SharedError
+from knought.study_sections.base import Section
+from knought.study_sections.core import (
+    LawsSection,
+    PriorsSection,
+    RatesSection,
+    ReactionSection,
+    SharedErrorSection,
+    StudySection,
+)
 from knought.study_sections.discussion import CandidateSection, LiteratureSection
+from knought.study_sections.plan import PlanSection
 
 if TYPE_CHECKING:
-    from collections.abc import Callable
     from pathlib import Path
 
 __all__ = ["StudyFile", "read_study_file"]
@@ -35,111 +35,7 @@ __all__ = ["StudyFile", "read_study_file"]
 _LARGEST = 1_000_000
 
 
-def _in_unit(unit: str) -> Callable[[object], float]:
-    def read(value: object) -> float:
-        if not isinstance(value, str):
-            raise ValueError(f'a quantity is a string with its unit, "298.15 {unit}"')
-        return parse_quantity(value, unit)
-
-    return read
-
-
-Kelvin = Annotated[float, BeforeValidator(_in_unit("K"))]
-MolPerLitre = Annotated[float, BeforeValidator(_in_unit("mol L^-1"))]
-LitrePerMol = Annotated[float, BeforeValidator(_in_unit("L mol^-1"))]
-Metre = Annotated[float, BeforeValidator(_in_unit("m"))]
-
-
-class _Section(BaseModel):
-    model_config = ConfigDict(extra="forbid", frozen=True)
-
-
-class StudySection(_Section):
-    """``[study]``: what the whole is called."""
-
-    title: str = "Untitled study"
-    reference_temperature: Kelvin | None = None
-    seed: int = Field(default=20_250_101, ge=0)
-    standard_concentration: MolPerLitre = 1.0
-
-
-class RatesSection(_Section):
-    """``[rates]``: the table of rate constants, and what its ± means."""
-
-    file: str
-    sheet: str | int | None = None
-    uncertainty_means: str | None = None
-
-
-class ReactionSection(_Section):
-    """``[reaction]``: what is known of the rate-determining step."""
-
-    reactants: str | None = None
-    charge_product: float | None = None
-
-
-class LawsSection(_Section):
-    """``[laws]``: laws of the headline, where they are not ours to choose."""
-
-    temperature: str | None = None
-    salt: str | None = None
-    ion_size: Metre | None = None
-
-
-class PriorsSection(_Section):
-    """``[priors]``: what is known of the open law's å, c and β."""
-
-    ion_size: tuple[Metre, Metre] = DEFAULT_PRIORS.ion_size
-    linear_coefficient: tuple[LitrePerMol, LitrePerMol] = DEFAULT_PRIORS.linear_coefficient
-    interaction_coefficient: tuple[LitrePerMol, LitrePerMol] = (
-        DEFAULT_PRIORS.interaction_coefficient
-    )
-
-    def priors(self) -> Priors:
-        """Return them as the fit takes them."""
-        return Priors(
-            (self.ion_size[0], self.ion_size[1]),
-            (self.linear_coefficient[0], self.linear_coefficient[1]),
-            (self.interaction_coefficient[0], self.interaction_coefficient[1]),
-        )
-
-
-class SharedErrorSection(_Section):
-    """``[[shared_errors]]``: an error that all runs, or those of a batch, share."""
-
-    name: str
-    kind: Literal["temperature-offset", "temperature-gain", "factor", "ionic-strength-factor"]
-    u: str
-    batch: str | None = None
-    distribution: Literal["normal", "rectangular", "triangular", "t"] = "normal"
-    degrees_of_freedom: float | None = None
-    calibrated_at: Kelvin = 298.15
-
-    @model_validator(mode="after")
-    def _check(self) -> SharedErrorSection:
-        self.error()
-        return self
-
-    def error(self) -> SharedError:
-        """Return it as the fit takes it.
-
-        Raises
-        ------
-        InputError
-            If u has the wrong unit, or a number cannot be.
-        """
-        return SharedError(
-            self.name,
-            self.kind,
-            parse_quantity(self.u, KINDS[self.kind]),
-            self.batch,
-            self.distribution,
-            self.degrees_of_freedom,
-            self.calibrated_at,
-        )
-
-
-class StudyFile(_Section):
+class StudyFile(Section):
     """A whole study file; sections that are left out keep their defaults."""
 
     study: StudySection = StudySection()
@@ -150,6 +46,7 @@ class StudyFile(_Section):
     shared_errors: tuple[SharedErrorSection, ...] = ()
     literature: LiteratureSection | None = None
     candidates: tuple[CandidateSection, ...] = ()
+    plan: PlanSection | None = None
 
 
 def read_study_file(path: Path) -> StudyFile:

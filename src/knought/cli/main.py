@@ -6,7 +6,7 @@ import argparse
 import sys
 from typing import TYPE_CHECKING, Protocol
 
-from knought.cli import compare, demo, fit, mechanism, report, template
+from knought.cli import compare, demo, fit, mechanism, plan, report, template
 from knought.version import __version__
 
 if TYPE_CHECKING:
@@ -48,7 +48,7 @@ class Subcommand(Protocol):
 
 
 #: Subcommands in the order in which the help lists them.
-_SUBCOMMANDS: tuple[Subcommand, ...] = (demo, fit, report, compare, mechanism, template)
+_SUBCOMMANDS: tuple[Subcommand, ...] = (demo, fit, report, compare, mechanism, plan, template)
 
 
 def main(arguments: Sequence[str] | None = None) -> int:

@@ -23,6 +23,8 @@ from knought.laws.surface import Rows
 if TYPE_CHECKING:
     from collections.abc import Mapping
 
+    import numpy.typing as npt
+
     from knought.arrays import FloatArray
     from knought.chemistry.quantities import Quantity
     from knought.fitting.found import Found
@@ -104,7 +106,13 @@ def budget(found: Found, name: str, *, T: float | None = None, I: float = 0.0) -
 
 
 def _result(found: Found, name: str, T: float | None, I: float) -> tuple[Rows, Quantity, float]:
-    """Return a result as an affine function of the parameters, and dy/d(that)."""
+    """Return a result as an affine function of the parameters, and dy/d(that).
+
+    Raises
+    ------
+    InputError
+        If the fit has no such result.
+    """
     at_reference = T is None and I == 0
     parameters = found.parameters if at_reference else found.at(T, I)
     if name not in parameters or parameters[name].given:
@@ -184,7 +192,9 @@ def _between(
     }
 
 
-def _conditional_means(means: FloatArray, weights: FloatArray, label: np.ndarray) -> FloatArray:  # type: ignore[type-arg]
+def _conditional_means(
+    means: FloatArray, weights: FloatArray, label: npt.NDArray[np.generic]
+) -> FloatArray:
     """Return for each component the mean over all components with its label."""
     _, where = np.unique(label, return_inverse=True)
     total = np.bincount(where, weights)

@@ -18,6 +18,7 @@ if TYPE_CHECKING:
     from knought.arrays import IndexArray
     from knought.fitting.found import Found
     from knought.fitting.observations import Observations
+    from knought.fitting.scatter import ScatterChoice
 
 __all__ = ["Influence", "influence", "refit", "subset"]
 
@@ -147,7 +148,7 @@ def refit(found: Found, seen: Observations) -> Found:
     InputError
         If they cannot carry the laws.
     """
-    choice = "given" if found.scatter.kind == "given" else "scatter"
+    choice: ScatterChoice = "given" if found.scatter.kind == "given" else "scatter"
     if isinstance(found, OpenFit):
         return fit_open(
             seen,

@@ -1,7 +1,7 @@
 """Propagation of distributions by Monte Carlo (JCGM 101): the reference for every other ±.
 
-Each draw takes the errors of the runs, the errors they share (each from its own distribution), and,
-under the open law, a cell of its grid with its weight and β from its prior; the estimate is linear
+Each draw takes the errors of the runs, the errors they share (each from its own distribution),
+and, under the open law, a cell of its grid with its weight and β from its prior; the estimate is linear
 in all of them (its ``gain``), so a block of draws is one matrix product. Drawing goes on for a fixed
 number, or adaptively (7.9) until standard uncertainties and interval ends are stable to one
 significant digit of u. Blocks are seeded one by one, so that the same seed gives the same draws.
@@ -85,7 +85,7 @@ class Drawn:
         u = self.standard_uncertainty
         if u == 0:
             return 0.0
-        return 0.5 * 10.0 ** (np.floor(np.log10(u)) - digits + 1)
+        return float(0.5 * 10.0 ** (np.floor(np.log10(u)) - digits + 1))
 
     def validates_linear(self, digits: int = 1) -> bool:
         """Return whether both ends of the linear interval agree within δ (JCGM 101, 8.1)."""
@@ -167,7 +167,13 @@ def _blocks(draws: int | None) -> Iterator[tuple[int, int]]:
 
 
 def _sampler(found: Found) -> Callable[[np.random.Generator, int], FloatArray]:
-    """Return a function that draws the linear parameters, shape ``(size, p)``."""
+    """Return a function that draws the linear parameters, shape ``(size, p)``.
+
+    Raises
+    ------
+    InputError
+        If the fit is of neither kind.
+    """
     n = found.observations.runs
     shared = found.observations.shared
     if isinstance(found, OpenFit):

@@ -21,8 +21,9 @@ from knought.fitting import checks
 from knought.fitting.distribution import ParameterDistribution
 from knought.fitting.found import Found
 from knought.fitting.observations import Observations, observe
+from knought.fitting.refinement import refined
 from knought.fitting.run_errors import settle
-from knought.fitting.scatter import Scatter, judge_scatter
+from knought.fitting.scatter import Scatter, judge_scatter, scale_nodes
 from knought.fitting.surface_fit import DEFAULT_REFERENCE_TEMPERATURE, DEFAULT_TEMPERATURE_LAW
 from knought.laws.open_law import DEFAULT_PRIORS, OpenGrid, Priors, open_grid
 from knought.laws.surface import Surface
@@ -44,16 +45,6 @@ __all__ = ["OpenFit", "fit_open", "open_solver"]
 
 #: Components that together weigh less than this are left out of the mixture.
 _NEGLIGIBLE_WEIGHT = 1e-10
-
-#: Nodes of σ where it is found from the scatter, and the tail probability of σ left out.
-_SCALE_NODES = 24
-_SCALE_TAIL = 5e-4
-
-#: A grid is refined where its effective number of cells is below this, up to this refinement,
-#: until results move by less than this part of their u.
-_FEWEST_CELLS = 12
-_FINEST = 8
-_SETTLED_GRID = 0.01
 
 #: Integer charge products that are weighed against each other.
 CHARGE_PRODUCTS = tuple(range(-9, 10))
@@ -181,44 +172,7 @@ def fit_open(
             scatter=scatter,
         )
 
-    if refinement is not None:
-        return fitted(refinement)
-    found, finer = fitted(1), 1
-    while _few_cells(found) and finer < _FINEST:
-        finer *= 2
-        before, found = found, fitted(finer)
-        if _moved(before, found) < _SETTLED_GRID:
-            return found
-    if _few_cells(found):
-        caveat = Caveat(
-            "coarse-grid",
-            "The runs are so precise that few shapes of the salt law carry all the weight: the "
-            "intervals may be off by more than a hundredth of u. Narrow the priors about "
-            f"å = {found.parameters['ion_size'].written()}.",
-        )
-        return replace(found, caveats=(*found.caveats, caveat))
-    return found
-
-
-def _few_cells(found: OpenFit) -> bool:
-    """Return whether too few cells of a grid with several carry the weight."""
-    if found.grid.cells == 1:
-        return False
-    return 1.0 / float(np.sum(found.cell_weights**2)) < _FEWEST_CELLS
-
-
-def _moved(before: OpenFit, after: OpenFit) -> float:
-    """Return by how much a finer grid moved value or u of any parameter, over its u."""
-    moves = []
-    for name in ("ln_rate_constant", "charge_product"):
-        if name in after.distribution.names:
-            one, other = (each.distribution.parameter(name) for each in (before, after))
-            u = float(other.standard_deviation)
-            moves += [
-                abs(float(one.mean - other.mean)) / u,
-                abs(float(one.standard_deviation) / u - 1),
-            ]
-    return max(moves)
+    return fitted(refinement) if refinement is not None else refined(fitted)
 
 
 def _fit_on_grid(
@@ -342,29 +296,6 @@ def _settled_errors(
     except RankDeficiencyError as found:
         checks.refuse_undetermined(found, centre)
     return errors, unsettled
-
-
-def scale_nodes(chi_square: float, degrees_of_freedom: int) -> FloatArray:
-    """Return values of σ that hold its distribution given the scatter, equally spaced in ln σ.
-
-    Parameters
-    ----------
-    chi_square, degrees_of_freedom
-        Of the fit with unit σ.
-
-    Returns
-    -------
-    (24,) ndarray
-        From the σ below which all but a tail of its distribution lies, to that above which it
-        does: σ² = χ²/χ²_ν (JCGM 101, 6.4.9, for Student's t as a scale mixture of normals).
-    """
-    from scipy.special import chdtri
-
-    nu = degrees_of_freedom
-    ends = chi_square / chdtri(nu, np.array([_SCALE_TAIL, 1 - _SCALE_TAIL]))
-    # A fit that happens to leave no residual still has the rounding of the numbers it was given.
-    low, high = (float(end) for end in np.sqrt(np.maximum(ends, 1e-24)))
-    return np.geomspace(low, high, _SCALE_NODES)
 
 
 def _collected(

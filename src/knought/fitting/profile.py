@@ -103,7 +103,8 @@ def profile_ion_size(
             continue
         from scipy.optimize import brentq
 
-        root = brentq(lambda size: chi_square(size) - goal, *sorted((bound, value)), xtol=1e-16)
+        near, far = sorted((bound, value))
+        root = brentq(lambda size: chi_square(size) - goal, near, far, xtol=1e-16)
         ends.append((float(root), False))
     (low, below), (high, above) = ends
     return IonSizeProfile(value, low, high, coverage, below, above)

@@ -69,7 +69,7 @@ class Replicates:
 
     @property
     def lack_probability(self) -> float:
-        """Probability of such a misfit of the means if the laws hold (F test); nan if untestable."""
+        """Probability of such a misfit of the means if the laws hold (F test); nan if untested."""
         if not self.degrees_of_freedom or self.lack_degrees < 1 or self.pure_error <= 0:
             return math.nan
         from scipy.special import fdtrc
@@ -119,9 +119,11 @@ def replicates(found: Found) -> Replicates | None:
     nu = sum(len(g) - 1 for g in groups)
     # χ² of all runs about the fit is that of replicates about their means plus that of the means.
     total = float(np.sum((found.residuals / u) ** 2))
-    parameters = len(found.distribution.names) - int(
-        found.salt_law == "open" and "interaction_coefficient" in found.distribution.names
-    )
+    # The open law's β is known from its prior as much as from the runs.
+    names = set(found.distribution.names)
+    if found.salt_law == "open":
+        names.discard("interaction_coefficient")
+    parameters = len(names)
     members = np.concatenate(groups)
     pooled = math.sqrt(pure / nu) * math.sqrt(float(np.mean(u[members] ** 2)))
     stated = seen.u_given

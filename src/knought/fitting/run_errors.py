@@ -73,7 +73,7 @@ class RunErrors:
     @property
     def u(self) -> FloatArray:
         """Standard uncertainty of ln k of each run from all independent sources, ``(n,)``."""
-        return np.sqrt(self.variances.sum(axis=0))
+        return np.asarray(np.sqrt(self.variances.sum(axis=0)))
 
 
 def run_errors(

@@ -10,15 +10,24 @@ from __future__ import annotations
 
 import math
 from dataclasses import dataclass
-from typing import Literal
+from typing import TYPE_CHECKING, Literal
+
+import numpy as np
 
 from knought.errors import InputError
 from knought.numerics.quantiles import chi_square_survival
 
-__all__ = ["SIGNIFICANCE", "Scatter", "ScatterChoice", "judge_scatter"]
+if TYPE_CHECKING:
+    from knought.arrays import FloatArray
+
+__all__ = ["SIGNIFICANCE", "Scatter", "ScatterChoice", "judge_scatter", "scale_nodes"]
 
 #: Below this probability of χ², stated uncertainties do not explain the scatter.
 SIGNIFICANCE = 0.05
+
+#: Nodes of σ where it is found from the scatter, and the tail probability of σ left out.
+_SCALE_NODES = 24
+_SCALE_TAIL = 5e-4
 
 ScatterChoice = Literal["given", "scatter"]
 
@@ -137,3 +146,26 @@ def judge_scatter(
             "measure more runs, or give the uncertainty of k in a column u(k) or u_r(k)/%",
         )
     return Scatter(chi_square, nu, stated, "scatter")
+
+
+def scale_nodes(chi_square: float, degrees_of_freedom: int) -> FloatArray:
+    """Return values of σ that hold its distribution given the scatter, equally spaced in ln σ.
+
+    Parameters
+    ----------
+    chi_square, degrees_of_freedom
+        Of the fit with unit σ.
+
+    Returns
+    -------
+    (24,) ndarray
+        From the σ below which all but a tail of its distribution lies, to that above which it
+        does: σ² = χ²/χ²_ν (JCGM 101, 6.4.9, for Student's t as a scale mixture of normals).
+    """
+    from scipy.special import chdtri
+
+    nu = degrees_of_freedom
+    ends = chi_square / chdtri(nu, np.array([_SCALE_TAIL, 1 - _SCALE_TAIL]))
+    # A fit that happens to leave no residual still has the rounding of the numbers it was given.
+    low, high = (float(end) for end in np.sqrt(np.maximum(ends, 1e-24)))
+    return np.geomspace(low, high, _SCALE_NODES)

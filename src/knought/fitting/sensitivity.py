@@ -1,4 +1,4 @@
-"""How much an answer rests on choices: the priors halved and doubled, and k fitted instead of ln k."""
+"""How much an answer rests on the priors of the open law: their widths halved and doubled."""
 
 from __future__ import annotations
 

@@ -2,10 +2,9 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
-
-import math
 
 from knought.discussion.literature_sentences import comparison_sentences
 from knought.discussion.mechanism_sentences import background_sentences, weighing_sentences
@@ -19,11 +18,13 @@ from knought.reporting.mechanism_tables import (
     candidates_table,
     distances_table,
 )
+from knought.reporting.plan_tables import expectation_table, planned_runs_table, power_table
 
 if TYPE_CHECKING:
     from knought.discussion.background import Background
     from knought.discussion.compare import Comparison
     from knought.discussion.mechanism import Weighing
+    from knought.discussion.next_runs import Plan
     from knought.reporting.cells import Table
 
 __all__ = ["Discussed"]
@@ -41,11 +42,14 @@ class Discussed:
         Of the candidates.
     background
         Of the leading candidate: diffusion limit, electrostatic part, shifts with I.
+    plan
+        The next runs.
     """
 
     comparison: Comparison | None = None
     weighing: Weighing | None = None
     background: Background | None = None
+    plan: Plan | None = None
 
     @property
     def sentences(self) -> tuple[str, ...]:
@@ -57,6 +61,8 @@ class Discussed:
             found += weighing_sentences(self.weighing)
         if self.background is not None:
             found += background_sentences(self.background)
+        if self.plan is not None:
+            found += [*self.plan.assumptions, *self.plan.cautions]
         return tuple(found)
 
     @property
@@ -73,6 +79,12 @@ class Discussed:
             found += [candidates_table(self.weighing), distances_table(self.weighing)]
         if self.background is not None:
             found += background_tables(self.background)
+        if self.plan is not None:
+            found += [
+                planned_runs_table(self.plan),
+                expectation_table(self.plan),
+                power_table(self.plan),
+            ]
         return tuple(table for table in found if table is not None)
 
     def record(self) -> dict[str, Any]:

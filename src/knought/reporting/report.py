@@ -26,6 +26,7 @@ if TYPE_CHECKING:
     from matplotlib.figure import Figure
 
     from knought.discussion.compare import Comparison
+    from knought.discussion.next_runs import Plan
     from knought.fitting.assess import Assessment
     from knought.reporting.cells import Table
     from knought.reporting.discussed import Discussed
@@ -135,6 +136,8 @@ class Report:
             made.append(self._budget_picture())
         if self.discussed is not None and self.discussed.comparison is not None:
             made += _forest_pictures(self.discussed.comparison)
+        if self.discussed is not None and self.discussed.plan is not None:
+            made.append(_plan_picture(self.discussed.plan))
         return tuple(made)
 
     def summary(self, layout: Layout = "text") -> str:
@@ -244,6 +247,18 @@ class Report:
             "temperature.",
             lambda: _drawn(draw, height=2.5),
         )
+
+
+def _plan_picture(plan: Plan) -> Picture:
+    from knought.reporting.plan_figures import information_map
+
+    return Picture(
+        "plan",
+        "Where the next runs say most",
+        "Shading: what a run at that temperature and ionic strength adds to the aim of the plan; "
+        "points: planned runs.",
+        lambda: _drawn(lambda figure: information_map(plan, figure.add_subplot()), height=3.6),
+    )
 
 
 def _words(name: str) -> str:

@@ -12,13 +12,13 @@ from knought.reporting.sentences import (
     laws_sentence,
     runs_sentence,
 )
-from knought.reporting.uncertainty_tables import budget_table
 from knought.reporting.tables import (
     data_alone_table,
     headline_table,
     laws_table,
     working_table,
 )
+from knought.reporting.uncertainty_tables import budget_table
 
 if TYPE_CHECKING:
     from knought.fitting.assess import Assessment

@@ -4,44 +4,29 @@ from __future__ import annotations
 
 import math
 from fractions import Fraction
-from typing import TYPE_CHECKING, Annotated, Literal
+from typing import Literal
 
-from pydantic import BaseModel, BeforeValidator, ConfigDict, Field
+from pydantic import Field
 
-from knought.chemistry.units import parse_quantity
 from knought.discussion.candidates import Candidate, Expectation
-
-if TYPE_CHECKING:
-    from collections.abc import Callable
+from knought.study_sections.base import (
+    Diffusivity,
+    Energy,
+    Entropy,
+    Kelvin,
+    Metre,
+    MolPerLitre,
+    Section,
+)
 
 __all__ = ["CandidateSection", "LiteratureSection"]
 
-
-def _in_unit(unit: str) -> Callable[[object], float]:
-    def read(value: object) -> float:
-        if not isinstance(value, str):
-            raise ValueError(f'a quantity is a string with its unit, "1 {unit}"')  # noqa: TRY004
-        return parse_quantity(value, unit)
-
-    return read
-
-
-Kelvin = Annotated[float, BeforeValidator(_in_unit("K"))]
-MolPerLitre = Annotated[float, BeforeValidator(_in_unit("mol L^-1"))]
-Metre = Annotated[float, BeforeValidator(_in_unit("m"))]
-Energy = Annotated[float, BeforeValidator(_in_unit("J mol^-1"))]
-Entropy = Annotated[float, BeforeValidator(_in_unit("J K^-1 mol^-1"))]
-Diffusivity = Annotated[float, BeforeValidator(_in_unit("m^2 s^-1"))]
 
 #: A sign, or a range of which one end may be left out.
 Sign = Literal["negative", "positive"]
 
 
-class _Section(BaseModel):
-    model_config = ConfigDict(extra="forbid", frozen=True)
-
-
-class LiteratureSection(_Section):
+class LiteratureSection(Section):
     """``[literature]``: the table of literature values, and how papers are combined."""
 
     file: str
@@ -52,7 +37,7 @@ class LiteratureSection(_Section):
     ionic_strength: MolPerLitre | None = None
 
 
-class CandidateSection(_Section):
+class CandidateSection(Section):
     """``[[candidates]]``: one candidate mechanism."""
 
     name: str

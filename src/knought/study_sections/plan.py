@@ -4,11 +4,11 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING, Annotated, Any
 
-from pydantic import BaseModel, BeforeValidator, ConfigDict, Field
+from pydantic import BeforeValidator, Field
 
-from knought.chemistry.units import parse_quantity
 from knought.discussion.reach import Forbidden
 from knought.discussion.reach_text import read_levels
+from knought.study_sections.base import Energy, Entropy, Kelvin, MolPerLitre, Section, in_unit
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -16,38 +16,21 @@ if TYPE_CHECKING:
 __all__ = ["ForbiddenSection", "PlanSection"]
 
 
-def _in_unit(unit: str) -> Callable[[object], float]:
-    def read(value: object) -> float:
-        if not isinstance(value, str):
-            raise ValueError(f'a quantity is a string with its unit, "1 {unit}"')  # noqa: TRY004
-        return parse_quantity(value, unit)
-
-    return read
-
-
 def _levels_in(unit: str) -> Callable[[object], tuple[float, ...]]:
     def read(value: object) -> tuple[float, ...]:
         if not isinstance(value, str):
-            raise ValueError(f'levels are one string with their unit, "1, 2, 5 {unit}"')  # noqa: TRY004
+            raise ValueError(f'levels are one string with their unit, "1, 2, 5 {unit}"')
         return read_levels(value, unit)
 
     return read
 
 
-Kelvin = Annotated[float, BeforeValidator(_in_unit("K"))]
-MolPerLitre = Annotated[float, BeforeValidator(_in_unit("mol L^-1"))]
-Fraction = Annotated[float, BeforeValidator(_in_unit("1"))]
-Energy = Annotated[float, BeforeValidator(_in_unit("J mol^-1"))]
-HeatCapacity = Annotated[float, BeforeValidator(_in_unit("J K^-1 mol^-1"))]
+Fraction = Annotated[float, BeforeValidator(in_unit("1"))]
 Temperatures = Annotated[tuple[float, ...], BeforeValidator(_levels_in("K"))]
 IonicStrengths = Annotated[tuple[float, ...], BeforeValidator(_levels_in("mol L^-1"))]
 
 
-class _Section(BaseModel):
-    model_config = ConfigDict(extra="forbid", frozen=True)
-
-
-class ForbiddenSection(_Section):
+class ForbiddenSection(Section):
     """``[[plan.forbidden]]``: conditions that cannot be set together; bounds left out are open."""
 
     temperature_from: Kelvin = 0.0
@@ -63,7 +46,7 @@ class ForbiddenSection(_Section):
         )
 
 
-class PlanSection(_Section):
+class PlanSection(Section):
     """``[plan]``: what the next runs can be, and what they are for."""
 
     temperatures: Temperatures
@@ -81,7 +64,7 @@ class PlanSection(_Section):
     least_ionic_strengths: int | None = Field(default=None, ge=1)
     runs_a_day: int | None = Field(default=None, ge=1)
     temperature_change_cost: float = Field(default=0.0, ge=0)
-    heat_capacity: HeatCapacity = 200.0
+    heat_capacity: Entropy = 200.0
     hazards: tuple[str, ...] = ()
     most_runs: int | None = Field(default=None, ge=1, le=200)
 

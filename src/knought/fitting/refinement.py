@@ -1,0 +1,76 @@
+"""How fine the grid of the open law must be: as fine as the runs ask for."""
+
+from __future__ import annotations
+
+from dataclasses import replace
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from knought.errors import Caveat
+
+if TYPE_CHECKING:
+    from collections.abc import Callable
+
+    from knought.fitting.open_fit import OpenFit
+
+__all__ = ["refined"]
+
+#: A grid is refined where its effective number of cells is below this, up to this refinement,
+#: until results move by less than this part of their u.
+_FEWEST_CELLS = 12
+_FINEST = 8
+_SETTLED_GRID = 0.01
+
+
+def refined(fitted: Callable[[int], OpenFit]) -> OpenFit:
+    """Return a fit on a grid fine enough.
+
+    Parameters
+    ----------
+    fitted
+        Fits on the grid with that refinement.
+
+    Returns
+    -------
+    OpenFit
+        On the default grid, where many of its cells carry the weight; else on one doubled until
+        neither ln k° nor the charge product moves by a hundredth of its standard uncertainty, or
+        with a caveat that none is fine enough.
+    """
+    found, finer = fitted(1), 1
+    while _few_cells(found) and finer < _FINEST:
+        finer *= 2
+        before, found = found, fitted(finer)
+        if _moved(before, found) < _SETTLED_GRID:
+            return found
+    if _few_cells(found):
+        caveat = Caveat(
+            "coarse-grid",
+            "The runs are so precise that few shapes of the salt law carry all the weight: the "
+            "intervals may be off by more than a hundredth of u. Narrow the priors about "
+            f"å = {found.parameters['ion_size'].written()}.",
+        )
+        return replace(found, caveats=(*found.caveats, caveat))
+    return found
+
+
+def _few_cells(found: OpenFit) -> bool:
+    """Return whether too few cells of a grid with several carry the weight."""
+    if found.grid.cells == 1:
+        return False
+    return 1.0 / float(np.sum(found.cell_weights**2)) < _FEWEST_CELLS
+
+
+def _moved(before: OpenFit, after: OpenFit) -> float:
+    """Return by how much a finer grid moved value or u of any parameter, over its u."""
+    moves = []
+    for name in ("ln_rate_constant", "charge_product"):
+        if name in after.distribution.names:
+            one, other = (each.distribution.parameter(name) for each in (before, after))
+            u = float(other.standard_deviation)
+            moves += [
+                abs(float(one.mean - other.mean)) / u,
+                abs(float(one.standard_deviation) / u - 1),
+            ]
+    return max(moves)
