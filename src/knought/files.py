@@ -57,6 +57,9 @@ _REMEDIES = {
 
 _CHUNK = 1 << 20
 
+#: What file managers leave in folders; no one misses it.
+_LEFT_BY_SYSTEMS = frozenset({".DS_Store", "Thumbs.db", "desktop.ini"})
+
 
 def os_problem(error: OSError, name: str, doing: str) -> Problem:
     """Return what the operating system refused, as something the user can mend.
@@ -167,6 +170,8 @@ def whole_folder(path: str | Path, *, overwrite: bool = False) -> Iterator[Path]
     InputError
         If the folder exists and may not be replaced, holds what the new one does not, or cannot
         be written to.
+    OSError
+        Whatever the system refuses for a reason that is no user's to mend.
     """
     path = Path(path)
     name = path.name or str(path)
@@ -220,7 +225,8 @@ def _put_in_place(partial: Path, target: Path, name: str) -> None:
     if not os.path.lexists(target):
         partial.rename(target)
         return
-    others = sorted({each.name for each in target.iterdir()} - {e.name for e in partial.iterdir()})
+    made = {each.name for each in partial.iterdir()} | _LEFT_BY_SYSTEMS
+    others = sorted({each.name for each in target.iterdir()} - made)
     if others:
         shown = ", ".join(others[:5]) + (", ..." if len(others) > 5 else "")
         raise InputError(

@@ -58,12 +58,12 @@ CHUNK, WIDTHS = 100, 100
 def second_order(T: FloatArray, I: FloatArray, z: float) -> FloatArray:
     """Pitzer form with a second-order term that depends on I: outside the open law's form."""
     x = 2 * np.sqrt(I)
-    return pitzer(T, I, z) + 0.3 * I * 2 / x**2 * (1 - (1 + x) * np.exp(-x))
+    return np.asarray(pitzer(T, I, z) + 0.3 * I * 2 / x**2 * (1 - (1 + x) * np.exp(-x)))
 
 
 def ion_pair(T: FloatArray, I: FloatArray, z: float) -> FloatArray:
     """Güntelberg, and a reactant that pairs with the salt (K = 4 L/mol), inert in the pair."""
-    return guntelberg(T, I, z) - np.log10(1 + 4 * I / (1 + 10 * np.sqrt(I)))
+    return np.asarray(guntelberg(T, I, z) - np.log10(1 + 4 * I / (1 + 10 * np.sqrt(I))))
 
 
 @dataclass(frozen=True)
@@ -204,7 +204,8 @@ def evaluate(cell: Cell, studies: int) -> dict[str, object]:
 
 
 def _eyring(T: FloatArray) -> FloatArray:
-    return np.log(BOLTZMANN * T / PLANCK) + ENTROPY / GAS_CONSTANT - ENTHALPY / GAS_CONSTANT / T
+    eyring = np.log(BOLTZMANN * T / PLANCK) + ENTROPY / GAS_CONSTANT
+    return np.asarray(eyring - ENTHALPY / GAS_CONSTANT / T)
 
 
 def _true_values(charges: int) -> dict[str, float]:

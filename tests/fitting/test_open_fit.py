@@ -101,8 +101,7 @@ def test_giving_the_charges_is_conditioning_on_them() -> None:
     study = seen()
     free = fit_open(study, scatter="given", refinement=1)
     known = {
-        z: fit_open(study, scatter="given", charge_product=z, refinement=1)
-        for z in (1.8, 2.0, 2.3)
+        z: fit_open(study, scatter="given", charge_product=z, refinement=1) for z in (1.8, 2.0, 2.3)
     }
     density = free.distribution.parameter("charge_product").pdf
     for one, other in ((1.8, 2.0), (2.0, 2.3)):

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import replace
 from fractions import Fraction
 
@@ -13,6 +14,7 @@ import knought as kn
 from knought.arrays import FloatArray, frozen
 from knought.chemistry.constants import GAS_CONSTANT
 from knought.fitting.budget import budget
+from knought.fitting.found import Found
 from knought.fitting.observations import Observations, observe
 from knought.fitting.open_fit import fit_open
 from knought.fitting.surface_fit import SurfaceFit, fit_surface
@@ -101,12 +103,13 @@ def test_contributions_add_up_to_the_variance(kind: str, name: str) -> None:
     seen = replace(
         study(*SHARED), u_T=frozen(np.full(16, 0.1)), u_I=frozen(0.01 * np.ones(16) * 0.01)
     )
-    found = {
+    fits: dict[str, Callable[[], Found]] = {
         "named": lambda: fit_surface(seen, salt_law="guntelberg", scatter="given"),
         "open": lambda: fit_open(seen, scatter="given"),
         "open, charges given": lambda: fit_open(seen, scatter="given", charge_product=2),
         "open, scatter": lambda: fit_open(seen, scatter="scatter"),
-    }[kind]()
+    }
+    found = fits[kind]()
     if name == "charge_product" and "charges" in kind:
         with pytest.raises(kn.InputError, match="no budget"):
             budget(found, name)

@@ -24,6 +24,7 @@ from typing import TYPE_CHECKING, ClassVar
 
 import numpy as np
 
+from knought.arrays import frozen
 from knought.chemistry import water
 from knought.chemistry.debye_huckel import Basis, DebyeHuckel, debye_huckel
 from knought.errors import InputError
@@ -45,8 +46,11 @@ __all__ = [
     "SITForm",
 ]
 
-#: kg/L in kg/m³.
+#: kg/m³ in kg/L.
 _PER_LITRE = 1e-3
+
+#: Ions, and the open law's widest prior, stay below 100 Å (in m).
+_LARGEST_ION = 1e-8
 
 
 @dataclass(frozen=True)
@@ -120,7 +124,7 @@ class ActivityForm(ABC):
             If I is negative, or T outside 0-100 °C.
         """
         at = self._at(I, T)
-        return self._shape(at.I, at.water.B).f
+        return np.asarray(self._shape(at.I, at.water.B).f)
 
     def d_dI(self, I: ArrayLike, T: ArrayLike) -> FloatArray:
         """Return ∂f/∂I at constant T, in L/mol; infinite at I = 0. Arguments as for value."""
@@ -185,26 +189,56 @@ def _own_basis(
     Raises
     ------
     InputError
-        If I is negative or no number.
+        If I is negative or not finite.
     """
-    I, T = np.broadcast_arrays(np.asarray(I, dtype=float), np.asarray(T, dtype=float))
-    if np.any(~(I >= 0)):
+    I, T = np.asarray(I, dtype=float), np.asarray(T, dtype=float)
+    wrong = ~(np.isfinite(I) & (I >= 0))
+    if np.any(wrong):
         raise InputError(
-            f"an ionic strength is {float(I[~(I >= 0)].flat[0])} mol/L",
-            "ionic strengths are at least zero",
+            f"an ionic strength is {float(I[wrong].flat[0]):g} mol/L",
+            "ionic strengths are finite and at least zero",
         )
     if basis == "molar":
-        return I, 1.0, 0.0
-    T = water.require_liquid(T)
-    rho, rho_dT = water.density_kernel(T)
-    rho, rho_dT = rho * _PER_LITRE, rho_dT * _PER_LITRE
-    return I / rho, 1.0 / rho, -I * rho_dT / rho**2
+        return np.array(np.broadcast_arrays(I, T)[0]), 1.0, 0.0
+    rho, rho_dT = (_PER_LITRE * each for each in water.density_kernel(water.require_liquid(T)))
+    return np.asarray(I / rho), 1.0 / rho, -I * rho_dT / rho**2
 
 
 def _half_slope(root: FloatArray) -> FloatArray:
     """d√I/dI = 1/(2√I); infinite at zero."""
     with np.errstate(divide="ignore"):
         return np.asarray(0.5 / root)
+
+
+def _rational(I: FloatArray, q: FloatArray | float) -> tuple[FloatArray, FloatArray, FloatArray]:
+    """√I/(1 + q √I) with its slopes in I and q."""
+    root = np.sqrt(I)
+    below = 1 + q * root
+    f = root / below
+    return f, _half_slope(root) / below**2, -(f**2)
+
+
+def _screened(I: FloatArray, B: FloatArray, size: FloatArray | float) -> _Shape:
+    """√I/(1 + B å √I) with its slopes in I and B."""
+    f, f_I, f_q = _rational(I, B * size)
+    return _Shape(f, f_I, size * f_q)
+
+
+def _require_ion_size(size: FloatArray | float) -> None:
+    """Refuse what is not the size of an ion; å given in Å is the usual slip.
+
+    Raises
+    ------
+    InputError
+        If a size is negative, 100 Å or more, or not a number.
+    """
+    sizes = np.asarray(size, dtype=float)
+    wrong = ~((sizes >= 0) & (sizes < _LARGEST_ION))
+    if np.any(wrong):
+        raise InputError(
+            f"an ion size of {float(sizes[wrong].flat[0]):g} m is not that of an ion",
+            "give it in m: 4.5 Å is 4.5e-10",
+        )
 
 
 @dataclass(frozen=True)
@@ -229,8 +263,8 @@ class GuntelbergForm(ActivityForm):
     domain: ClassVar[Domain] = Domain(0.1, "common practice, no source")
 
     def _shape(self, I: FloatArray, B: FloatArray) -> _Shape:
-        root = np.sqrt(I)
-        return _Shape(root / (1 + root), _half_slope(root) / (1 + root) ** 2)
+        f, f_I, _ = _rational(I, 1.0)
+        return _Shape(f, f_I)
 
 
 @dataclass(frozen=True)
@@ -240,7 +274,12 @@ class ExtendedForm(ActivityForm):
     Parameters
     ----------
     ion_size
-        å in m, 3e-10 to 9e-10 for most ions; an array broadcasts against I and T.
+        å in m, 3e-10 to 9e-10 for most ions.
+
+    Raises
+    ------
+    InputError
+        If `ion_size` is not that of an ion.
     """
 
     ion_size: float = 4.5e-10
@@ -250,11 +289,7 @@ class ExtendedForm(ActivityForm):
     domain: ClassVar[Domain] = Domain(0.1, "common practice, no source")
 
     def __post_init__(self) -> None:
-        if not 0 <= self.ion_size < 1e-8:
-            raise InputError(
-                f"an ion size of {self.ion_size:g} m is not that of an ion",
-                "give it in m: 4.5 Å is 4.5e-10",
-            )
+        _require_ion_size(self.ion_size)
 
     def _shape(self, I: FloatArray, B: FloatArray) -> _Shape:
         return _screened(I, B, self.ion_size)
@@ -277,11 +312,8 @@ class DaviesForm(ActivityForm):
     domain: ClassVar[Domain] = Domain(0.5, "common practice, no source; 0.1 mol/L by some authors")
 
     def _shape(self, I: FloatArray, B: FloatArray) -> _Shape:
-        root = np.sqrt(I)
-        return _Shape(
-            root / (1 + root) - self.coefficient * I,
-            _half_slope(root) / (1 + root) ** 2 - self.coefficient,
-        )
+        f, f_I, _ = _rational(I, 1.0)
+        return _Shape(f - self.coefficient * I, f_I - self.coefficient)
 
 
 @dataclass(frozen=True)
@@ -291,12 +323,11 @@ class SITForm(ActivityForm):
     name: ClassVar[str] = "sit"
     words: ClassVar[str] = "SIT"
     basis: ClassVar[Basis] = "molal"
-    domain: ClassVar[Domain] = Domain(3.5, "NEA TDB-2 (2000): best below 3.5 mol/kg")
+    domain: ClassVar[Domain] = Domain(3.5, "NEA TDB-2 (2000), from memory: to 3.5 mol/kg")
 
     def _shape(self, I: FloatArray, B: FloatArray) -> _Shape:
-        root = np.sqrt(I)
-        below = 1 + 1.5 * root
-        return _Shape(root / below, _half_slope(root) / below**2)
+        f, f_I, _ = _rational(I, 1.5)
+        return _Shape(f, f_I)
 
 
 @dataclass(frozen=True)
@@ -310,7 +341,9 @@ class PitzerForm(ActivityForm):
     name: ClassVar[str] = "pitzer"
     words: ClassVar[str] = "Pitzer form"
     basis: ClassVar[Basis] = "molal"
-    domain: ClassVar[Domain] = Domain(6.0, "Pitzer and Mayorga 1973: to 6 mol/kg with its virials")
+    domain: ClassVar[Domain] = Domain(
+        6.0, "Pitzer and Mayorga (1973), from memory: to 6 mol/kg with its virials"
+    )
     b: ClassVar[float] = 1.2
 
     def _shape(self, I: FloatArray, B: FloatArray) -> _Shape:
@@ -328,6 +361,12 @@ class OpenForm(ActivityForm):
     ----------
     ion_size, linear_coefficient
         å in m and c in L/mol; arrays broadcast against I and T, so that one call serves a grid.
+        Kept as read-only copies.
+
+    Raises
+    ------
+    InputError
+        If an ion size is not that of an ion, or a coefficient is not finite.
     """
 
     ion_size: FloatArray | float
@@ -337,14 +376,14 @@ class OpenForm(ActivityForm):
     words: ClassVar[str] = "open law"
     domain: ClassVar[Domain] = Domain(0.5, "the design of its priors, tested by simulation")
 
+    def __post_init__(self) -> None:
+        _require_ion_size(self.ion_size)
+        if not np.all(np.isfinite(self.linear_coefficient)):
+            raise InputError("a coefficient c of the open form is not finite", "give it in L/mol")
+        object.__setattr__(self, "ion_size", frozen(self.ion_size))
+        object.__setattr__(self, "linear_coefficient", frozen(self.linear_coefficient))
+
     def _shape(self, I: FloatArray, B: FloatArray) -> _Shape:
         shape = _screened(I, B, self.ion_size)
         c = self.linear_coefficient
         return _Shape(shape.f - c * I, shape.f_I - c, shape.f_B)
-
-
-def _screened(I: FloatArray, B: FloatArray, size: FloatArray | float) -> _Shape:
-    """√I/(1 + B å √I) with its slopes in I and B."""
-    root = np.sqrt(I)
-    below = 1 + B * size * root
-    return _Shape(root / below, _half_slope(root) / below**2, -size * (root / below) ** 2)

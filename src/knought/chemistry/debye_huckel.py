@@ -4,18 +4,19 @@
     B = √(2 N_A e² ρ / (ε₀ ε_r k_B T))
 
 on the molal basis (Debye and Hückel, Phys. Z. 24 (1923) 185; written in SI as in the Green Book
-2.13); on the molar basis the density falls out, as c = m ρ: put 1000 mol m^-3 per mol/L in place of
-N_A ρ. Neither is ever frozen at 25 °C: over 15-45 °C that alone biases ΔH‡ by more than 1 kJ/mol
-for a charge product of 2, and no residual shows it.
+2.13). On the molar basis the density falls out, as c = m ρ: N_A ρ becomes N_A x 1000 L/m³, and the
+slopes in T are those at constant molarity. Neither A nor B is ever frozen at 25 °C: over 15-45 °C
+that alone biases ΔH‡ by more than 1 kJ/mol for a charge product of 2, and no residual shows it.
 """
 
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import TYPE_CHECKING, Literal
+from typing import TYPE_CHECKING, Literal, get_args
 
 import numpy as np
 
+from knought.arrays import frozen
 from knought.chemistry import water
 from knought.chemistry.constants import (
     AVOGADRO,
@@ -24,6 +25,7 @@ from knought.chemistry.constants import (
     LN10,
     VACUUM_PERMITTIVITY,
 )
+from knought.errors import InputError
 
 if TYPE_CHECKING:
     from numpy.typing import ArrayLike
@@ -34,13 +36,12 @@ __all__ = ["Basis", "DebyeHuckel", "bjerrum_length", "debye_huckel"]
 
 Basis = Literal["molar", "molal"]
 
-#: 1 mol/L in mol m^-3.
 _LITRES_PER_CUBIC_METRE = 1000.0
 
 
 @dataclass(frozen=True, eq=False)
 class DebyeHuckel:
-    """Debye-Hückel coefficients at given temperatures.
+    """Debye-Hückel coefficients at given temperatures; the arrays are read-only.
 
     Attributes
     ----------
@@ -76,8 +77,10 @@ def debye_huckel(T: ArrayLike, basis: Basis = "molar") -> DebyeHuckel:
     Raises
     ------
     InputError
-        If a temperature lies outside 0-100 °C.
+        If a temperature lies outside 0-100 °C, or there is no such basis.
     """
+    if basis not in get_args(Basis):
+        raise InputError(f"no basis is called {basis!r}", "choose 'molar' or 'molal'")
     T = water.require_liquid(T)
     rho, rho_dT = water.density_kernel(T)
     epsilon, epsilon_dT = water.permittivity_kernel(T, rho, rho_dT)
@@ -92,10 +95,10 @@ def debye_huckel(T: ArrayLike, basis: Basis = "molar") -> DebyeHuckel:
     A = ELEMENTARY_CHARGE**3 * np.sqrt(2 * amount) / (8 * np.pi * thermal**1.5 * LN10)
     B = np.sqrt(2 * amount * ELEMENTARY_CHARGE**2 / thermal)
     return DebyeHuckel(
-        A=A,
-        B=B,
-        dA_dT=A * (0.5 * amount_relative_dT - 1.5 * thermal_relative_dT),
-        dB_dT=B * 0.5 * (amount_relative_dT - thermal_relative_dT),
+        A=frozen(A),
+        B=frozen(B),
+        dA_dT=frozen(A * (0.5 * amount_relative_dT - 1.5 * thermal_relative_dT)),
+        dB_dT=frozen(B * 0.5 * (amount_relative_dT - thermal_relative_dT)),
     )
 
 

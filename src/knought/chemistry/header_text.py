@@ -23,6 +23,9 @@ _PREFACTOR = re.compile(
     r"(?:10 ?\^ ?\(?(?P<power>[+-]?[0-9]{1,2})\)?|1[eE](?P<e>[+-]?[0-9]{1,2})|(?P<plain>10{1,9}))"
     r"(?: ?[*xX] ?(?=\S)| (?=\S)|(?=[^\W\d_]))"
 )
+_AT_THE_END = re.compile(
+    r"(?<=\S) ?[*xX] ?(?:10 ?\^ ?\(?(?P<power>[+-]?[0-9]{1,2})\)?|1[eE](?P<e>[+-]?[0-9]{1,2}))$"
+)
 _BEHIND = re.compile(
     r" ?[*xX] ?(?:10 ?\^ ?\(?(?P<power>[+-]?[0-9]{1,2})\)?|1[eE](?P<e>[+-]?[0-9]{1,2}))"
 )
@@ -89,7 +92,20 @@ def split_header(text: str) -> HeaderParts:
         power = int(behind["power"] or behind["e"])
         tail = tail[behind.end() :] if tail.lstrip()[:1] != "(" else tail.partition(")")[2]
     unit, remark = _unit_of(tail.strip())
+    if power is None:
+        unit, remark, power = _power_at_the_end(unit, remark)
     return HeaderParts(prefactor, quantity, unit, power, remark)
+
+
+def _power_at_the_end(unit: str | None, remark: str) -> tuple[str | None, str, int | None]:
+    """Find a power of ten behind the unit, ``k/s^-1 × 10^3``."""
+    found = _BEHIND.fullmatch(remark)
+    if found is not None:
+        return unit, "", int(found["power"] or found["e"])
+    last = None if unit is None else _AT_THE_END.search(unit)
+    if unit is None or last is None:
+        return unit, remark, None
+    return unit[: last.start()].strip(), remark, int(last["power"] or last["e"])
 
 
 def _prefactor(text: str) -> tuple[Fraction, str]:

@@ -96,13 +96,13 @@ _TEXT_NAMES: dict[str, Role] = {
     "n": "n", "determinations": "n", "replicates": "n", "number of determinations": "n",
 }  # fmt: skip
 
-_TEMPERATURE = re.compile(r"T|temp\.?|temperature|abs(?:olute|\.)? ?temp(?:erature|\.)?", re.IGNORECASE)
+_TEMPERATURE = re.compile(r"T|(?:abs(?:olute|\.)? ?)?temp(?:erature|\.)?", re.IGNORECASE)
 _IONIC_STRENGTH = re.compile(r"I(?:_?c|_?m)?|µ|ionic[ _-]?str(?:ength|\.)", re.IGNORECASE)
 _RATE_CONSTANT = re.compile(
     r"(?:k(?P<index>_\{?[A-Za-z0-9ψΨ°,+-]{1,12}\}?|[0-9°]{1,2}|obsd?|app|exp|cat|ψ|Ψ|II?)?"
     r"(?P<prime>['′’]{0,2})"
-    r"|(?P<words>(?:obs(?:erved|\.)? |second-order |first-order |pseudo-first-order )?"
-    r"rate[ _-]?(?:constant|coefficient)))"
+    r"|(?P<words>(?i:(?:obs(?:erved|\.)? |second-order |first-order |pseudo-first-order )?"
+    r"rate[ _-]?(?:constant|coefficient))))"
 )
 _OBSERVED = re.compile(r"_?\{?(?:obs|obsd|app|ψ|Ψ|psi)\}?", re.IGNORECASE)
 _FUNCTIONS: tuple[tuple[str, Function], ...] = (
@@ -114,7 +114,8 @@ _FUNCTIONS: tuple[tuple[str, Function], ...] = (
 #: Signs of an uncertainty around or before the quantity: u(k), 2 s(k), Δk, s_k, SD of k.
 _WRAPPED = re.compile(r"(?P<sign>[A-Za-z0-9σΔδ_±% {}+/.-]{1,14}?) ?\((?P<inside>.+)\)")
 _BEFORE = re.compile(
-    r"(?P<sign>Δ|δ|delta |[A-Za-zσ]{1,5}_|(?:±|\+/-) ?|(?:2? ?(?:SD|SE|SEM|σ|s|u)|95 ?% ?CI)(?= of ))(?: of )?"
+    r"(?P<sign>Δ|δ|delta |[A-Za-zσ]{1,5}_|(?:±|\+/-) ?"
+    r"|(?:2? ?(?:SD|SE|SEM|σ|s|u)|95 ?% ?CI)(?= of ))(?: of )?"
     r"(?P<inside>.+)"
 )
 
@@ -125,8 +126,8 @@ def parse_header(text: str) -> Header | None:
     Parameters
     ----------
     text
-        ``"T/K"``, ``"t (°C)"``, ``"10^3 k/s^-1"``, ``"u_r(k)/%"``, ``"ln(k/s^-1)"``, ``"1000 K/T"``,
-        ``"c(NaClO4)/(mmol/L)"``, ``"run"``, ...
+        ``"T/K"``, ``"t (°C)"``, ``"10^3 k/s^-1"``, ``"u_r(k)/%"``, ``"ln(k/s^-1)"``,
+        ``"1000 K/T"``, ``"c(NaClO4)/(mmol/L)"``, ``"run"``, ...
 
     Returns
     -------
@@ -151,35 +152,38 @@ def parse_header(text: str) -> Header | None:
         raise InputError(Problem(first.what, first.remedy, read=text)) from error
 
 
-_RECIPROCAL = re.compile(
-    r"(?P<ten>1|10{1,6}|10 ?\^ ?\(?[0-9]{1,2}\)?|1[eE][0-9]{1,2}) ?[* ]? ?"
-    r"(?:\(?(?P<unit>K)\)? ?/ ?T"  # 1000 K/T
-    r"|/ ?\(? ?T ?/ ?(?P<below>K) ?\)?"  # 1000/(T/K)
-    r"|/ ?T(?P<tail>.*))"  # 1000/T, (K^-1)
+_TEN = r"(?P<ten>1|10{1,6}|10 ?\^ ?\(?[0-9]{1,2}\)?|1[eE][0-9]{1,2})"
+_RECIPROCALS = (
+    re.compile(rf"(?:{_TEN} ?[* ] ?)?K ?/ ?T"),  # 1000 K/T
+    re.compile(rf"{_TEN} ?/ ?\(T ?/ ?K\)"),  # 1000/(T/K)
+    re.compile(rf"\(?{_TEN} ?/ ?T\)?(?P<unit>[ /(\[].*)?"),  # 1000/T (K^-1), (1/T)/K^-1
+    re.compile(rf"(?:{_TEN} ?[* ]? ?)?T ?\^ ?\(?-1\)?(?P<unit>[ /(\[].*)?"),  # 1000 T^-1/K^-1
 )
 
 
 def _reciprocal(text: str, plain: str) -> Header | None:
-    """Read ``1000 K/T`` and its kin: v = 1000 K/T, so T = 1000 K/v."""
-    bare = plain
-    opened = closing_bracket(plain, 0) if plain.startswith("(") else -1
-    if opened > 0:
-        bare = plain[1:opened] + plain[opened + 1 :]
-    bare = re.sub(r"T\^\(?-1\)?", "/T", bare) if "T^" in bare else bare
-    bare = re.sub(r"^((?:1000|10 ?\^ ?3) ?\*? ?)/T", r"\1/T", bare)
-    found = _RECIPROCAL.fullmatch(bare if not bare.startswith("/T") else f"1{bare}")
-    if found is None:
-        return None
-    if found["tail"] is not None:
-        tail = found["tail"].strip(" /()[]")
-        # 10^3/T in 10^-3 K^-1 would count the power of ten twice: the unit says K^-1 alone.
-        if tail and tail not in {"K^-1", "1/K", "K-1"}:
+    """Read ``1000 K/T`` and its kin: v = 1000 K/T, so T = 1000 K/v.
+
+    Raises
+    ------
+    InputError
+        If what stands behind 1/T is not K^-1.
+    """
+    for pattern in _RECIPROCALS:
+        found = pattern.fullmatch(plain)
+        if found is None:
+            continue
+        parts = found.groupdict()
+        unit = (parts.get("unit") or "").strip(" /()[]")
+        # 10^3/T in 10^-3 K^-1 would count the power of ten twice.
+        if unit not in {"", "K^-1", "1/K", "K-1"}:
             raise InputError(
-                f"{tail} behind 1/T is not K^-1", "head the column 1000 K/T or (1/T)/K^-1"
+                f"{unit} behind 1/T is not K^-1", "head the column 1000 K/T or (1/T)/K^-1"
             )
-    ten = found["ten"].replace(" ", "").replace("(", "").replace(")", "").replace("10^", "1e")
-    return Header(text, "T", unit=parse_unit("K"), prefactor=Fraction(int(float(ten))),
-                  function="reciprocal")  # fmt: skip
+        ten = re.sub(r"[ ()]", "", parts["ten"] or "1").replace("10^", "1e")
+        prefactor = Fraction(int(float(ten)))
+        return Header(text, "T", unit=parse_unit("K"), prefactor=prefactor, function="reciprocal")
+    return None
 
 
 def _quantity(text: str, plain: str) -> Header | None:
@@ -202,12 +206,17 @@ def _quantity(text: str, plain: str) -> Header | None:
         )
     if parts.power_behind is not None:
         raise InputError(_power_behind(parts))
+    if re.search(r"[0-9±%*]", parts.remark):
+        raise InputError(
+            f"has words behind its unit that are not understood: {parts.remark}",
+            "keep quantity and unit in the header, and say the rest in the column note",
+        )
     return _with_unit(header if said is None else _declared(header, said), parts)
 
 
 _SAID = re.compile(
-    r" ?\((?P<said>(?:± ?)?(?:[12] ?(?:s|sd|σ|u|se|sem)|sd|se|sem|95 ?%[A-Za-z -]*"
-    r"|standard [a-z ]+|k ?= ?2))\)(?=$|[ /,])",
+    r" ?[(±] ?(?P<said>(?:± ?)?(?:[12] ?(?:s|sd|σ|u|se|sem)|sd|se|sem|95 ?%[A-Za-z -]*"
+    r"|standard [a-z ]+|k ?= ?2))(?:\)|(?<=[a-zA-Zσ%2])$)(?=$|[ /,])",
     re.IGNORECASE,
 )
 
@@ -227,7 +236,8 @@ def _declared(header: Header, said: Meaning) -> Header:
 
 
 def _tight(plain: str) -> str:
-    """Take the space out of ``u (k)``, which is one sign."""
+    """Take the space out of ``u (k)``, which is one sign, and give ``u(k) %`` its solidus."""
+    plain = re.sub(r"(?<=\S) ?%$", "/%", plain) if re.search(r"[^/(\[ ] ?%$", plain) else plain
     return re.sub(r"^([A-Za-zσ_]{1,5}|2 ?[sσu]) \((?=(?:k|T|t|I|ln k|lg k)\))", r"\1(", plain)
 
 

@@ -68,6 +68,9 @@ _REASONS = (
     ),
 )
 
+#: Enough of a long text to see what it is.
+_LOOKED_AT = 200
+
 _WORDS = {".": "point", ",": "comma"}
 _THOUSANDS = re.compile(r"[+-]?[1-9][0-9]{0,2}[.,][0-9]{3}")
 
@@ -85,7 +88,7 @@ def refusal(plain: str, decimal: str, other: str | None) -> Unreadable:
         The other mark, where the text would be a number with that one.
     """
     for pattern, what, remedy in _REASONS:
-        if pattern.fullmatch(plain):
+        if pattern.fullmatch(plain[:_LOOKED_AT]):
             return Unreadable(what, remedy)
     if other is not None and _THOUSANDS.fullmatch(plain):
         whole, broken = plain.replace(other, ""), plain.replace(other, decimal)

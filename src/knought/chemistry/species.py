@@ -1,15 +1,20 @@
 """Formulas of species with their charges, and what charges a step brings together.
 
-Charges are written ``SO4^2-``, ``[Co(NH3)5Cl]2+``, ``SO₄²⁻``, ``Na+`` or ``Mg+2``. Where a digit
-before the sign could be a subscript or a charge, one rule decides and everything else is refused:
+Charges are written ``SO4^2-``, ``[Co(NH3)5Cl]2+``, ``SO₄²⁻``, ``SO4 2-``, ``Na+`` or ``Mg+2``.
+Where digits before the sign could be a subscript or a charge, what every chemist means is read and
+the rest is refused with both readings, for no residual shows a wrong charge:
 
-- a digit after a bracket, or after ``^``, belongs to the charge: ``[Fe(CN)6]4-``, ``I3^-``;
-- one digit after an element that forms monatomic cations, before ``+``, is the charge: ``Fe2+``;
-- one digit in a formula of several elements is a subscript: ``NO3-``, ``NH4+`` have charge one;
-- ``SO42-``, ``O2-``, ``I3-``, ``H2+``: two readings, refused with both.
+- behind ``^``, raised, behind a space or behind the sign: the charge, ``I3^-``, ``SO4-2``;
+- behind one pair of square brackets around everything: the charge, ``[Fe(CN)6]4-``;
+- one digit behind a single metal, before ``+``: the charge, ``Fe2+``;
+- one digit in a polyatomic formula: a subscript, ``NO3-``, ``MnO4-``, ``NH4+``; but a cation that
+  holds a metal is refused (``VO2+`` is VO2^+ and VO^2+, ``FeOH2+`` is neither safely), and so is a
+  metal with an abbreviated ligand last (``Fe(edta)2-``);
+- everything else, such as ``SO42-``, ``O2-``, ``I3-``, ``H2+`` or ``A2-``: refused.
 
-A single capital letter or a letter with a prime may stand for a reactant without a formula
-(``A^2- + B^-``).
+A single capital letter, also with primes, may stand for a reactant without a formula
+(``A^2- + B'^-``). A dot that marks a radical, ``SO4·-``, is read over, for it is no part of the
+charge; one inside a formula, ``CuSO4·5H2O``, is refused, for that is no species in solution.
 """
 
 from __future__ import annotations
@@ -20,7 +25,14 @@ from fractions import Fraction
 from types import MappingProxyType
 from typing import TYPE_CHECKING, NoReturn
 
-from knought.errors import InputError, quoted
+from knought.chemistry.composition import (
+    ELEMENTS,
+    count_atoms,
+    ends_in_ligand,
+    has_metal,
+    refuse_formula,
+)
+from knought.errors import InputError, Problem, quoted
 from knought.rounding import superscript
 
 if TYPE_CHECKING:
@@ -34,44 +46,40 @@ __all__ = [
     "parse_species",
 ]
 
-#: Longer texts, deeper brackets and larger charges are slips.
-_LONGEST, _DEEPEST, _LARGEST_CHARGE, _LARGEST_COUNT = 120, 8, 20, 10_000
-
-_ELEMENTS = frozenset(
-    (
-        "H He Li Be B C N O F Ne Na Mg Al Si P S Cl Ar K Ca Sc Ti V Cr Mn Fe Co Ni Cu Zn Ga Ge As "
-        "Se Br Kr Rb Sr Y Zr Nb Mo Tc Ru Rh Pd Ag Cd In Sn Sb Te I Xe Cs Ba La Ce Pr Nd Pm Sm Eu "
-        "Gd Tb Dy Ho Er Tm Yb Lu Hf Ta W Re Os Ir Pt Au Hg Tl Pb Bi Po At Rn Fr Ra Ac Th Pa U Np "
-        "Pu Am Cm Bk Cf Es Fm Md No Lr Rf Db Sg Bh Hs Mt Ds Rg Cn Nh Fl Mc Lv Ts Og D T "
-    ).split()
-)
-_NONMETALS = frozenset("H D T He B C N O F Ne Si P S Cl Ar Ge As Se Br Kr Te I Xe At Rn".split())
+#: Longer texts and larger charges are slips.
+_LONGEST, _LARGEST_CHARGE = 120, 20
 
 _SPELLINGS = str.maketrans(
     {
-        **dict.fromkeys("−–⁻₋", "-"),
-        **dict.fromkeys("⁺₊", "+"),
+        **dict.fromkeys("−–₋", "-"),
+        "₊": "+",
         **dict(zip("₀₁₂₃₄₅₆₇₈₉", "0123456789", strict=True)),
-        "\u00a0": " ",
-        "\u2009": " ",
-        "·": "",
-        "⋅": "",
+        **dict.fromkeys("\u00a0\u2009\u202f", " "),
+        **dict.fromkeys("⋅•∙˙", "·"),
+        **dict.fromkeys("′’", "'"),
     }
 )
-_RAISED_CHARGE = re.compile(r"([⁰¹²³⁴⁵⁶⁷⁸⁹]*)([⁺⁻])|([⁺⁻])([⁰¹²³⁴⁵⁶⁷⁸⁹]*)")
 _RAISED = str.maketrans("⁰¹²³⁴⁵⁶⁷⁸⁹⁺⁻", "0123456789+-")
+_SUBSCRIPTS = str.maketrans("0123456789", "₀₁₂₃₄₅₆₇₈₉")
 
-_CARET = re.compile(
-    r"^(?P<formula>.+?)\^\(?\{?(?:(?P<a>\d*)(?P<b>[+-])|(?P<c>[+-])(?P<d>\d*))\}?\)?$"
-)
-_SIGN_FIRST = re.compile(r"^(?P<formula>.+?)(?P<sign>[+-])(?P<size>\d+)$")
-_SIGN_LAST = re.compile(r"^(?P<formula>.+?)(?P<digits>\d*)(?P<sign>[+-])$")
-_GENERIC = re.compile(r"^[A-Z]'{0,2}$")
+_RAISED_END = re.compile(r"[⁰¹²³⁴⁵⁶⁷⁸⁹⁺⁻]+[+-]?$")
+_SPACED_END = re.compile(r" +(?=(?:[1-9][+-]|[+-][1-9])$)")
+_BRACED_END = re.compile(r"\^(?:\{([^{}()]*)\}|\(([^{}()]*)\))$")
+_LOWERED = re.compile(r"_(?:\{([0-9]+)\}|([0-9]))")
+_RADICAL_BEFORE_SIGN = re.compile(r"·(?=[1-9]?[+-]$)")
+
+_STATED = re.compile(r"(.+?)(?:\^([1-9][0-9]*[+-]|[+-](?:[1-9][0-9]*)?)|([+-][1-9][0-9]*))")
+_SIGN_LAST = re.compile(r"(.+?)([0-9]*)([+-])")
+_PLACEHOLDER = re.compile(r"[A-Z]'{0,2}")
+_COUNTS = re.compile(r"(?<=[A-Za-z)\]}])[0-9]+")
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Species:
     """A species: formula, charge and what it is made of.
+
+    Two species are equal if formula and charge are, square brackets around everything apart:
+    ``[Fe(CN)6]4-`` is ``Fe(CN)6^4-``.
 
     Attributes
     ----------
@@ -80,17 +88,31 @@ class Species:
     charge
         z.
     composition
-        Atoms by element; empty for a letter that stands for a reactant.
+        Atoms by element, read-only; empty for a letter that stands for a reactant.
     """
 
     formula: str
     charge: int
-    composition: Mapping[str, int] = field(compare=False, default_factory=dict, hash=False)
+    composition: Mapping[str, int] = field(default_factory=dict)
+
+    def __post_init__(self) -> None:
+        object.__setattr__(self, "composition", MappingProxyType(dict(self.composition)))
+
+    def __eq__(self, other: object) -> bool:
+        return isinstance(other, Species) and self._identity == other._identity
+
+    def __hash__(self) -> int:
+        return hash(self._identity)
+
+    @property
+    def _identity(self) -> tuple[str, int]:
+        bare = self.formula[1:-1] if _is_bracketed(self.formula) else self.formula
+        return bare, self.charge
 
     @property
     def text(self) -> str:
-        """The species in Unicode, ``"S₂O₃²⁻"``."""
-        lowered = re.sub(r"(?<=[A-Za-z)\]])\d+", lambda found: _subscript(found[0]), self.formula)
+        """The species in Unicode, ``"S₂O₃²⁻"``; reads back as itself."""
+        lowered = _COUNTS.sub(lambda found: found[0].translate(_SUBSCRIPTS), self.formula)
         return lowered + superscript(_charge_text(self.charge))
 
     @property
@@ -101,23 +123,20 @@ class Species:
     @property
     def html(self) -> str:
         """The species in HTML."""
-        lowered = re.sub(r"(?<=[A-Za-z)\]])\d+", r"<sub>\g<0></sub>", self.formula)
+        lowered = _COUNTS.sub(r"<sub>\g<0></sub>", self.formula)
         sign = _charge_text(self.charge).replace("-", "−")
         return lowered + (f"<sup>{sign}</sup>" if sign else "")
 
     @property
     def latex(self) -> str:
-        """The species in LaTeX."""
-        lowered = re.sub(r"(?<=[A-Za-z)\]])\d+", r"_{\g<0>}", self.formula)
+        """The species in LaTeX, for math mode."""
+        escaped = self.formula.replace("{", r"\{").replace("}", r"\}")
+        lowered = _COUNTS.sub(r"_{\g<0>}", escaped)
         sign = _charge_text(self.charge)
         return rf"\mathrm{{{lowered}{f'^{{{sign}}}' if sign else ''}}}"
 
     def __str__(self) -> str:
         return self.text
-
-
-def _subscript(digits: str) -> str:
-    return digits.translate(str.maketrans("0123456789", "₀₁₂₃₄₅₆₇₈₉"))
 
 
 def _charge_text(charge: int) -> str:
@@ -126,8 +145,19 @@ def _charge_text(charge: int) -> str:
     return f"{abs(charge) if abs(charge) > 1 else ''}{'+' if charge > 0 else '-'}"
 
 
+def _is_bracketed(formula: str) -> bool:
+    """Whether one pair of square brackets stands around everything."""
+    inside = formula[1:-1]
+    depth = 0
+    for character in inside:
+        depth += (character == "[") - (character == "]")
+        if depth < 0:
+            return False
+    return len(formula) > 2 and formula[0] == "[" and formula[-1] == "]"
+
+
 def parse_species(text: str) -> Species:
-    """Read a formula with its charge.
+    """Read a formula with its charge, by the rules at the top of the module.
 
     Parameters
     ----------
@@ -145,42 +175,79 @@ def parse_species(text: str) -> Species:
     """
     if len(text) > _LONGEST:
         raise InputError(f"{quoted(text)} is too long for a formula", "give one species")
-    plain = _RAISED_CHARGE.sub(
-        lambda found: "^" + found[0].translate(_RAISED), text.strip()
-    ).translate(_SPELLINGS)
+    plain = _spelt_plainly(text)
     if plain in {"e-", "e^-"}:
         return Species("e", -1)
     formula, charge = _charge(plain, text)
     if abs(charge) > _LARGEST_CHARGE:
         raise InputError(f"a charge of {charge} in {quoted(text)}", "check the formula")
-    if _GENERIC.match(formula):
-        made_of: dict[str, int] = {formula: 1} if formula in _ELEMENTS else {}
-        return Species(formula, charge, MappingProxyType(made_of))
-    return Species(formula, charge, MappingProxyType(_composition(formula, text)))
+    if _PLACEHOLDER.fullmatch(formula):
+        return Species(formula, charge, {formula: 1} if formula in ELEMENTS else {})
+    return Species(formula, charge, count_atoms(formula, text))
+
+
+def _spelt_plainly(text: str) -> str:
+    """Return `text` in ASCII, with a raised, spaced or braced charge behind ``^``.
+
+    Raises
+    ------
+    InputError
+        If a dot stands where no radical's can.
+    """
+    plain = text.translate(_SPELLINGS).strip().removesuffix("(aq)").strip("· ")
+    plain = _RAISED_END.sub(lambda found: "^" + found[0].translate(_RAISED), plain)
+    plain = _SPACED_END.sub("^", plain)
+    plain = _BRACED_END.sub(lambda found: f"^{found[1] or found[2] or ''}", plain)
+    plain = _LOWERED.sub(lambda found: found[1] or found[2], plain)
+    plain = _RADICAL_BEFORE_SIGN.sub("^", plain.replace("·^", "^").replace("^·", "^"))
+    if "·" in plain:
+        raise InputError(
+            f"{quoted(text)} has a dot inside, as an addition compound has",
+            "give the species that is in solution",
+        )
+    return plain
 
 
 def _charge(plain: str, text: str) -> tuple[str, int]:
-    """Split a formula from its charge by the rules at the top of the module."""
-    found = _CARET.match(plain)
-    if found:
-        sign, size = found["b"] or found["c"], found["a"] or found["d"]
-        return found["formula"], int(f"{sign}{size or 1}")
-    found = _SIGN_FIRST.match(plain)
-    if found:
-        return found["formula"], int(found["sign"] + found["size"])
-    found = _SIGN_LAST.match(plain)
-    if not found:
+    """Split a formula from its charge."""
+    stated = _STATED.fullmatch(plain)
+    if stated:
+        charge = stated[2] or stated[3]
+        size = int(charge.strip("+-") or 1)
+        return stated[1], -size if "-" in charge else size
+    last = _SIGN_LAST.fullmatch(plain)
+    if not last:
         return plain, 0
-    formula, digits, sign = found["formula"], found["digits"], found["sign"]
-    if not digits:
-        return formula, int(f"{sign}1")
-    if formula.endswith(("]", ")")) and len(digits) == 1 and formula.startswith("["):
+    formula, digits, sign = last.groups()
+    if digits and _is_charge(formula, digits, sign, text):
         return formula, int(sign + digits)
-    if formula in _ELEMENTS and len(digits) == 1 and sign == "+" and formula not in _NONMETALS:
-        return formula, int(sign + digits)
-    if len(digits) > 1 or formula in _ELEMENTS or _GENERIC.match(formula):
-        _refuse_two_readings(text, formula, digits, sign)
     return formula + digits, int(f"{sign}1")
+
+
+def _is_charge(formula: str, digits: str, sign: str, text: str) -> bool:
+    """Whether digits before the sign are the charge and not a subscript.
+
+    Raises
+    ------
+    InputError
+        If both could be meant.
+    """
+    if digits.startswith("0"):
+        refuse_formula(text)
+    if len(digits) > 1:
+        # C60-: no charge ends in this digit, so it is a subscript whole.
+        if digits.endswith("0") and not _is_bracketed(formula):
+            return False
+        _refuse_two_readings(text, formula, digits, sign)
+    if _is_bracketed(formula):
+        return True
+    if formula in ELEMENTS and has_metal(formula) and sign == "+":
+        return True
+    alone = formula in ELEMENTS or _PLACEHOLDER.fullmatch(formula)
+    of_metal = has_metal(formula) and (sign == "+" or ends_in_ligand(formula))
+    if alone or of_metal or formula.endswith("]"):
+        _refuse_two_readings(text, formula, digits, sign)
+    return False
 
 
 def _refuse_two_readings(text: str, formula: str, digits: str, sign: str) -> NoReturn:
@@ -191,85 +258,15 @@ def _refuse_two_readings(text: str, formula: str, digits: str, sign: str) -> NoR
     InputError
         Always.
     """
-    if len(digits) == 1:
-        first, second = f"{formula}{digits}^{sign}", f"{formula}^{digits}{sign}"
-    else:
-        first = f"{formula}{digits[:-1]}^{digits[-1]}{sign}"
-        second = f"{formula}{digits}^{sign}"
+    head, last = digits[:-1], digits[-1]
+    readings = [f"{formula}{head}^{last}{sign}", f"{formula}{digits}^{sign}"]
+    first, second = readings if head else reversed(readings)
+    # A letter that stands for a reactant takes no count, so only one of the two can be written.
+    single = _PLACEHOLDER.fullmatch(formula) and formula not in ELEMENTS
+    meant = f"{formula}^{last}{sign}" if single else f"{first} or {second}"
     raise InputError(
         f"{quoted(text)} can be read as {first} or as {second}",
-        f"write the charge behind ^: {first} or {second}",
-    )
-
-
-_TOKEN = re.compile(r"([A-Z][a-z]?)(\d*)|([(\[{])|([)\]}])(\d*)")
-_PARTNERS = {")": "(", "]": "[", "}": "{"}
-
-
-def _composition(formula: str, text: str) -> dict[str, int]:
-    """Count the atoms of a formula.
-
-    Raises
-    ------
-    InputError
-        If it is no formula, or names no element.
-    """
-    levels: list[dict[str, int]] = [{}]
-    opened: list[str] = []
-    at = 0
-    while at < len(formula):
-        found = _TOKEN.match(formula, at)
-        if not found:
-            _refuse(text)
-        at = found.end()
-        element, count, opening, closing, times = found.groups()
-        if element:
-            if element not in _ELEMENTS:
-                raise InputError(
-                    f"{quoted(text)}: there is no element {element}", "check capital letters"
-                )
-            levels[-1][element] = levels[-1].get(element, 0) + _count(count, text)
-        elif opening:
-            if len(opened) == _DEEPEST:
-                _refuse(text)
-            opened.append(opening)
-            levels.append({})
-        else:
-            if not opened or opened.pop() != _PARTNERS[closing]:
-                raise InputError(f"brackets do not match in {quoted(text)}", "check the formula")
-            for name, inside in levels.pop().items():
-                levels[-1][name] = levels[-1].get(name, 0) + inside * _count(times, text)
-    if opened:
-        raise InputError(f"a bracket is left open in {quoted(text)}", "check the formula")
-    if not levels[0]:
-        _refuse(text)
-    return levels[0]
-
-
-def _count(digits: str, text: str) -> int:
-    """Read a count.
-
-    Raises
-    ------
-    InputError
-        If it is zero or absurd.
-    """
-    count = int(digits[:6] or 1)
-    if not 0 < count <= _LARGEST_COUNT:
-        raise InputError(f"a count of {digits} in {quoted(text)}", "check the formula")
-    return count
-
-
-def _refuse(text: str) -> NoReturn:
-    """Refuse what is no formula.
-
-    Raises
-    ------
-    InputError
-        Always.
-    """
-    raise InputError(
-        f"{quoted(text)} is no formula", "write one such as S2O3^2-, [Co(NH3)5Cl]2+ or Na+"
+        f"write the charge behind ^: {meant}",
     )
 
 
@@ -288,20 +285,37 @@ def parse_reactants(text: str) -> tuple[tuple[int, Species], ...]:
     Raises
     ------
     InputError
-        If a species cannot be read, or there is none.
+        If a species cannot be read, or there is none; all that cannot are named.
     """
     if len(text) > 10 * _LONGEST:
         raise InputError(f"{quoted(text)} is too long for reactants", "give two or three species")
-    found = []
+    found: list[tuple[int, Species]] = []
+    problems: list[Problem] = []
     for part in re.split(r"\s+\+\s+", text.strip()):
-        piece = re.fullmatch(r"(?:(\d{1,2})\s+)?(\S+)", part.strip())
-        if not piece:
-            raise InputError(
-                f"{quoted(part)} in {quoted(text)} is no reactant",
-                'join species by a plus with spaces around it: "A^2- + B^-"',
-            )
-        found.append((int(piece[1] or 1), parse_species(piece[2])))
+        try:
+            found.append(_reactant(part))
+        except InputError as error:
+            problems.extend(error.problems)
+    if problems:
+        raise InputError(problems)
     return tuple(found)
+
+
+def _reactant(part: str) -> tuple[int, Species]:
+    """Read one reactant with its number.
+
+    Raises
+    ------
+    InputError
+        If it cannot be read.
+    """
+    piece = re.fullmatch(r"(?:([1-9][0-9]?)\s*)?([^\s0-9+-].*)", part)
+    if not piece or re.search(r"[+-]\s*\+\s*\S", part):
+        raise InputError(
+            f"{quoted(part)} is no reactant",
+            'join species by a plus with spaces around it: "A^2- + B^-"',
+        )
+    return int(piece[1] or 1), parse_species(piece[2])
 
 
 def charge_change(reactants: tuple[tuple[int, Species], ...]) -> int:

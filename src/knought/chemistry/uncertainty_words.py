@@ -42,10 +42,13 @@ class Meaning:
         Which multiple of which standard deviation; ``""`` where nothing was declared.
     relative
         Whether it is relative to the value: True, or False; None where nothing was declared.
+    percent
+        Whether a relative one is in percent by these words, whatever the unit of its column.
     """
 
     kind: MeaningKind = ""
     relative: bool | None = None
+    percent: bool = False
 
     @property
     def words(self) -> str:
@@ -63,6 +66,11 @@ _SIGNS: dict[str, tuple[MeaningKind, bool]] = {
     "sigma": ("deviation", False), "1s": ("deviation", False), "1σ": ("deviation", False),
     "1sd": ("deviation", False), "sr": ("deviation", True), "srel": ("deviation", True),
     "rsd": ("deviation", True), "cv": ("deviation", True),
+    "standarderror": ("standard", False), "stderror": ("standard", False),
+    "standarduncertainty": ("standard", False),
+    "standarddeviation": ("deviation", False), "stdeviation": ("deviation", False),
+    "relativestandarddeviation": ("deviation", True), "relsd": ("deviation", True),
+    "relu": ("standard", True), "relativeuncertainty": ("standard", True),
     "2u": ("double", False), "2se": ("double", False), "2sem": ("double", False),
     "2s": ("double deviation", False), "2sd": ("double deviation", False),
     "2σ": ("double deviation", False), "2sigma": ("double deviation", False),
@@ -99,6 +107,13 @@ _WORDS: tuple[tuple[str, MeaningKind], ...] = (
 )
 
 
+_RELATIVE = (
+    r"\brelative\b,?",
+    r",? ?\b(?:in )?(?:percent|per cent)$",
+    r"(?<!95)(?<!95 )(?<!68)(?<!68 ),? ?(?:in )?%$",
+)
+
+
 def parse_meaning(text: str) -> Meaning:
     """Read what a user says that ± means.
 
@@ -114,21 +129,18 @@ def parse_meaning(text: str) -> Meaning:
         If the words are not known.
     """
     plain = re.sub(r"\s+", " ", normalised(text).lower()).strip(" .,±")
-    rest, relative = plain, False
-    for words in (
-        r"\brelative\b,?",
-        r",? ?\b(?:in )?(?:percent|per cent)$",
-        r"(?<!95)(?<!95 ),? ?%$",
-    ):
+    rest, relative, percent = plain, False, False
+    for words in _RELATIVE:
         shorter = re.sub(words, "", rest).strip(" ,")
-        relative = relative or shorter != rest
+        if shorter != rest:
+            relative, percent = True, percent or words is not _RELATIVE[0]
         rest = shorter
     rest = re.sub(r"[- ](?:half-width|interval|confidence|limits?|ci)(?=$| )", "", rest).strip()
     if not rest and relative:
-        return Meaning("standard", relative=True)
+        return Meaning("standard", relative=True, percent=percent)
     for pattern, kind in _WORDS:
         if re.fullmatch(pattern, rest):
-            return Meaning(kind, relative=relative or None)
+            return Meaning(kind, relative or None, percent)
     raise InputError(
         Problem(
             "is no known meaning of ±",

@@ -33,6 +33,9 @@ _MINUS_SIGNS = "−‐‑–—﹣－"
 _SPACES = re.compile(r"[\s\u00a0\u2000-\u200b\u202f\u205f\u2060\u3000\ufeff]+")
 _DOTS = "·⋅∙•‧・×∗"
 
+#: UTF-8 read as Windows-1252: Â°C, sâ»Â¹, Î¼M.
+_MANGLED = re.compile("Â[°·µ±²³¹]|â[»‚€]|Î¼|Ã[…¥]|�")
+
 _TOKEN = re.compile(
     r"""
     (?P<space>\ +)
@@ -41,7 +44,7 @@ _TOKEN = re.compile(
   | (?P<open>\() | (?P<close>\))
   | (?P<exponent>(?:\^|\*\*)\ ?(?:\([+-]?[0-9]{1,4}(?:\.[0-9]{1,6}|/[0-9]{1,2})?\)
                              |[+-]?[0-9]{1,4}(?:\.[0-9]{1,6})?))
-  | (?P<symbol>°C|[^\W\d_]+|[%‰])
+  | (?P<symbol>°[CF]|[^\W\d_]+|[%‰])
   | (?P<bare>[+-]?[0-9]{1,4})
     """,
     re.VERBOSE,
@@ -98,7 +101,7 @@ def _written(power: Fraction) -> str:
 
 
 def normalised(text: str) -> str:
-    """Return `text` with one spelling of spaces, minus signs, dots, micro, degrees and superscripts."""
+    """Return `text` with one spelling of spaces, signs, dots, micro, degrees and superscripts."""
     text = unicodedata.normalize("NFC", text)
     for sign in _MINUS_SIGNS:
         text = text.replace(sign, "-")
@@ -125,6 +128,11 @@ def parse_unit_text(text: str) -> UnitText:
     """
     if len(text) > MOST_CHARACTERS:
         raise UnitTextError("is too long for a unit", "write units as in L mol^-1 s^-1")
+    if _MANGLED.search(text):
+        raise UnitTextError(
+            "was saved in one encoding and opened in another",
+            "save the file again as UTF-8, or type the header anew",
+        )
     plain = normalised(text)
     if not plain:
         raise UnitTextError("the unit is missing", "write units as in L mol^-1 s^-1; 1 for none")
@@ -197,10 +205,18 @@ class _Reader:
         self._next = 0
 
     def whole(self) -> _Factors:
-        """Read the unit to its end."""
+        """Read the unit to its end.
+
+        Raises
+        ------
+        UnitTextError
+            If something is left over, or there is too much of it.
+        """
         factors = self._unit(0)
         if self._next < len(self._tokens):
-            raise UnitTextError("has a bracket too many", "close each bracket once")
+            if self._peek() == "close":
+                raise UnitTextError("has a bracket too many", "close each bracket once")
+            raise UnitTextError("goes on where a unit should end", "write it as L mol^-1 s^-1")
         if len(factors) > _MOST_FACTORS:
             raise UnitTextError("has too many factors", "check the unit")
         return factors
@@ -208,6 +224,9 @@ class _Reader:
     def _peek(self, ahead: int = 0) -> str:
         place = self._next + ahead
         return self._tokens[place].kind if place < len(self._tokens) else "end"
+
+    def _signed(self, ahead: int) -> bool:
+        return self._tokens[self._next + ahead].text[0] in "+-"
 
     def _take(self) -> _Token:
         self._next += 1
@@ -298,10 +317,9 @@ class _Reader:
         if kind in {"exponent", "bare"}:
             return _exponent(self._take().text)
         # "mol -1": superscripts that were lost in copying leave a sign behind.
-        if kind == "space" and self._peek(1) == "bare":
-            if self._tokens[self._next + 1].text[0] in "+-":
-                self._take()
-                return _exponent(self._take().text)
+        if kind == "space" and self._peek(1) == "bare" and self._signed(1):
+            self._take()
+            return _exponent(self._take().text)
         return Fraction(1)
 
 

@@ -175,7 +175,13 @@ def parse_unit(text: str) -> Unit:
 
 
 def _measured(read: UnitText, text: str) -> Unit:
-    """Give every symbol its factor and dimension."""
+    """Give every symbol its factor and dimension.
+
+    Raises
+    ------
+    InputError
+        If a symbol is unknown, or °C does not stand alone.
+    """
     factor, dimension = Fraction(10) ** read.power_of_ten, DIMENSIONLESS
     for symbol, power in read.factors:
         if symbol == _CELSIUS:
@@ -212,11 +218,9 @@ def _check_size(factor: Fraction, text: str) -> None:
 def _unknown(symbol: str, text: str) -> Problem:
     if len(symbol) > 1 and symbol in {"°F", "degF"}:
         return Problem("°F is not read", "give temperatures in °C or K", read=text)
-    near = difflib.get_close_matches(symbol, [*SYMBOLS, *ALIASES, _CELSIUS], n=3, cutoff=0.5)
-    if "Â" in symbol or "Ã" in symbol:
-        remedy = "the text seems to have been saved in one encoding and opened in another; save "
-        remedy += "the file again as UTF-8"
-    elif near:
+    close = difflib.get_close_matches(symbol, [*SYMBOLS, *ALIASES, _CELSIUS], n=3, cutoff=0.5)
+    near = dict.fromkeys(ALIASES.get(name, name) for name in close)
+    if near:
         remedy = f"did you mean {' or '.join(near)}?"
     else:
         remedy = "write units as in L mol^-1 s^-1, mmol/L, min^-1, °C"

@@ -5,9 +5,10 @@ Water at 0.1 MPa" (Patek et al., J. Phys. Chem. Ref. Data 38 (2009) 21), valid 2
 Permittivity: IAPWS R8-97, "Release on the Static Dielectric Constant of Ordinary Water Substance"
 (Fernandez et al., J. Phys. Chem. Ref. Data 26 (1997) 1125), evaluated at that density. The simpler
 permittivity of SR6-08 itself departs from it by 0.5 % near 100 °C, which would show in A(T).
+SR6-08 follows the full formulations (IAPWS-95, R12-08) within their own uncertainties.
 
 Two doors: the ``*_kernel`` functions check nothing and reach as far as their release; the others
-refuse temperatures outside 0-100 °C.
+refuse temperatures outside 0-100 °C. Slopes are exact derivatives along 0.1 MPa.
 """
 
 from __future__ import annotations
@@ -35,6 +36,7 @@ __all__ = [
     "require_liquid",
     "simple_permittivity_kernel",
     "viscosity",
+    "viscosity_derivative",
     "viscosity_kernel",
 ]
 
@@ -44,7 +46,7 @@ COLDEST, HOTTEST = 273.15, 373.15
 #: A temperature converted from a printed one may miss the bound by rounding.
 _SLACK = 1e-9
 
-# SR6-08 equation 1: powers and coefficients in α = 10/(593 - T/K) and β = 10/(T/K - 232).
+# SR6-08, specific volume: powers and coefficients in α = 10/(593 - T/K) and β = 10/(T/K - 232).
 _ALPHA_TERMS = (
     (4, 6.74458446e3),
     (5, -2.22521604e5),
@@ -64,7 +66,8 @@ _VOLUME_CONSTANT = 1.93763157e-2
 _SPECIFIC_GAS_CONSTANT = 461.51805  # J kg^-1 K^-1, SR6-08
 _REFERENCE_TEMPERATURE, _REFERENCE_PRESSURE = 10.0, 1e5  # K, Pa
 
-# SR6-08 equations for viscosity (μPa s) and permittivity, in τ = T/(300 K).
+# SR6-08, viscosity (μPa s) and permittivity: coefficients and powers of τ = T/(300 K).
+_UNIT_TEMPERATURE = 300.0  # K
 _VISCOSITY_TERMS = ((280.68, -1.9), (511.45, -7.7), (61.131, -19.6), (0.45903, -40.0))
 _SIMPLE_PERMITTIVITY_TERMS = (
     (-43.7527, -0.05),
@@ -112,24 +115,25 @@ def require_liquid(T: ArrayLike) -> FloatArray:
     T = np.asarray(T, dtype=float)
     outside = ~((T >= COLDEST - _SLACK) & (T <= HOTTEST + _SLACK))
     if np.any(outside):
-        value = float(T[outside].flat[0]) if T.ndim else float(T)
+        value = float(T[outside].flat[0])
+        slip = f"; {value:g} °C is {value + COLDEST:g} K" if 0 <= value <= 100 else ""
         raise InputError(
-            f"properties of liquid water are needed at {value:.2f} K",
-            f"they are known from {COLDEST} K to {HOTTEST} K (0-100 °C); a salt law that screens "
-            "charges cannot be used outside",
+            f"properties of liquid water are needed at {value:.8g} K",
+            f"they are known from {COLDEST} K to {HOTTEST} K (0-100 °C){slip}; a salt law that "
+            "screens charges cannot be used outside",
         )
     return T
 
 
 def density(T: ArrayLike) -> FloatArray:
-    """Return the density of water in kg m^-3 at `T` (K); SR6-08, uncertainty 1e-6 relative.
+    """Return the density of water in kg m^-3 at `T` (K) and 0.1 MPa; SR6-08.
 
     Raises
     ------
     InputError
         If a temperature lies outside 0-100 °C.
     """
-    return density_kernel(require_liquid(T))[0]
+    return np.asarray(density_kernel(require_liquid(T))[0])
 
 
 def density_derivative(T: ArrayLike) -> FloatArray:
@@ -140,11 +144,11 @@ def density_derivative(T: ArrayLike) -> FloatArray:
     InputError
         If a temperature lies outside 0-100 °C.
     """
-    return density_kernel(require_liquid(T))[1]
+    return np.asarray(density_kernel(require_liquid(T))[1])
 
 
 def viscosity(T: ArrayLike) -> FloatArray:
-    """Return the viscosity of water in Pa s at `T` (K); SR6-08, uncertainty 1 %.
+    """Return the viscosity of water in Pa s at `T` (K) and 0.1 MPa; SR6-08.
 
     Raises
     ------
@@ -152,6 +156,19 @@ def viscosity(T: ArrayLike) -> FloatArray:
         If a temperature lies outside 0-100 °C.
     """
     return viscosity_kernel(require_liquid(T))
+
+
+def viscosity_derivative(T: ArrayLike) -> FloatArray:
+    """Return dη/dT of water in Pa s K^-1 at `T` (K).
+
+    Raises
+    ------
+    InputError
+        If a temperature lies outside 0-100 °C.
+    """
+    T = require_liquid(T)
+    tau = T / _UNIT_TEMPERATURE
+    return np.asarray(1e-6 * sum(a * b * tau**b for a, b in _VISCOSITY_TERMS) / T)
 
 
 def relative_permittivity(T: ArrayLike) -> FloatArray:
@@ -179,7 +196,7 @@ def relative_permittivity_derivative(T: ArrayLike) -> FloatArray:
 
 
 def density_kernel(T: FloatArray) -> tuple[FloatArray, FloatArray]:
-    """Return density (kg m^-3) and its slope (kg m^-3 K^-1), SR6-08 equation 1, unchecked."""
+    """Return density (kg m^-3) and its slope (kg m^-3 K^-1), SR6-08, unchecked."""
     alpha, beta = 10.0 / (593.0 - T), 10.0 / (T - 232.0)
     # dα/dT = α²/10 and dβ/dT = -β²/10.
     volume = _VOLUME_CONSTANT + np.zeros_like(T)
@@ -196,21 +213,21 @@ def density_kernel(T: FloatArray) -> tuple[FloatArray, FloatArray]:
 
 
 def viscosity_kernel(T: FloatArray) -> FloatArray:
-    """Return viscosity in Pa s, SR6-08 equation 7, unchecked."""
-    tau = T / 300.0
+    """Return viscosity in Pa s, SR6-08, unchecked."""
+    tau = T / _UNIT_TEMPERATURE
     return np.asarray(1e-6 * sum(a * tau**b for a, b in _VISCOSITY_TERMS))
 
 
 def simple_permittivity_kernel(T: FloatArray) -> FloatArray:
     """Return the short form of ε_r in SR6-08, unchecked: for its check values only."""
-    tau = T / 300.0
+    tau = T / _UNIT_TEMPERATURE
     return np.asarray(sum(a * tau**b for a, b in _SIMPLE_PERMITTIVITY_TERMS))
 
 
 def permittivity_kernel(
     T: FloatArray, rho: FloatArray, rho_dT: FloatArray | float = 0.0
 ) -> tuple[FloatArray, FloatArray]:
-    """Return ε_r and its slope along a path of density, R8-97 equations 21-27, unchecked.
+    """Return ε_r and its slope along a path of density, R8-97, unchecked.
 
     Parameters
     ----------
@@ -244,7 +261,7 @@ def permittivity_kernel(
 def _correlation_factor(
     T: FloatArray, rho: FloatArray, rho_dT: FloatArray | float
 ) -> tuple[FloatArray, FloatArray]:
-    """Return the Harris-Alder g and its slope along the path, R8-97 equation 26."""
+    """Return the Harris-Alder g and its slope along the path, as R8-97 fits it."""
     delta, tau = rho / _CRITICAL_DENSITY, _CRITICAL_TEMPERATURE / T
     delta_dT, tau_dT = rho_dT / _CRITICAL_DENSITY, -tau / T
     away = T / _LAST_G_TEMPERATURE - 1.0

@@ -209,7 +209,7 @@ class RateTable:
 
     @property
     def u_ln_k(self) -> FloatArray | None:
-        """Standard uncertainty of ln k, u(k)/k (GUM 5.1.2), ``(n,)``; None where u(k) is unknown."""
+        """Standard uncertainty of ln k, u(k)/k (GUM 5.1.2), ``(n,)``; None where it is unknown."""
         return None if self.u_k is None else frozen(self.u_k / self.k)
 
     def used_only(self) -> RateTable:

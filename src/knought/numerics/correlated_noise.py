@@ -33,7 +33,7 @@ __all__ = ["Binned", "Noise", "Projected", "binned", "project"]
 MOST_BINS = 64
 
 _SHARES = np.array([0.15, 0.35, 0.55, 0.75, 0.92])
-_CORRELATION_TIMES = 7
+_CORRELATION_TIMES, _LONGEST_TIME = 7, 0.2
 
 #: Weight before the data are seen of "no correlation"; the rest is spread over the cells.
 _WHITE = 0.5
@@ -93,42 +93,52 @@ def binned(time: FloatArray, values: FloatArray, most: int = MOST_BINS) -> Binne
 
 
 class Noise:
-    """Cells (w, τ) of the noise of one record.
+    """Cells (w, τ) of the noise, as they show in the bins of one record.
 
     Parameters
     ----------
     record
         The bins.
+    times
+        Correlation times τ, in the unit of time; chosen from the record if not given.
+    wander
+        Whether wander is considered at all; else the noise is white.
 
     Attributes
     ----------
-    shares, times : (c,) ndarray
-        w, and τ in the unit of time, of each cell.
+    shares : (c,) ndarray
+        w of each cell: wander's share of the variance of one point.
+    times : (t,) ndarray
+        Correlation times.
     log_prior : (c,) ndarray
     log_determinant : (c,) ndarray
         ln |V/σ²|.
     """
 
-    def __init__(self, record: Binned) -> None:
+    def __init__(
+        self, record: Binned, times: FloatArray | None = None, *, wander: bool = True
+    ) -> None:
         t, n = record.time, len(record.time)
-        span = float(t[-1] - t[0])
-        self._scale = np.sqrt(record.counts / record.counts.mean())
-        shortest, longest = span / (n - 1), span / 3
-        self._tau = np.geomspace(shortest, max(longest, 2 * shortest), _CORRELATION_TIMES)
+        self.times = correlation_times(record) if times is None else times
+        self._scale = np.sqrt(record.counts)
         distance = np.abs(t[:, None] - t)
-        scaled = np.exp(-distance / self._tau[:, None, None]) * (
+        scaled = np.exp(-distance / self.times[:, None, None]) * (
             self._scale[:, None] * self._scale
         )
         self._values, self._vectors = np.linalg.eigh(scaled)
-        shares = np.concatenate([[0.0], np.tile(_SHARES, _CORRELATION_TIMES)])
-        self.shares = shares
-        self.times = np.concatenate([[shortest], np.repeat(self._tau, len(_SHARES))])
-        rest = len(shares) - 1
-        self.log_prior = np.log(np.concatenate([[_WHITE], np.full(rest, (1 - _WHITE) / rest)]))
-        self._which = np.concatenate([[0], np.repeat(np.arange(_CORRELATION_TIMES), len(_SHARES))])
-        spectrum = 1 - shares[:, None] + shares[:, None] * self._values[self._which]
+        per_time = len(_SHARES) if wander else 0
+        rest = per_time * len(self.times)
+        self.shares = np.concatenate([[0.0], np.tile(_SHARES[:per_time], len(self.times))])
+        white = _WHITE if rest else 1.0
+        self.log_prior = np.log(
+            np.concatenate([[white], np.full(rest, (1 - white) / max(rest, 1))])
+        )
+        self._which = np.concatenate([[0], np.repeat(np.arange(len(self.times)), per_time)]).astype(
+            np.intp
+        )
+        spectrum = 1 - self.shares[:, None] + self.shares[:, None] * self._values[self._which]
         self._weights = 1.0 / spectrum
-        self.log_determinant = np.log(spectrum).sum(axis=1)
+        self.log_determinant = np.log(spectrum).sum(axis=1) - np.log(record.counts).sum()
 
     def rotated(self, rows: FloatArray) -> FloatArray:
         """Return ``(..., n)`` rows along the eigenvectors of each τ: ``(..., τ, n)``."""
@@ -139,6 +149,13 @@ class Noise:
         return np.asarray(
             np.einsum("...cn,cn->...c", (left * right)[..., self._which, :], self._weights)
         )
+
+
+def correlation_times(record: Binned) -> FloatArray:
+    """Return the correlation times that a record can tell of: from one point to a fifth of it."""
+    span = float(record.time[-1] - record.time[0])
+    points = float(record.counts.sum())
+    return np.geomspace(span / points, span * _LONGEST_TIME, _CORRELATION_TIMES)
 
 
 @dataclass(frozen=True, eq=False)
@@ -209,9 +226,7 @@ class Projected:
         raised = np.exp(log - log.max(axis=1, keepdims=True))
         return np.asarray(raised / raised.sum(axis=1, keepdims=True))
 
-    def parameter(
-        self, index: int, order: int
-    ) -> tuple[FloatArray, FloatArray]:
+    def parameter(self, index: int, order: int) -> tuple[FloatArray, FloatArray]:
         """Return value and scale of one parameter in every cell, each ``(m, c)``."""
         coefficients, inverse, rss = self.along(order)
         leading = self.upper[..., :order, :order]
@@ -248,8 +263,12 @@ def project(record: Binned, design: FloatArray, noise: Noise | None = None) -> P
     noise = Noise(record) if noise is None else noise
     design = design if design.ndim == 3 else design[None]
     basis, upper = np.linalg.qr(design)
-    start = np.einsum("mnp,mn->mp", np.broadcast_to(basis, (len(record.values), *basis.shape[1:])), record.values)
-    residual = record.values - np.einsum("mnp,mp->mn", np.broadcast_to(basis, (len(start), *basis.shape[1:])), start)
+    start = np.einsum(
+        "mnp,mn->mp", np.broadcast_to(basis, (len(record.values), *basis.shape[1:])), record.values
+    )
+    residual = record.values - np.einsum(
+        "mnp,mp->mn", np.broadcast_to(basis, (len(start), *basis.shape[1:])), start
+    )
     columns = noise.rotated(np.swapaxes(basis, 1, 2))  # (m or 1, p, τ, n)
     rotated = noise.rotated(residual)  # (m, τ, n)
     p = design.shape[2]

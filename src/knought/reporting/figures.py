@@ -27,7 +27,7 @@ if TYPE_CHECKING:
 
 __all__ = ["residuals_against", "salt_effect", "temperature_dependence"]
 
-_POINTS = 120
+_POINTS = 61
 
 #: Fitted lines are drawn for at most this many ionic strengths or temperatures.
 _MOST_LINES = 6

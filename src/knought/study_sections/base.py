@@ -40,6 +40,11 @@ def in_unit(unit: str, per: float = 1.0) -> Callable[[object], float]:
         The unit in which the value is wanted.
     per
         What the value is divided by, to make fractions of percentages.
+
+    Raises
+    ------
+    ValueError
+        By the reader, of what is no string; pydantic turns it into a finding.
     """
 
     def read(value: object) -> float:

@@ -1,4 +1,4 @@
-"""Sections of a study file that the main job needs: rates, reaction, laws, priors, shared errors."""
+"""Sections of a study file for the main job: rates, reaction, laws, priors, shared errors."""
 
 from __future__ import annotations
 

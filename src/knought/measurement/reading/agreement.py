@@ -65,11 +65,11 @@ def _compare(best: Measured, other: Measured, steps: FloatArray, draft: Draft) -
         allowed = 0.5 * steps + _ROUNDING * np.abs(best.values)
         differ = apart > allowed
     name = best.column.column.address
-    for place in np.flatnonzero(differ & draft.used)[:1]:
+    for place in np.flatnonzero(differ & draft.sound)[:1]:
         draft.problem(
             f"gives {other.values[place]:.8g} {other.wanted}, and {name} gives "
             f"{best.values[place]:.8g} {best.wanted} for the same run"
-            + _and_others(int(np.count_nonzero(differ & draft.used)) - 1),
+            + _and_others(int(np.count_nonzero(differ & draft.sound)) - 1),
             "mend one of the two, or keep one column only",
             other.column,
             int(place),
@@ -79,4 +79,6 @@ def _compare(best: Measured, other: Measured, steps: FloatArray, draft: Draft) -
 
 
 def _and_others(count: int) -> str:
-    return "" if count == 0 else f", and {count} more runs differ"
+    if count < 2:
+        return "" if count == 0 else ", and one more run differs"
+    return f", and {count} more runs differ"

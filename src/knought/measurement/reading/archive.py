@@ -11,6 +11,7 @@ import io
 import zipfile
 import zlib
 from typing import TYPE_CHECKING, Any
+from xml.sax import SAXException
 from xml.sax.handler import ContentHandler
 from xml.sax.xmlreader import AttributesImpl
 
@@ -19,15 +20,38 @@ from knought.errors import InputError, Problem
 if TYPE_CHECKING:
     from collections.abc import Iterator
 
-__all__ = ["Archive", "AttributesImpl", "Handler"]
+__all__ = ["Archive", "AttributesImpl", "Handler", "TooMuchError", "attribute"]
+
+#: What a damaged archive, or XML that is none of a workbook, makes the parsers raise.
+_DAMAGE = (
+    SAXException, zipfile.BadZipFile, zlib.error, EOFError, ArithmeticError, LookupError,
+    ValueError, NotImplementedError, RuntimeError,
+)  # fmt: skip
 
 _LARGEST_PART = 400_000_000
 _LARGEST_SUM = 800_000_000
 _MOST_PARTS = 5000
 _CHUNK = 1 << 16
 
+#: A million runs in five columns have 11 million elements and some 100 million characters.
+_MOST_ELEMENTS = 15_000_000
+_MOST_CHARACTERS = 150_000_000
+
 #: No XML of a workbook nests deeper.
 _DEEPEST = 100
+
+
+class TooMuchError(Exception):
+    """A part holds more than a table of rate constants can."""
+
+
+def attribute(attributes: AttributesImpl, name: str) -> str | None:
+    """Return an attribute by its name without namespace prefix; None where it is missing."""
+    for key in attributes.getNames():
+        if key.rpartition(":")[2] == name:
+            value: str = attributes.getValue(key)
+            return value
+    return None
 
 
 class Handler(ContentHandler):
@@ -35,25 +59,42 @@ class Handler(ContentHandler):
 
     def __init__(self) -> None:
         super().__init__()
-        self._depth = 0
+        self._depth = self._elements = self._characters = 0
 
     def startElement(self, name: str, attrs: AttributesImpl) -> None:
         """Take the beginning of an element.
 
         Raises
         ------
+        TooMuchError
+            If there are too many elements.
         ValueError
-            If elements nest too deep.
+            If they nest too deep.
         """
         self._depth += 1
+        self._elements += 1
         if self._depth > _DEEPEST:
             raise ValueError("elements nest too deep")
+        if self._elements > _MOST_ELEMENTS:
+            raise TooMuchError
         self.begin(name.rpartition(":")[2], attrs)
 
     def endElement(self, name: str) -> None:
         """Take the end of an element."""
         self._depth -= 1
         self.end(name.rpartition(":")[2])
+
+    def count(self, content: str) -> None:
+        """Count text that is kept.
+
+        Raises
+        ------
+        TooMuchError
+            If it is too much.
+        """
+        self._characters += len(content)
+        if self._characters > _MOST_CHARACTERS:
+            raise TooMuchError
 
     def begin(self, name: str, attributes: AttributesImpl) -> None:
         """Take the beginning of an element."""
@@ -91,20 +132,19 @@ class Archive:
             or sum(part.file_size for part in parts) > _LARGEST_SUM
             or any(part.file_size > _LARGEST_PART for part in parts)
         ):
-            raise InputError(
-                Problem(
-                    "is far too large unpacked for a table of rate constants",
-                    "save only the table in a new workbook",
-                    file=name,
-                )
-            )
+            raise self._too_large()
 
     def __contains__(self, part: str) -> bool:
         return part in self._parts
 
-    def names(self) -> list[str]:
-        """Return the names of the parts."""
-        return list(self._parts)
+    def _too_large(self) -> InputError:
+        return InputError(
+            Problem(
+                "is far too large unpacked for a table of rate constants",
+                "save only the table in a new workbook, or as CSV",
+                file=self.name,
+            )
+        )
 
     def _broken(self) -> InputError:
         return InputError(
@@ -134,8 +174,6 @@ class Archive:
         InputError
             If the part is missing, damaged, or holds a document type declaration.
         """
-        from xml.sax import SAXException
-
         from defusedxml.common import DefusedXmlException
         from defusedxml.expatreader import DefusedExpatParser
 
@@ -161,11 +199,10 @@ class Archive:
                     file=self.name,
                 )
             ) from error
+        except TooMuchError as error:
+            raise self._too_large() from error
         except InputError:
             raise
-        except (
-            SAXException, zipfile.BadZipFile, zlib.error, EOFError, ValueError, NotImplementedError,
-            RuntimeError,
-        ) as error:  # fmt: skip
+        except _DAMAGE as error:
             raise self._broken() from error
         yield

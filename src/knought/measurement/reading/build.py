@@ -18,6 +18,7 @@ from knought.measurement.table import RateTable, Source
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
+    from fractions import Fraction
 
     from knought.arrays import FloatArray
     from knought.chemistry.uncertainty_words import Meaning
@@ -25,7 +26,8 @@ if TYPE_CHECKING:
     from knought.measurement.reading.columns import Parts
     from knought.measurement.reading.grid import TextGrid
     from knought.measurement.reading.layout import Column, Layout
-    from knought.measurement.reading.values import NumberColumn, Values
+    from knought.measurement.reading.number_column import NumberColumn
+    from knought.measurement.reading.values import Values
 
 __all__ = ["built"]
 
@@ -84,7 +86,8 @@ def built(
         If a value cannot be, or a column is filled in part only; every problem is told.
     """
     used = np.array(values.used, dtype=bool)
-    draft = Draft(grid, values, used, np.ones(len(used), dtype=bool))
+    sound = used & ~np.array(values.broken, dtype=bool)
+    draft = Draft(grid, values, used, sound, np.ones(len(used), dtype=bool))
     for remark in (*grid.remarks, *layout.remarks):
         draft.note(remark)
     T = _required(draft, parts, "T")
@@ -101,8 +104,9 @@ def built(
     words = _words(draft)
     for column in parts.left_out:
         draft.note("left out: no quantity of a rate table", column.address)
-    if draft.problems:
-        raise InputError(draft.problems)
+    problems = [*values.problems, *draft.problems]
+    if problems:
+        raise InputError(sorted(problems, key=lambda problem: problem.row or 0))
     draft.account += values.remarks
     _account_of_runs(draft, words)
     kept = draft.kept
@@ -173,6 +177,12 @@ def _measured(draft: Draft, columns: list[Column], role: str) -> Measured:
     with np.errstate(invalid="ignore"):
         impossible = (found.values <= 0) if role in {"T", "k"} else (found.values < 0)
     unknown = np.isnan(found.column.values)
+    if role == "c":
+        if found.column.inner is not None:
+            draft.note("has uncertainties in its cells, not used", found.column.column.address)
+        draft.refuse(
+            unknown, found.column, "the concentration is blank", "write 0 where there is none"
+        )
     draft.refuse(~unknown & impossible, found.column, what, remedy)
     draft.refuse(
         ~unknown & ~np.isfinite(found.values),
@@ -211,7 +221,7 @@ def _molar(column: NumberColumn, draft: Draft) -> Unit:
         draft.note(f"has no unit; up to {highest:.4g} can only be mol/L", column.column.address)
         return _MOLAR
     draft.problem(
-        f"the ionic strength has no unit, and up to {highest:.4g} can be read as mol/L or as mmol/L",
+        f"the ionic strength has no unit; up to {highest:.4g} can be read as mol/L or as mmol/L",
         "head the column I/(mol/L) or I/(mmol/L)",
         column,
     )
@@ -276,7 +286,7 @@ def _own_order(
     k: Measured,
     u_k: FloatArray | None,
     amounts: Mapping[str, Measured],
-) -> tuple[object, FloatArray, FloatArray | None]:
+) -> tuple[Fraction, FloatArray, FloatArray | None]:
     """Divide k_obs by the concentration in excess, where there is one."""
     order = reaction_order(k.unit)
     if parts.excess is None or parts.excess.header is None:
@@ -330,7 +340,7 @@ def _words(draft: Draft) -> dict[str, list[str]]:
 
 def _account_of_runs(draft: Draft, words: Mapping[str, list[str]]) -> None:
     count = int(draft.used.sum())
-    draft.note(f"{count} runs used of {len(draft.used)}")
+    draft.note(f"{count} of {len(draft.used)} runs used")
     for place in np.flatnonzero(~draft.used):
         row, reason = int(draft.values.rows[place]), words["reason"][place]
         lost = "" if draft.kept[place] else ", and not kept, for a number is missing"

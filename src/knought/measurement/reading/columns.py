@@ -6,6 +6,7 @@ one is read, the other is checked against it row by row.
 
 from __future__ import annotations
 
+import re
 from dataclasses import dataclass, field, replace
 from typing import TYPE_CHECKING
 
@@ -110,6 +111,12 @@ def assigned(layout: Layout, grid: TextGrid, excess: str | None = None) -> Parts
         tuple(left_out),
     )
 
+
+#: How headers of uncertainties begin.
+_UNCERTAIN = re.compile(
+    r"(?:[us]|SD|SE|SEM|RSD|CI|U|σ|Δ|δ|±|2 ?[sσ])(?:_[a-z]+)? ?[(_]"
+    r"|95 ?%|(?i:err|unc|std|stan(?:dard)? |dev|conf|[σΔδ±])",
+)
 
 _VALUES = frozenset({"T", "k", "I", "n"})
 
@@ -284,7 +291,7 @@ def _unlike(rates: list[Column]) -> list[Problem]:
 
 
 def _nearly(left_out: list[Column], rates: list[Column]) -> list[Problem]:
-    """Columns in the unit of k that are not understood: an uncertainty that must not be lost?"""
+    """Columns in the unit of k that are not understood: an uncertainty must not get lost."""
     units = {
         column.header.unit.dimension
         for column in rates
@@ -295,7 +302,15 @@ def _nearly(left_out: list[Column], rates: list[Column]) -> list[Problem]:
         if column.header is not None:
             continue
         unit = _unit_of(column.title)
-        if unit is not None and unit.dimension in units:
+        if _UNCERTAIN.match(column.title):
+            problems.append(
+                Problem(
+                    "looks like an uncertainty and is not understood",
+                    "head it u(k)/(unit), u_r(k)/%, u(T)/K or u(I)/(mol/L), or take it out",
+                    column=column.address,
+                )
+            )
+        elif unit is not None and unit.dimension in units:
             problems.append(
                 Problem(
                     "has the unit of the rate constant and is not understood; it can be its "

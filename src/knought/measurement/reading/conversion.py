@@ -5,7 +5,6 @@ quantity = inverse of the function(v) x unit / prefactor; its uncertainty is |dq
 
 from __future__ import annotations
 
-from fractions import Fraction
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -13,6 +12,8 @@ import numpy as np
 from knought.chemistry.units import Unit, parse_unit, scaled
 
 if TYPE_CHECKING:
+    from fractions import Fraction
+
     from knought.arrays import FloatArray
     from knought.chemistry.headers import Header
 

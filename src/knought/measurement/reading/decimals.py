@@ -47,6 +47,9 @@ def decimal_mark(grid: TextGrid, layout: Layout, parts: Parts) -> DecimalMark:
     InputError
         If both marks are used, or all that is there can be read with either.
     """
+    if grid.delimiter != ";" and not any("," in block.text for block in grid.blocks):
+        # A point before three digits is doubtful only where commas are in use.
+        return "."
     seen = _look(grid, layout, parts)
     point, comma = seen.get("."), seen.get(",")
     if point is not None and comma is not None:
@@ -116,5 +119,5 @@ def _either(grid: TextGrid, cell: tuple[int, Column, str]) -> Problem:
         cell,
         f"can be read as {broken} or as {whole}, and no other number shows which decimal mark the "
         "file uses",
-        f'state it (decimal="," or decimal=".", --decimal), or write {whole} or {broken}000',
+        'say which one it is: decimal="." or decimal="," (--decimal)',
     )

@@ -13,7 +13,8 @@ from knought.measurement.reading.account import AccountLine
 if TYPE_CHECKING:
     from knought.arrays import BoolArray
     from knought.measurement.reading.grid import TextGrid
-    from knought.measurement.reading.values import NumberColumn, Values
+    from knought.measurement.reading.number_column import NumberColumn
+    from knought.measurement.reading.values import Values
 
 __all__ = ["Draft"]
 
@@ -33,6 +34,8 @@ class Draft:
         Numbers as they stand in the file.
     used : (n,) ndarray of bool
         Which runs count.
+    sound : (n,) ndarray of bool
+        Which of these could be read whole; only they are looked at further.
     kept : (n,) ndarray of bool
         Which rows become runs of the table; a run that does not count and lacks a number does not.
     problems
@@ -44,6 +47,7 @@ class Draft:
     grid: TextGrid
     values: Values
     used: BoolArray
+    sound: BoolArray
     kept: BoolArray
     problems: list[Problem] = field(default_factory=list)
     account: list[AccountLine] = field(default_factory=list)
@@ -56,23 +60,22 @@ class Draft:
         self, what: str, remedy: str, column: NumberColumn, place: int | None = None
     ) -> None:
         """Tell what is wrong with a column, or with its cell in the run at `place`."""
-        read = None
-        if place is not None and not np.isnan(column.values[place]):
-            read = f"{column.values[place]:.12g}"
+        row = None if place is None else int(self.values.rows[place])
+        read = None if row is None else self.grid.cell(row, column.column.place)
         self.problems.append(
             Problem(
                 what,
                 remedy,
-                read=read,
+                read=read or None,
                 file=self.grid.name,
                 sheet=self.grid.sheet,
-                row=None if place is None else int(self.values.rows[place]),
+                row=row,
                 column=column.column.address,
             )
         )
 
     def refuse(self, wrong: BoolArray, column: NumberColumn, what: str, remedy: str) -> None:
         """Tell every used run where `wrong`; a run that does not count is not kept there."""
-        for place in np.flatnonzero(wrong & self.used)[:_MOST_PROBLEMS]:
+        for place in np.flatnonzero(wrong & self.sound)[:_MOST_PROBLEMS]:
             self.problem(what, remedy, column, int(place))
         self.kept &= ~(wrong & ~self.used)

@@ -27,7 +27,7 @@ _CONTROL = re.compile(r"[\x00-\x08\x0b\x0e-\x1f\x7f-\x9f\ufffe\uffff]")
 #: How files begin that people mistake for tables.
 _KNOWN_FILES = (
     (b"%PDF", "a PDF"),
-    (b"\xd0\xcf\x11\xe0", "an old .xls workbook"),
+    (b"\xd0\xcf\x11\xe0", "an old .xls workbook, or one protected by a password"),
     (b"\x89PNG", "a picture"),
     (b"\xff\xd8\xff", "a picture"),
     (b"\x1f\x8b", "a compressed file"),

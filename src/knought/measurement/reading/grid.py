@@ -7,6 +7,7 @@ they are walked through, as often as needed.
 
 from __future__ import annotations
 
+import re
 from dataclasses import dataclass, field
 from itertools import islice
 from typing import TYPE_CHECKING, Literal
@@ -43,12 +44,13 @@ MOST_CELL_CHARACTERS = 10_000
 
 _ROWS_A_BLOCK = 8192
 _CELL, _ROW = "\x1f", "\x1e"
-_RESERVED = (_CELL, _ROW)
+_LONG_NUMBER = 13
+_FLOAT = re.compile(r"-?[0-9]+(?:\.[0-9]+)?(?:[eE][+-]?[0-9]{1,3})?")
 
 
 @dataclass(frozen=True)
 class Span:
-    """A merged cell: rows and columns that it covers, last ones included (rows from 1, columns from 0)."""
+    """A merged cell: the rows, from 1, and columns, from 0, that it covers, last ones included."""
 
     first_row: int
     last_row: int
@@ -108,6 +110,15 @@ class TextGrid:
     def head(self, rows: int) -> list[tuple[int, list[str]]]:
         """Return the first rows that are not blank."""
         return list(islice(self.rows(), rows))
+
+    def cell(self, row: int, place: int) -> str:
+        """Return the text of a cell as a reader sees it; empty where there is none."""
+        for block in self.blocks:
+            at = int(np.searchsorted(block.numbers, row))
+            if at < len(block.numbers) and block.numbers[at] == row:
+                cells = block.text.split(_ROW)[at].split(_CELL)
+                return shown(cells[place]) if place < len(cells) else ""
+        return ""
 
     def __len__(self) -> int:
         return sum(len(block.numbers) for block in self.blocks)
@@ -200,4 +211,7 @@ def column_letter(column: int) -> str:
 
 def shown(cell: str) -> str:
     """Return a cell as a reader would see it."""
+    if cell.startswith(TYPED) and len(cell) > _LONG_NUMBER:
+        # Programs store 17 digits: 2.4099999999999999E-3 is shown as 0.00241.
+        return repr(float(cell[1:])) if _FLOAT.fullmatch(cell[1:]) else cell[1:].strip()
     return cell.removeprefix(TYPED).strip()

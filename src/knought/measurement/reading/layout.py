@@ -19,7 +19,7 @@ from knought.measurement.reading.two_lines import DASHES, is_unit, joined, unit_
 if TYPE_CHECKING:
     from collections.abc import Sequence
 
-__all__ = ["SEARCHED_ROWS", "Column", "Layout", "find_layout", "is_header_row"]
+__all__ = ["SEARCHED_ROWS", "Column", "Layout", "find_layout", "is_header_row", "is_number"]
 
 #: The header stands within this many rows that are not blank.
 SEARCHED_ROWS = 60
@@ -88,6 +88,7 @@ class _Candidate:
     titles: tuple[str, ...]
     headers: tuple[Header | None, ...]
     problems: tuple[Problem, ...]
+    numbers: int
 
     @property
     def understood(self) -> int:
@@ -101,11 +102,12 @@ class _Candidate:
 
     @property
     def is_header(self) -> bool:
-        """Whether enough is understood, and not only words such as "note"."""
+        """Whether enough is understood: not only words such as "note", and no row of settings."""
         quantities = len(self.problems) + sum(
             header is not None and header.role not in TEXT_ROLES for header in self.headers
         )
-        return self.understood >= _FEWEST_HEADERS and quantities > 0
+        enough = self.understood >= max(_FEWEST_HEADERS, self.numbers + 1)
+        return enough and quantities > 0
 
 
 def find_layout(grid: TextGrid) -> Layout | None:
@@ -160,7 +162,8 @@ def _read(grid: TextGrid, row: int, titles: Sequence[str]) -> _Candidate:
                 )
                 for problem in error.problems
             ]
-    return _Candidate(tuple(titles), tuple(headers), tuple(problems))
+    numbers = sum(is_number(title) for title in titles)
+    return _Candidate(tuple(titles), tuple(headers), tuple(problems), numbers)
 
 
 def _with_second_line(
@@ -180,7 +183,9 @@ def _with_second_line(
         # A note or a first run without numbers beneath a good header.
         return None
     two = _joined_header(grid, one, row, lower)
-    if two is None or (alone.is_header and not one.is_header):
+    if two is None:
+        return None
+    if alone.is_header and not one.is_header and two.understood <= alone.understood:
         # The lower line is a header by itself: what stands above is a title.
         return None
     better = (two.understood, two.with_unit) > (one.understood, one.with_unit)
@@ -209,12 +214,14 @@ def _spread(grid: TextGrid, row: int, upper: Sequence[str], lower: Sequence[str]
 
 
 def _holds_numbers(cells: Sequence[str]) -> bool:
-    return any(
-        cell.startswith(TYPED)
-        or isinstance(read_number(cell, "."), Number)
-        or isinstance(read_number(cell, ","), Number)
-        for cell in cells
-    )
+    return any(is_number(cell) for cell in cells)
+
+
+def is_number(text: str) -> bool:
+    """Whether a cell holds a number, whichever decimal mark it has."""
+    if text.startswith(TYPED):
+        return True
+    return isinstance(read_number(text, "."), Number) or isinstance(read_number(text, ","), Number)
 
 
 def _with_units_row(grid: TextGrid, one: _Candidate, head: list[_Row], place: int) -> Layout:

@@ -34,10 +34,13 @@ def filled(blocks: Iterable[Block], merged: Iterable[Span]) -> Iterator[tuple[in
         for row, cells in block.rows():
             open_spans = [(span, text) for span, text in open_spans if row <= span.last_row]
             for span, text in open_spans:
-                place = span.first_column
-                cells += [""] * (place + 1 - len(cells))
-                cells[place] = cells[place] or text
+                _fill(cells, span.first_column, text)
             for span in starts.get(row, ()):
                 text = cells[span.first_column] if span.first_column < len(cells) else ""
                 open_spans.append((span, text))
             yield row, cells
+
+
+def _fill(cells: list[str], place: int, text: str) -> None:
+    cells.extend([""] * (place + 1 - len(cells)))
+    cells[place] = cells[place] or text

@@ -10,7 +10,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from knought.errors import InputError, Problem
-from knought.measurement.reading.archive import Archive, AttributesImpl, Handler
+from knought.measurement.reading.archive import Archive, AttributesImpl, Handler, attribute
 from knought.measurement.reading.cell_text import percent_text, rows_words
 from knought.measurement.reading.grid import MOST_COLUMNS, TYPED, Span, column_letter
 
@@ -60,7 +60,9 @@ class OdsSheet:
             yield from handler.take()
         self.merged = tuple(handler.merged)
         if handler.hidden_rows:
-            self.remarks = (f"{rows_words(handler.hidden_rows)} hidden in the sheet, and read",)
+            self.remarks = (
+                f"{rows_words(handler.hidden_rows)} hidden in the sheet, and read all the same",
+            )
 
 
 def ods_sheets(archive: Archive) -> tuple[OdsSheet, ...]:
@@ -96,21 +98,12 @@ class _Listing(Handler):
     def begin(self, name: str, attributes: AttributesImpl) -> None:
         if name == "table":
             if not self._in_table:
-                self.names.append(_attribute(attributes, "name") or "")
+                self.names.append(attribute(attributes, "name") or "")
             self._in_table += 1
 
     def end(self, name: str) -> None:
         if name == "table":
             self._in_table -= 1
-
-
-def _attribute(attributes: AttributesImpl, name: str) -> str | None:
-    """Return an attribute by its name without prefix."""
-    for key in attributes.keys():  # noqa: SIM118 - no mapping
-        if key.rpartition(":")[2] == name:
-            value: str = attributes[key]
-            return value
-    return None
 
 
 class _SheetHandler(Handler):
@@ -145,7 +138,7 @@ class _SheetHandler(Handler):
 
     def begin(self, name: str, attributes: AttributesImpl) -> None:
         if name == "table":
-            wanted = not self._tables and _attribute(attributes, "name") == self._sheet
+            wanted = not self._tables and attribute(attributes, "name") == self._sheet
             self._tables.append(wanted)
         elif not self._here:
             return
@@ -167,6 +160,7 @@ class _SheetHandler(Handler):
 
     def characters(self, content: str) -> None:
         if self._in_paragraph and self._here and not self._skipped:
+            self.count(content)
             self._texts.append(content)
 
     def end(self, name: str) -> None:
@@ -189,24 +183,24 @@ class _SheetHandler(Handler):
         self._row += 1
         self._row_repeats = _count(attributes, "number-rows-repeated")
         self._cells, self._pending = [], 0
-        if _attribute(attributes, "visibility") in {"collapse", "filter"}:
+        if attribute(attributes, "visibility") in {"collapse", "filter"}:
             self.hidden_rows.append(self._row)
 
     def _begin_cell(self, attributes: AttributesImpl) -> None:
         self._texts, self._paragraphs = [], 0
         self._cell_repeats = _count(attributes, "number-columns-repeated")
-        self._formula = _attribute(attributes, "formula")
-        kind = _attribute(attributes, "value-type")
-        value = _attribute(attributes, "value")
+        self._formula = attribute(attributes, "formula")
+        kind = attribute(attributes, "value-type")
+        value = attribute(attributes, "value")
         self._typed = None
         if kind in _NUMBERS and value is not None:
             self._typed = TYPED + value.strip()
         elif kind == "percentage" and value is not None:
             self._typed = TYPED + percent_text(value)
         elif kind == "date":
-            self._typed = _attribute(attributes, "date-value")
+            self._typed = attribute(attributes, "date-value")
         elif kind == "boolean":
-            self._typed = (_attribute(attributes, "boolean-value") or "").upper()
+            self._typed = (attribute(attributes, "boolean-value") or "").upper()
         rows = _count(attributes, "number-rows-spanned")
         columns = _count(attributes, "number-columns-spanned")
         if rows > 1 or columns > 1:
@@ -248,7 +242,7 @@ class _SheetHandler(Handler):
 
 
 def _count(attributes: AttributesImpl, name: str) -> int:
-    text = _attribute(attributes, name)
+    text = attribute(attributes, name)
     number = 1 if text is None else int(text)
     if number < 1:
         raise ValueError("a count below one")

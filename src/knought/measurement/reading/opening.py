@@ -10,7 +10,7 @@ from pathlib import Path
 from knought.errors import InputError, Problem
 from knought.files import os_problem, sha256_of
 
-__all__ = ["LARGEST_FILE", "FileBytes", "open_bytes"]
+__all__ = ["LARGEST_FILE", "FileBytes", "open_bytes", "whole_bytes"]
 
 #: A million runs are some 50 MB.
 LARGEST_FILE = 200_000_000
@@ -50,30 +50,48 @@ def open_bytes(path: str | Path) -> FileBytes:
     """
     path = Path(path)
     name = path.name or str(path)
+    if "\0" in str(path):
+        raise InputError(Problem("is no path", "check the path", read=str(path)))
     try:
-        before = path.stat()
-        _check_kind(before.st_mode, name)
-        _check_size(before.st_size, name)
-        with path.open("rb") as file:
-            # What was opened may no longer be what was looked at.
-            opened = os.fstat(file.fileno())
-            _check_kind(opened.st_mode, name)
-            data = file.read(LARGEST_FILE + 1)
-            after = os.fstat(file.fileno())
-    except (OSError, ValueError) as error:
-        if isinstance(error, InputError):
-            raise
-        if isinstance(error, OSError):
-            raise InputError(os_problem(error, name, "read")) from error
-        raise InputError(Problem("is no path", "check the path", read=name)) from error
+        return _opened(path, name)
+    except OSError as error:
+        raise InputError(os_problem(error, name, "read")) from error
+
+
+def whole_bytes(data: bytes, name: str) -> FileBytes:
+    """Return bytes that are at hand already as a file.
+
+    Parameters
+    ----------
+    data
+        The bytes.
+    name
+        What to call them in messages.
+
+    Raises
+    ------
+    InputError
+        If there are none, or too many.
+    """
     _check_size(len(data), name)
-    if (before.st_size, before.st_mtime_ns) != (after.st_size, after.st_mtime_ns) or len(
-        data
-    ) != after.st_size:
+    return FileBytes(name, data, sha256_of(data))
+
+
+def _opened(path: Path, name: str) -> FileBytes:
+    before = path.stat()
+    _check_kind(before.st_mode, name)
+    _check_size(before.st_size, name)
+    with path.open("rb") as file:
+        # What was opened may no longer be what was looked at.
+        _check_kind(os.fstat(file.fileno()).st_mode, name)
+        data = file.read(LARGEST_FILE + 1)
+        after = os.fstat(file.fileno())
+    same = (before.st_size, before.st_mtime_ns) == (after.st_size, after.st_mtime_ns)
+    if not same or len(data) != after.st_size:
         raise InputError(
             Problem("changed while it was read", "close the program that writes it", file=name)
         )
-    return FileBytes(name, data, sha256_of(data))
+    return whole_bytes(data, name)
 
 
 def _check_kind(mode: int, name: str) -> None:

@@ -6,9 +6,11 @@ function of what the one before it made.
 
 from __future__ import annotations
 
+import os
+from dataclasses import dataclass
 from itertools import islice
 from pathlib import Path
-from typing import TYPE_CHECKING
+from typing import IO, TYPE_CHECKING
 
 from knought.chemistry.uncertainty_words import parse_meaning
 from knought.errors import InputError, Problem
@@ -25,8 +27,14 @@ from knought.measurement.reading.delimited import (
 from knought.measurement.reading.encoding import decoded
 from knought.measurement.reading.grid import TextGrid, packed
 from knought.measurement.reading.layout import SEARCHED_ROWS, find_layout
-from knought.measurement.reading.opening import open_bytes
+from knought.measurement.reading.opening import (
+    LARGEST_FILE,
+    FileBytes,
+    open_bytes,
+    whole_bytes,
+)
 from knought.measurement.reading.values import read_values
+from knought.measurement.reading.workbook import workbook_grid
 from knought.measurement.table import RateTable, Source
 
 if TYPE_CHECKING:
@@ -36,7 +44,7 @@ __all__ = ["read_rates", "read_text"]
 
 
 def read_rates(
-    path: str | Path,
+    source: str | Path | IO[str] | IO[bytes],
     *,
     sheet: str | int | None = None,
     uncertainty_means: str | None = None,
@@ -47,15 +55,15 @@ def read_rates(
 
     Parameters
     ----------
-    path
-        A CSV, TSV, XLSX or ODS file.
+    source
+        Path of a CSV, TSV, XLSX or ODS file, or an open file.
     sheet
         Sheet of a workbook, by name or by number from 1; needed where more than one holds a table.
     uncertainty_means
         What ± means, where the header does not say it: ``"standard deviation"``, ``"2 s"``,
         ``"95 %"``, ...
     decimal
-        DecimalMark mark of a text file, where its numbers don't show it.
+        Decimal mark of a text file, where its numbers don't show it.
     excess
         Species by whose concentration an observed rate constant is divided.
 
@@ -68,20 +76,14 @@ def read_rates(
     InputError
         If anything cannot be read in one way only; what, where, and what to do about it.
     """
-    file = open_bytes(path)
-    if file.data.startswith(b"PK"):
-        from knought.measurement.reading.workbook import workbook_grid
-
-        grid = workbook_grid(file.data, file.name, sheet)
-    else:
-        if sheet is not None:
-            raise InputError(
-                Problem("is no workbook and has no sheets", "leave the sheet out", file=file.name)
-            )
-        text, encoding = decoded(file.data, file.name)
-        grid = _text_grid(text, file.name, encoding)
-    source = Source(file.name, file.sha256, grid.sheet)
-    return _table(grid, source, uncertainty_means, decimal, excess)
+    says = _Says(uncertainty_means, decimal, excess)
+    if isinstance(source, str | os.PathLike):
+        return _file(open_bytes(source), sheet, says)
+    name = Path(str(getattr(source, "name", "file"))).name or "file"
+    data = source.read(LARGEST_FILE + 1)
+    if isinstance(data, str):
+        return _pasted(data, name, says)
+    return _file(whole_bytes(data, name), sheet, says)
 
 
 def read_text(
@@ -112,33 +114,65 @@ def read_text(
     InputError
         If anything cannot be read in one way only.
     """
+    return _pasted(text, name, _Says(uncertainty_means, decimal, excess))
+
+
+@dataclass(frozen=True)
+class _Says:
+    """What the user says beside the file."""
+
+    uncertainty_means: str | None
+    decimal: DecimalMark | None
+    excess: str | None
+
+
+def _file(file: FileBytes, sheet: str | int | None, says: _Says) -> RateTable:
+    """Read the bytes of a file, by what they are and not by what the name says.
+
+    Raises
+    ------
+    InputError
+        If they cannot be read.
+    """
+    if file.data.startswith(b"PK"):
+        grid = workbook_grid(file.data, file.name, sheet)
+    elif sheet is not None:
+        raise InputError(
+            Problem("is no workbook and has no sheets", "leave the sheet out", file=file.name)
+        )
+    else:
+        text, encoding = decoded(file.data, file.name)
+        grid = _text_grid(text, file.name, encoding)
+    return _table(grid, Source(file.name, file.sha256, grid.sheet), says)
+
+
+def _pasted(text: str, name: str, says: _Says) -> RateTable:
     data = text.encode("utf-8", "surrogatepass")
-    if not text.strip():
-        raise InputError(Problem("is empty", "paste the cells with their headers", file=name))
+    whole_bytes(data, name)
     plain, _ = decoded(data, name)
     grid = _text_grid(plain, name, "text")
-    return _table(grid, Source(name, sha256_of(data), None), uncertainty_means, decimal, excess)
+    return _table(grid, Source(name, sha256_of(data), None), says)
 
 
-def _table(
-    grid: TextGrid,
-    source: Source,
-    uncertainty_means: str | None,
-    decimal: DecimalMark | None,
-    excess: str | None,
-) -> RateTable:
-    meaning = None if uncertainty_means is None else parse_meaning(uncertainty_means)
+def _table(grid: TextGrid, source: Source, says: _Says) -> RateTable:
+    meaning = None if says.uncertainty_means is None else parse_meaning(says.uncertainty_means)
     layout = find_layout(grid)
     if layout is None:
         raise InputError(_no_header(grid))
-    parts = assigned(layout, grid, excess)
-    mark = decimal or decimal_mark(grid, layout, parts)
-    values = read_values(grid, layout, parts, mark, stated=decimal is not None)
+    parts = assigned(layout, grid, says.excess)
+    mark = says.decimal or decimal_mark(grid, layout, parts)
+    values = read_values(grid, layout, parts, mark, stated=says.decimal is not None)
     return built(grid, layout, parts, values, source, meaning)
 
 
 def _text_grid(text: str, name: str, encoding: str) -> TextGrid:
-    """Take a text apart with the one delimiter that gives it a header."""
+    """Take a text apart with the one delimiter that gives it a header.
+
+    Raises
+    ------
+    InputError
+        If two do, or the text cannot be taken apart.
+    """
     declared = declared_delimiter(text)
     body = unmarked(text)
     possible = [declared] if declared else [mark for mark in DELIMITERS if mark in body]

@@ -22,11 +22,11 @@ if TYPE_CHECKING:
     from knought.chemistry.headers import Header
     from knought.chemistry.units import Unit
     from knought.measurement.reading.draft import Draft
-    from knought.measurement.reading.values import NumberColumn
+    from knought.measurement.reading.number_column import NumberColumn
 
 __all__ = ["Measured", "standard_uncertainty"]
 
-_ONE = parse_unit("1")
+_ONE, _PERCENT = parse_unit("1"), parse_unit("%")
 _LN10 = float(np.log(10.0))
 _COVERAGE = 0.975
 
@@ -128,12 +128,21 @@ def _from_column(
         return None
     numbers = scaled(column.values, 1 / header.prefactor)
     if meaning.relative and header.function == "":
-        unit = header.unit if header.unit is not None and header.unit.is_like(_ONE) else _ONE
+        unit = header.unit if header.unit is not None and header.unit.is_like(_ONE) else None
+        if unit is None:
+            unit = _PERCENT if meaning.percent else _ONE
         absolute = np.abs(measured.values) * scaled(numbers, unit.factor_to(_ONE))
     elif header.function in {"ln", "lg"} and header.unit is None:
         absolute = measured.values * numbers * (_LN10 if header.function == "lg" else 1.0)
     else:
         unit = (header.unit or measured.unit).difference()
+        if not unit.is_like(measured.wanted):
+            draft.problem(
+                f"is in {unit}, and {measured.column.column.address} is not",
+                "give the uncertainty in the unit of its quantity, or relative",
+                column,
+            )
+            return None
         absolute = scaled(numbers, unit.factor_to(measured.wanted.difference()))
     return _finished(absolute, meaning, measured, column, determinations, draft)
 
@@ -160,12 +169,23 @@ def _from_the_same_cell(
         )
         return None
     meaning = said or declared or Meaning("standard", relative=False)
-    if meaning == Meaning("standard", relative=False) and column.sign == "±":
+    if said is None and declared is None and column.sign == "±":
         draft.note(
             "does not say what ± means: taken as one standard uncertainty (say uncertainty_means "
             "if it is something else)",
             column.column.address,
         )
+    if meaning.relative and column.sign == "()":
+        draft.problem(
+            "has its uncertainty in brackets, in units of the last digit, and it is said to be "
+            "relative",
+            "mend one of the two",
+            column,
+        )
+        return None
+    if meaning.relative and column.sign == "±":
+        scale = 0.01 if meaning.percent else 1.0
+        inner = np.abs(column.values) * inner * scale
     absolute = inner * slope(measured.header, column.values, measured.unit, measured.wanted)
     return _finished(absolute, meaning, measured, column, determinations, draft)
 
@@ -182,7 +202,7 @@ def _agreed(
                     f"is in {unit} and is said to be relative", "mend one of the two", column
                 )
                 return None
-        return Meaning(said.kind, bool(said.relative or header.relative))
+        return Meaning(said.kind, bool(said.relative or header.relative), said.percent)
     if said is not None and said.kind != header.kind:
         draft.problem(
             f"is headed as {header.words}, and uncertainty_means says {said.words}",
@@ -196,7 +216,8 @@ def _agreed(
             if header.kind == "expanded"
             else "the uncertainty may be a standard uncertainty, twice that, or a 95 % half-width"
         )
-        draft.problem(what, _SAY_WHICH.format("k"), column)
+        role = "k" if column.column.header is None else column.column.header.role
+        draft.problem(what, _SAY_WHICH.format(role), column)
         return None
     return header
 

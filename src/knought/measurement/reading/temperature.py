@@ -15,7 +15,7 @@ from knought.chemistry.units import Unit, parse_unit
 
 if TYPE_CHECKING:
     from knought.measurement.reading.draft import Draft
-    from knought.measurement.reading.values import NumberColumn
+    from knought.measurement.reading.number_column import NumberColumn
 
 __all__ = ["temperature_unit"]
 

@@ -9,63 +9,38 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from knought.chemistry.numbers import Number, Unreadable, last_step, read_number
 from knought.errors import InputError, Problem
 from knought.measurement.labels import unguarded
 from knought.measurement.reading.account import AccountLine
-from knought.measurement.reading.grid import TYPED, TextGrid, shown
-from knought.measurement.reading.layout import is_header_row
+from knought.measurement.reading.grid import TextGrid, column_letter, shown
+from knought.measurement.reading.layout import is_header_row, is_number
+from knought.measurement.reading.number_column import GrowingColumn
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
 
-    from knought.arrays import FloatArray, IndexArray
+    from knought.arrays import IndexArray
     from knought.chemistry.numbers import DecimalMark
     from knought.measurement.reading.columns import Parts
     from knought.measurement.reading.layout import Column, Layout
+    from knought.measurement.reading.number_column import NumberColumn
 
-__all__ = ["NumberColumn", "Values", "read_values"]
+__all__ = ["Values", "read_values"]
 
 #: Reading stops after this many problems.
 _MOST_PROBLEMS = 100
 
-_REMEMBERED_TEXTS = 20_000
-
 #: Rows left out that the account lists one by one.
 _MOST_REMARKS = 50
 
-_HAS_DIGIT = re.compile("[0-9]").search
+#: A cell that may be meant as a number: it holds a digit, or is what a spreadsheet made of one.
+_MEANT_AS_NUMBER = re.compile(r"[0-9]|^\s*(?:=|#[A-Z]|TRUE$|FALSE$)").search
+
+#: Errors of a spreadsheet are no comments, though they begin with the same sign.
+_ERROR = re.compile(r"#(?:REF|DIV/0|N/A|VALUE|NAME|NUM|NULL|SPILL|CALC)[!?]?")
 
 _YES = frozenset({"yes", "y", "true", "1", "x", ""})
 _NO = frozenset({"no", "n", "false", "0"})
-
-
-@dataclass(frozen=True, eq=False)
-class NumberColumn:
-    """A column of numbers as they stand in the file.
-
-    Attributes
-    ----------
-    column
-        The column.
-    values : (n,) ndarray
-        nan where the cell is blank.
-    inner : (n,) ndarray or None
-        Uncertainty that stands in the same cell; None where no cell has one.
-    sign
-        How that is written.
-    first
-        Text of the first cell that is not blank.
-    steps : (n,) ndarray
-        What one step of the last digit of each number is; empty where nobody asks for it.
-    """
-
-    column: Column
-    values: FloatArray
-    inner: FloatArray | None
-    sign: str
-    first: str
-    steps: FloatArray = field(default_factory=lambda: np.empty(0))
 
 
 @dataclass(frozen=True, eq=False)
@@ -82,6 +57,10 @@ class Values:
         Words by role.
     used
         Whether each run counts.
+    broken
+        Whether a cell of the run could not be read.
+    problems
+        These cells.
     remarks
         Rows that are no runs.
     """
@@ -90,77 +69,9 @@ class Values:
     numbers: Mapping[int, NumberColumn]
     words: Mapping[str, list[str]]
     used: list[bool]
+    broken: list[bool]
+    problems: tuple[Problem, ...]
     remarks: tuple[AccountLine, ...] = field(default=())
-
-
-class _Cells:
-    """One column of numbers while it grows."""
-
-    def __init__(
-        self, column: Column, decimal: DecimalMark, *, stated: bool, with_steps: bool
-    ) -> None:
-        self.column, self._decimal, self._stated = column, decimal, stated
-        self._steps = array("d") if with_steps else None
-        self.values, self.inner = array("d"), array("d")
-        self.first, self.sign = "", ""
-        self._known: dict[str, float] = {}
-        header = column.header
-        self._percent = header is not None and header.unit is not None and header.unit.text == "%"
-
-    def take(self, text: str) -> Unreadable | None:
-        """Read a cell; return why it cannot be read."""
-        if self._steps is not None:
-            typed = text.startswith(TYPED)
-            self._steps.append(last_step(text[typed:], "." if typed else self._decimal))
-        known = self._known.get(text)
-        if known is not None:
-            self.values.append(known)
-            self.inner.append(np.nan)
-            return None
-        if text.startswith(TYPED):
-            read = read_number(text[1:], ".")
-        else:
-            read = read_number(text, self._decimal, stated=self._stated)
-        if isinstance(read, Unreadable):
-            self._append(np.nan, np.nan)
-            return read
-        if read is None:
-            self._append(np.nan, np.nan)
-            return None
-        return self._keep(text, read)
-
-    def _keep(self, text: str, read: Number) -> Unreadable | None:
-        self.first = self.first or shown(text)
-        if read.percent and not self._percent:
-            self._append(np.nan, np.nan)
-            return Unreadable(
-                "is in percent and its column is not", "head the column with /% or give the unit"
-            )
-        if read.uncertainty is None:
-            self._append(read.value, np.nan)
-            if len(self._known) < _REMEMBERED_TEXTS:
-                self._known[text] = read.value
-            return None
-        if self.sign not in {"", read.sign}:
-            self._append(np.nan, np.nan)
-            return Unreadable(
-                "writes its uncertainty in another way than the cells above",
-                "write all of them as 2.41(5)e-3, or all of them as 2.41e-3 ± 0.05e-3",
-            )
-        self.sign = read.sign
-        size = abs(read.value) if read.relative else 1.0
-        self._append(read.value, read.uncertainty * size)
-        return None
-
-    def _append(self, value: float, inner: float) -> None:
-        self.values.append(value)
-        self.inner.append(inner)
-
-    def made(self) -> NumberColumn:
-        """Return the column."""
-        inner = np.array(self.inner) if self.sign else None
-        steps = np.empty(0) if self._steps is None else np.array(self._steps)
-        return NumberColumn(self.column, np.array(self.values), inner, self.sign, self.first, steps)
 
 
 def read_values(
@@ -180,7 +91,7 @@ def read_values(
     Raises
     ------
     InputError
-        If a cell cannot be read; up to 100 are told.
+        If there are no runs beneath the header.
     """
     return _Body(grid, layout, parts, decimal, stated=stated).read()
 
@@ -194,19 +105,30 @@ class _Body:
         self._grid, self._layout, self._parts = grid, layout, parts
         several = {c.place for found in parts.values.values() if len(found) > 1 for c in found}
         self._cells = [
-            _Cells(column, decimal, stated=stated, with_steps=column.place in several)
+            GrowingColumn(column, decimal, stated=stated, with_steps=column.place in several)
             for column in parts.numeric
         ]
         self._words: dict[str, list[str]] = {role: [] for role in parts.words}
         self._keys = [c.place for role in ("T", "k") for c in parts.values.get(role, ())]
         self._rows = array("q")
         self._used: list[bool] = []
+        self._broken: list[bool] = []
         self._problems: list[Problem] = []
         self._remarks: list[AccountLine] = []
         self._labels_with_hash: bool | None = None
+        titled = {column.place for column in layout.columns}
+        self._titled = max(titled, default=-1) + 1
+        self._untitled = [place for place in range(self._titled) if place not in titled]
+        self._beside: dict[int, tuple[int, str]] = {}
 
     def read(self) -> Values:
-        """Walk through all rows."""
+        """Walk through all rows.
+
+        Raises
+        ------
+        InputError
+            If there are no runs.
+        """
         for row, cells in self._grid.rows():
             if row <= self._layout.last_header_row:
                 continue
@@ -214,7 +136,7 @@ class _Body:
                 self._take(row, cells)
             if len(self._problems) >= _MOST_PROBLEMS:
                 break
-        if self._problems:
+        if not self._rows and self._problems:
             raise InputError(self._problems)
         if not self._rows:
             raise InputError(
@@ -231,7 +153,9 @@ class _Body:
             {cells.column.place: cells.made() for cells in self._cells},
             self._words,
             self._used,
-            tuple(self._remarks),
+            self._broken,
+            tuple(self._problems),
+            (*self._account_of_beside(), *self._remarks),
         )
 
     def _is_run(self, row: int, cells: list[str]) -> bool:
@@ -241,7 +165,7 @@ class _Body:
             return False
         count = len(cells)
         for place in self._keys:
-            if place < count and _HAS_DIGIT(cells[place]):
+            if place < count and _MEANT_AS_NUMBER(cells[place]):
                 break
         else:
             place = -1
@@ -252,14 +176,20 @@ class _Body:
             if place < 0:
                 self._leave_out(row, cells, "neither temperature nor rate constant")
                 return False
-        if cells.count("") >= count - 1 and sum(1 for cell in cells if cell.strip()) == 1:
+        if cells.count("") >= count - 1 and self._is_note(cells):
             self._leave_out(row, cells, "a single cell")
             return False
         return True
 
+    @staticmethod
+    def _is_note(cells: list[str]) -> bool:
+        """Whether a row has one cell alone, and that cell holds no number."""
+        filled = [cell for cell in cells if cell.strip()]
+        return len(filled) == 1 and not is_number(filled[0])
+
     def _is_comment(self, first: str) -> bool:
         """Whether a row that begins so is a comment; labels such as #1 in the first run are not."""
-        if not first.startswith("#") or len(first) == 1:
+        if not first.startswith("#") or len(first) == 1 or _ERROR.fullmatch(first):
             return False
         if self._labels_with_hash is None:
             run = self._parts.words.get("run")
@@ -290,6 +220,7 @@ class _Body:
 
     def _take(self, row: int, cells: list[str]) -> None:
         count = len(cells)
+        told = len(self._problems)
         used = self._is_used(row, cells)
         self._rows.append(row)
         self._used.append(used)
@@ -302,8 +233,9 @@ class _Body:
         for role, column_of_words in self._parts.words.items():
             place = column_of_words.place
             self._words[role].append(unguarded(shown(cells[place])) if place < count else "")
-        if count > self._layout.width and self._grid.delimiter in {",", ";"}:
-            self._check_width(row, cells)
+        if self._untitled or count > self._titled:
+            self._look_beside(row, cells)
+        self._broken.append(len(self._problems) > told)
 
     def _is_used(self, row: int, cells: list[str]) -> bool:
         column = self._parts.words.get("use")
@@ -316,9 +248,10 @@ class _Body:
             self._tell("is neither yes nor no", "write yes or no", row, column, text)
         return True
 
-    def _check_width(self, row: int, cells: list[str]) -> None:
+    def _look_beside(self, row: int, cells: list[str]) -> None:
+        """Remember cells without a header; in a text none may stand beyond the last header."""
         beyond = [cell for cell in cells[self._layout.width :] if cell.strip()]
-        if beyond:
+        if beyond and self._grid.delimiter in {",", ";"}:
             self._problems.append(
                 Problem(
                     f"has {len(cells)} cells where the header has {self._layout.width}",
@@ -330,6 +263,19 @@ class _Body:
                     row=row,
                 )
             )
+
+        for place in (*self._untitled, *range(self._titled, len(cells))):
+            if place < len(cells) and cells[place].strip():
+                self._beside.setdefault(place, (row, shown(cells[place])))
+
+    def _account_of_beside(self) -> list[AccountLine]:
+        return [
+            AccountLine(
+                f"column {column_letter(place)} has no header and is left out "
+                f"(from row {row}: {text[:40]})"
+            )
+            for place, (row, text) in sorted(self._beside.items())
+        ]
 
     def _tell(self, what: str, remedy: str, row: int, column: Column, text: str) -> None:
         self._problems.append(

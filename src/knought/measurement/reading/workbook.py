@@ -93,7 +93,13 @@ def _named(sheets: tuple[Sheet, ...], wanted: str | int, name: str) -> Sheet:
 
 
 def _only_table(sheets: tuple[Sheet, ...], name: str) -> Sheet:
-    """Return the one visible sheet that holds a table; the first one where none does."""
+    """Return the one visible sheet that holds a table; the first one where none does.
+
+    Raises
+    ------
+    InputError
+        If more than one does.
+    """
     visible = [sheet for sheet in sheets if not sheet.hidden] or list(sheets)
     if len(visible) == 1:
         return visible[0]

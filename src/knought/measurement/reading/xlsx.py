@@ -12,7 +12,13 @@ from dataclasses import dataclass, field
 from typing import TYPE_CHECKING
 
 from knought.errors import InputError, Problem
-from knought.measurement.reading.archive import Archive, AttributesImpl, Handler
+from knought.measurement.reading.archive import (
+    Archive,
+    AttributesImpl,
+    Handler,
+    TooMuchError,
+    attribute,
+)
 from knought.measurement.reading.cell_text import (
     NumberFormat,
     date_text,
@@ -66,8 +72,11 @@ class XlsxSheet:
         for _ in self.book.archive.steps(self.part, handler):
             yield from handler.take()
         self.merged = tuple(handler.merged)
-        if handler.hidden_rows:
-            self.remarks = (f"{rows_words(handler.hidden_rows)} hidden in the sheet, and read",)
+        hidden = [f"column {letter}" for letter in handler.hidden_columns]
+        hidden += [rows_words(handler.hidden_rows)] if handler.hidden_rows else []
+        self.remarks = tuple(
+            f"{what} hidden in the sheet, and read all the same" for what in hidden
+        )
 
 
 @dataclass
@@ -93,9 +102,6 @@ def xlsx_sheets(archive: Archive) -> tuple[XlsxSheet, ...]:
     InputError
         If it is damaged, or no XLSX workbook.
     """
-    if any(part.endswith("vbaProject.bin") for part in archive.names()):
-        # Macros are never run; the sheets are read as of any workbook.
-        pass
     main = _main_part(archive)
     relations = _Relations()
     archive.parse(_relations_of(main), relations)
@@ -128,7 +134,7 @@ def _main_part(archive: Archive) -> str:
         for kind, target in relations.targets.values():
             if kind.endswith("/officeDocument"):
                 part = _resolved("", target)
-                if part.endswith(".xml") and posixpath.dirname(part) == "xl":
+                if part.endswith(".xml") and posixpath.dirname(part) not in {"word", "ppt"}:
                     return part
                 if part.endswith(".bin"):
                     raise InputError(
@@ -173,9 +179,7 @@ class _BookHandler(Handler):
 
     def begin(self, name: str, attributes: AttributesImpl) -> None:
         if name == "sheet":
-            relation = next(
-                (attributes[key] for key in attributes.keys() if key.rpartition(":")[2] == "id"), ""
-            )
+            relation = attribute(attributes, "id") or ""
             hidden = attributes.get("state", "visible") != "visible"
             self.sheets.append((attributes.get("name", ""), hidden, relation))
         elif name == "workbookPr":
@@ -201,6 +205,7 @@ class _StringsHandler(Handler):
 
     def characters(self, content: str) -> None:
         if self._in_text:
+            self.count(content)
             self._pieces.append(content)
 
     def end(self, name: str) -> None:
@@ -244,6 +249,7 @@ class _SheetHandler(Handler):
         self._sheet, self._book = sheet, sheet.book
         self.merged: list[Span] = []
         self.hidden_rows: list[int] = []
+        self.hidden_columns: list[str] = []
         self._done: list[tuple[int, list[str]]] = []
         self._row = 0
         self._cells: list[str] = []
@@ -252,7 +258,7 @@ class _SheetHandler(Handler):
         self._pieces: list[str] = []
         self._formula: list[str] = []
         self._into: list[str] | None = None
-        self._has_value = self._has_formula = False
+        self._has_value = self._has_formula = self._in_phonetic = False
 
     def take(self) -> list[tuple[int, list[str]]]:
         """Return the rows that are complete, and forget them."""
@@ -262,19 +268,23 @@ class _SheetHandler(Handler):
     def begin(self, name: str, attributes: AttributesImpl) -> None:
         if name == "c":
             self._begin_cell(attributes)
-        elif name == "v" or name == "t":
+        elif name in {"v", "t"} and not self._in_phonetic:
             self._into, self._has_value = self._pieces, True
         elif name == "f":
             self._into, self._has_formula = self._formula, True
         elif name == "rPh":
-            self._into = None
+            self._in_phonetic = True
         elif name == "row":
             self._begin_row(attributes)
+        elif name == "col" and attributes.get("hidden") in {"1", "true"}:
+            first, last = int(attributes["min"]), int(attributes["max"])
+            self.hidden_columns += [column_letter(i - 1) for i in range(first, min(last, 50) + 1)]
         elif name == "mergeCell":
             self._merge(attributes.get("ref", ""))
 
     def characters(self, content: str) -> None:
         if self._into is not None:
+            self.count(content)
             self._into.append(content)
 
     def end(self, name: str) -> None:
@@ -282,6 +292,8 @@ class _SheetHandler(Handler):
             self._cells.append(self._text())
         elif name in {"v", "t", "f"}:
             self._into = None
+        elif name == "rPh":
+            self._in_phonetic = False
         elif name == "row":
             if any(self._cells):
                 self._done.append((self._row, self._cells))
@@ -289,7 +301,9 @@ class _SheetHandler(Handler):
 
     def _begin_row(self, attributes: AttributesImpl) -> None:
         number = int(attributes.get("r") or self._row + 1)
-        if number <= self._row or number > _MOST_ROWS:
+        if number > _MOST_ROWS:
+            raise TooMuchError
+        if number <= self._row:
             raise ValueError("rows out of order")
         self._row, self._cells, self._column = number, [], -1
         if attributes.get("hidden") in {"1", "true"}:

@@ -1,0 +1,98 @@
+"""What a table of rate constants must be, checked once when it is made."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING, Any
+
+import numpy as np
+
+from knought.errors import Problem
+from knought.measurement.labels import is_plain_text
+
+if TYPE_CHECKING:
+    from collections.abc import Iterator
+
+    from knought.arrays import FloatArray
+    from knought.measurement.table import RateTable
+
+__all__ = ["problems_of"]
+
+#: Of one column, this many values are told.
+_MOST_PROBLEMS = 50
+
+_UNCERTAINTY = "an uncertainty is above zero; leave the whole column out where it is unknown"
+
+#: Column -> whether zero is allowed, and what to do about a value that is not.
+_RULES = {
+    "k": (False, "a rate constant is above zero; leave the run out, with a reason, if it failed"),
+    "T": (False, "give temperatures in K, above zero"),
+    "I": (True, "an ionic strength is zero or above"),
+    "u_k": (False, _UNCERTAINTY),
+    "u_T": (False, _UNCERTAINTY),
+    "u_I": (False, _UNCERTAINTY),
+    "determinations": (False, "give how many determinations were averaged, at least 1"),
+}
+
+
+def problems_of(table: RateTable) -> list[Problem]:
+    """Return everything that is wrong with a table; values are looked at once lengths agree."""
+    if np.ndim(table.k) != 1 or len(table.k) == 0:
+        return [
+            Problem("the table has no runs", "give at least one run, as one-dimensional arrays")
+        ]
+    return [*_lengths(table)] or [*_values(table), *_words(table)]
+
+
+def _lengths(table: RateTable) -> Iterator[Problem]:
+    n = len(table.k)
+    columns: dict[str, Any] = {
+        name: getattr(table, name)
+        for name in (*_RULES, "run", "salt", "batch", "used", "reason", "note")
+    }
+    columns |= {f"c({name})": values for name, values in table.concentrations.items()}
+    for name, values in columns.items():
+        if values is None:
+            continue
+        if isinstance(values, np.ndarray) and values.ndim != 1:
+            yield Problem("is no one-dimensional array", "give one value a run", column=name)
+        elif len(values) != n:
+            yield Problem(f"has {len(values)} values for {n} runs", "give one a run", column=name)
+
+
+def _values(table: RateTable) -> Iterator[Problem]:
+    for name, (zero_allowed, rule) in _RULES.items():
+        yield from _outside(table, name, getattr(table, name), zero_allowed, rule)
+    for species, values in table.concentrations.items():
+        yield from _outside(
+            table, f"c({species})", values, True, "a concentration is zero or above"
+        )
+
+
+def _outside(
+    table: RateTable, name: str, values: FloatArray | None, zero_allowed: bool, rule: str
+) -> Iterator[Problem]:
+    if values is None:
+        return
+    wrong = ~np.isfinite(values) | (values < 0 if zero_allowed else values <= 0)
+    for place in np.flatnonzero(wrong)[:_MOST_PROBLEMS]:
+        yield Problem(f"run {table.run[place]}: {name} is {values[place]:g}", rule, column=name)
+
+
+def _words(table: RateTable) -> Iterator[Problem]:
+    for place in np.flatnonzero(~table.used)[:_MOST_PROBLEMS]:
+        if not table.reason[place]:
+            yield Problem(
+                f"run {table.run[place]} is left out without a reason",
+                "say why in the column reason",
+                column="reason",
+            )
+    for name in ("run", "salt", "batch", "reason", "note"):
+        for place, word in enumerate(getattr(table, name) or ()):
+            if not is_plain_text(word):
+                yield Problem(
+                    f"run {place + 1} has a label with control characters, or one that is too long",
+                    "use plain text",
+                    read=word[:80].encode("ascii", "backslashreplace").decode("ascii"),
+                    column=name,
+                )
+                break

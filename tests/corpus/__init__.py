@@ -1,0 +1,1 @@
+"""Nasty files, each with the exact table or the exact message that it must give."""
