@@ -116,10 +116,12 @@ def test_a_table_outside_the_folder_is_refused(folder: Path) -> None:
 
 def test_an_existing_folder_is_not_replaced_without_being_told(folder: Path) -> None:
     out = folder / "out"
-    kn.run_study(folder / "study.toml", out)
-    before = (out / "report.html").read_bytes()
+    out.mkdir()
+    (out / "report.html").write_text("mine", encoding="utf-8")
     assert main(["report", str(folder / "study.toml"), "--out", str(out)]) == 2
-    assert (out / "report.html").read_bytes() == before
+    assert (out / "report.html").read_text(encoding="utf-8") == "mine"
+    assert main(["report", str(folder / "study.toml"), "--out", str(out), "--overwrite"]) == 0
+    before = (out / "report.html").read_bytes()
     assert main(["report", str(folder / "study.toml"), "--out", str(out), "--overwrite"]) == 0
     assert (out / "report.html").read_bytes() == before  # the same input, the same bytes
 

@@ -107,6 +107,17 @@ REFUSED_CELLS = (
         ),
     ),
     Refused(
+        "only-I.csv",
+        b"run,T/K,I/M,k/s^-1\n1,298.15,0.1,2.41e-3\n2,,0.1,\n",
+        (
+            "2 problems:\n  "
+            "only-I.csv, row 3, column T/K: the temperature is blank. Fill it in, or leave the "
+            "run out (use: no, with a reason).\n  "
+            "only-I.csv, row 3, column k/s^-1: the rate constant is blank. Fill it in, or "
+            "leave the run out (use: no, with a reason)."
+        ),
+    ),
+    Refused(
         "impossible.csv",
         b"T/K,I/M,k/s^-1,u(k)/s^-1\n"
         b"-5,0.1,2.41e-3,1e-5\n"

@@ -60,7 +60,7 @@ def test_what_is_no_file_of_a_sensible_size_is_refused_at_once(
     start = time.monotonic()
     with pytest.raises(InputError, match=rf"^rates\.csv: {what}"):
         read_rates("rates.csv")
-    assert time.monotonic() - start < 2
+    assert time.monotonic() - start < 5
 
 
 def test_a_path_that_no_system_takes_is_refused() -> None:
@@ -156,9 +156,9 @@ def test_time_and_memory_grow_in_proportion_to_the_rows() -> None:
     for data in (small, large):
         best = float("inf")
         for _ in range(2):
-            start = time.perf_counter()
+            start = time.process_time()
             read_rates(io.BytesIO(data))
-            best = min(best, time.perf_counter() - start)
+            best = min(best, time.process_time() - start)
         times.append(best)
     # Eight times the rows; a quadratic step would show as sixty-four.
     assert times[1] < 20 * times[0]

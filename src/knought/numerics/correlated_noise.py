@@ -17,17 +17,21 @@ part within a bin.
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import TYPE_CHECKING
 
 import numpy as np
 
 from knought.arrays import FloatArray, frozen
 from knought.numerics.quantiles import Mixture
 
-if TYPE_CHECKING:
-    from knought.arrays import BoolArray
-
-__all__ = ["Binned", "Noise", "Projected", "binned", "project"]
+__all__ = [
+    "Binned",
+    "Noise",
+    "Projected",
+    "binned",
+    "correlation_times",
+    "mixture_of",
+    "project",
+]
 
 #: Longer records are averaged into this many bins.
 MOST_BINS = 64
@@ -36,7 +40,7 @@ _SHARES = np.array([0.15, 0.35, 0.55, 0.75, 0.92])
 _CORRELATION_TIMES, _LONGEST_TIME = 7, 0.2
 
 #: Weight before the data are seen of "no correlation"; the rest is spread over the cells.
-_WHITE = 0.5
+_WHITE = 0.4
 
 
 @dataclass(frozen=True, eq=False)
@@ -68,8 +72,10 @@ class Binned:
         )
 
 
-def binned(time: FloatArray, values: FloatArray, most: int = MOST_BINS) -> Binned:
-    """Average records into at most `most` bins of equally many points (within one).
+def binned(
+    time: FloatArray, values: FloatArray, most: int = MOST_BINS, place: FloatArray | None = None
+) -> Binned:
+    """Average records into at most `most` bins.
 
     Parameters
     ----------
@@ -79,10 +85,19 @@ def binned(time: FloatArray, values: FloatArray, most: int = MOST_BINS) -> Binne
         Records on them.
     most
         Number of bins.
+    place : (points,) ndarray, optional
+        Rising coordinate in which the bins are equally wide, where the signal moves faster in
+        some places than in others; bins of equally many points if not given.
     """
     points = len(time)
-    bins = min(points, most)
-    edges = (np.arange(bins) * points) // bins
+    if points <= most:
+        edges = np.arange(points)
+    elif place is None:
+        edges = (np.arange(most) * points) // most
+    else:
+        share = (place - place[0]) / (place[-1] - place[0])
+        edges = np.unique(np.searchsorted(share, np.arange(most) / most))
+        edges = edges[edges < points]
     counts = np.diff(np.append(edges, points)).astype(float)
     return Binned(
         frozen(np.add.reduceat(time, edges) / counts),
@@ -172,8 +187,8 @@ class Projected:
         rᵀ V⁻¹ r.
     start : (m, p) ndarray
         The ordinary fit, along Q.
-    back : (m or 1, p, p) ndarray
-        R⁻¹: parameters = R⁻¹ (along Q).
+    upper : (m or 1, p, p) ndarray
+        R: parameters = R⁻¹ (along Q).
     points
         Rows.
     log_fixed : (c,) ndarray
@@ -293,7 +308,7 @@ def mixture_of(
     weights: FloatArray, values: FloatArray, scales: FloatArray, degrees_of_freedom: int
 ) -> Mixture:
     """Return the mixture of Student t distributions of one record, from its cells ``(c,)``."""
-    kept: BoolArray = weights > 1e-9
+    kept = weights > 1e-9
     total = weights[kept].sum()
     return Mixture(
         frozen(weights[kept] / total), values[kept], scales[kept], float(degrees_of_freedom)

@@ -109,7 +109,7 @@ class _Body:
             for column in parts.numeric
         ]
         self._words: dict[str, list[str]] = {role: [] for role in parts.words}
-        self._keys = [c.place for role in ("T", "k") for c in parts.values.get(role, ())]
+        self._keys = [column.place for column in parts.numeric]
         self._rows = array("q")
         self._used: list[bool] = []
         self._broken: list[bool] = []
@@ -174,7 +174,7 @@ class _Body:
                 self._second_table(row, cells)
                 return False
             if place < 0:
-                self._leave_out(row, cells, "neither temperature nor rate constant")
+                self._leave_out(row, cells, "no numbers")
                 return False
         if cells.count("") >= count - 1 and self._is_note(cells):
             self._leave_out(row, cells, "a single cell")
