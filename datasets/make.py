@@ -42,6 +42,7 @@ class Invented:
     lg_activity: Callable[[float, float], float]  # (T, I) -> lg k/k° per unit of Δz² and beyond
     relative_u: tuple[float, ...]
     salt_column: str
+    literature: tuple[tuple[str, int, float, float, float], ...] = ()  # label, year, T, I, u_r
 
     def true_k(self, T: float, I: float) -> float:
         """Return the rate constant in L mol^-1 s^-1 without error."""
@@ -70,6 +71,15 @@ class Invented:
                     self.salt_column,
                 ]
             )
+        return rows
+
+    def literature_rows(self) -> list[list[str]]:
+        """Return invented literature values, header first: the truth with an error of size u_r."""
+        random = np.random.Generator(np.random.Philox(self.seed + 1000))
+        rows = [["label", "year", "T/K", "I/(mol/L)", "k/(L mol^-1 s^-1)", "u_r(k)/%"]]
+        for label, year, T, I, u in self.literature:
+            k = self.true_k(T, I) * np.exp(u * random.standard_normal())
+            rows.append([label, str(year), f"{T:.2f}", f"{I:g}", f"{k:.3g}", f"{100 * u:g}"])
         return rows
 
     def truth(self) -> dict[str, object]:
@@ -141,6 +151,11 @@ STUDIES = (
         lg_activity=_davies(-2, 0.3),
         relative_u=(0.02, 0.03, 0.04),
         salt_column="NaNO3",
+        literature=(
+            ("Invented paper A", 1987, 293.15, 0.1, 0.04),
+            ("Invented paper B", 1999, 298.15, 0.02, 0.06),
+            ("Invented paper C", 2012, 308.15, 0.2, 0.03),
+        ),
     ),
     Invented(
         name="neutral-partner",
@@ -164,11 +179,17 @@ def write(folder: Path) -> None:
     for study in STUDIES:
         target = folder / study.name
         target.mkdir(parents=True, exist_ok=True)
-        text = io.StringIO()
-        csv.writer(text, lineterminator="\n").writerows(study.rows())
-        (target / "rates.csv").write_text(text.getvalue(), encoding="utf-8", newline="\n")
+        _write_table(target / "rates.csv", study.rows())
+        if study.literature:
+            _write_table(target / "literature.csv", study.literature_rows())
         truth = json.dumps(study.truth(), indent=1, ensure_ascii=False) + "\n"
         (target / "truth.json").write_text(truth, encoding="utf-8", newline="\n")
+
+
+def _write_table(path: Path, rows: list[list[str]]) -> None:
+    text = io.StringIO()
+    csv.writer(text, lineterminator="\n").writerows(rows)
+    path.write_text(text.getvalue(), encoding="utf-8", newline="\n")
 
 
 if __name__ == "__main__":

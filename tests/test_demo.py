@@ -20,7 +20,9 @@ DATASETS = Path(__file__).parent.parent / "datasets"
 def test_the_script_makes_the_same_bytes_again(name: str, tmp_path: Path) -> None:
     make = runpy.run_path(str(DATASETS / "make.py"))
     make["write"](tmp_path)
-    for file in ("rates.csv", "truth.json"):
+    made = [path.name for path in (tmp_path / name).iterdir()]
+    assert {"rates.csv", "truth.json"} <= set(made)
+    for file in made:
         assert (tmp_path / name / file).read_bytes() == (DATASETS / name / file).read_bytes()
 
 

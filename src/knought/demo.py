@@ -34,7 +34,8 @@ __all__ = ["STUDIES", "run_demo"]
 #: The studies in the order in which they are run.
 STUDIES = ("like-charges", "opposite-charges", "neutral-partner")
 
-_FILES = ("study.toml", "rates.csv", "truth.json")
+#: What belongs to a study.
+_COPIED = (".toml", ".csv", ".json")
 
 _COMPARED = (
     "rate_constant",
@@ -81,11 +82,11 @@ def run_demo(out: Path, *, overwrite: bool = False, layout: Layout = "text") -> 
 
 
 def _copy(name: str, target: Path) -> None:
-    source = installed_study(name)
     target.mkdir()
-    for file in _FILES:
-        with resources.as_file(source / file) as path:
-            shutil.copyfile(path, target / file)
+    for source in installed_study(name).iterdir():
+        if source.name.endswith(_COPIED):
+            with resources.as_file(source) as path:
+                shutil.copyfile(path, target / source.name)
 
 
 def installed_study(name: str) -> Traversable:

@@ -221,7 +221,7 @@ def _true_slopes(
     truth: Truth, charges: float, T: FloatArray, I: FloatArray
 ) -> tuple[FloatArray, FloatArray]:
     def ln_k(T: FloatArray, I: FloatArray) -> FloatArray:
-        return _eyring(T) + np.log(10) * truth(T, I, charges)
+        return np.asarray(_eyring(T) + np.log(10) * truth(T, I, charges))
 
     h, e = 1e-3, 1e-5 * I
     return (

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import replace
+from typing import TYPE_CHECKING
 
 import numpy as np
 import pytest
@@ -15,7 +16,6 @@ from knought.fitting.bootstrap import bootstrap
 from knought.fitting.diagnostics import curvature, diagnose, leverage, salt_test
 from knought.fitting.influence import influence
 from knought.fitting.monte_carlo import monte_carlo
-from knought.fitting.observations import Observations
 from knought.fitting.open_fit import fit_open
 from knought.fitting.profile import profile_ion_size
 from knought.fitting.replicates import replicate_groups, replicates
@@ -24,6 +24,9 @@ from knought.fitting.surface_fit import fit_surface
 from knought.laws.salt import SaltLaw, salt_law
 from tests.fitting.test_assess import codes, table
 from tests.simulation import davies, extended, guntelberg, simulate
+
+if TYPE_CHECKING:
+    from knought.fitting.observations import Observations
 
 STRENGTHS = np.array([0.005, 0.01, 0.02, 0.05, 0.1, 0.2])
 FIVE = (283.15, 290.65, 298.15, 305.65, 313.15)

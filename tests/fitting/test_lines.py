@@ -7,13 +7,16 @@ published examples go through the code that fits everything else.
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 import numpy as np
 import pytest
 
 import knought as kn
-from knought.arrays import FloatArray
 from knought.fitting.surface_fit import SurfaceFit
+
+if TYPE_CHECKING:
+    from knought.arrays import FloatArray
 
 LN10 = np.log(10.0)
 

@@ -2,9 +2,9 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
 from dataclasses import replace
 from fractions import Fraction
+from typing import TYPE_CHECKING
 
 import numpy as np
 import pytest
@@ -14,12 +14,16 @@ import knought as kn
 from knought.arrays import FloatArray, frozen
 from knought.chemistry.constants import GAS_CONSTANT
 from knought.fitting.budget import budget
-from knought.fitting.found import Found
 from knought.fitting.observations import Observations, observe
 from knought.fitting.open_fit import fit_open
 from knought.fitting.surface_fit import SurfaceFit, fit_surface
 from knought.measurement.shared_errors import SharedError
 from tests.simulation import davies, guntelberg, simulate
+
+if TYPE_CHECKING:
+    from collections.abc import Callable
+
+    from knought.fitting.found import Found
 
 STRENGTHS = np.array([0.01, 0.02, 0.05, 0.1])
 FOUR = (288.15, 298.15, 308.15, 318.15)

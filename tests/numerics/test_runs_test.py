@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from itertools import combinations
+from itertools import combinations, pairwise
 
 import numpy as np
 import pytest
@@ -16,7 +16,7 @@ def test_probabilities_are_those_of_counting(signs: str) -> None:
     n, plus = len(signs), signs.count("+")
 
     def runs(pattern: list[bool]) -> int:
-        return 1 + sum(a != b for a, b in zip(pattern, pattern[1:], strict=False))
+        return 1 + sum(a != b for a, b in pairwise(pattern))
 
     seen = runs([value > 0 for value in values])
     every = [

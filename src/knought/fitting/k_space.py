@@ -56,7 +56,8 @@ def fit_in_k(
     Parameters
     ----------
     rates
-        The table, or what :func:`observe` made of it; where it states no uncertainties, every k has the same absolute weight.
+        The table, or what :func:`observe` made of it; where it states no uncertainties, every k has
+        the same absolute weight.
     temperature_law, salt_law, reference_temperature, charge_product, ion_size, scatter
         As for :func:`knought.fit`; the salt law must be a named one.
 

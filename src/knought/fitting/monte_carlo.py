@@ -1,10 +1,10 @@
 """Propagation of distributions by Monte Carlo (JCGM 101): the reference for every other ±.
 
-Each draw takes the errors of the runs, the errors they share (each from its own distribution),
-and, under the open law, a cell of its grid with its weight and β from its prior; the estimate is linear
-in all of them (its ``gain``), so a block of draws is one matrix product. Drawing goes on for a fixed
-number, or adaptively (7.9) until standard uncertainties and interval ends are stable to one
-significant digit of u. Blocks are seeded one by one, so that the same seed gives the same draws.
+Each draw takes the errors of the runs, the errors they share (each from its own distribution), and,
+under the open law, a cell of its grid with its weight and β from its prior; the estimate is linear
+in all of them (its ``gain``), so a block of draws is one matrix product. Drawing goes on for a
+fixed number, or adaptively (7.9) until standard uncertainties and interval ends are stable to two
+significant digits of u. Blocks are seeded one by one, so that the same seed gives the same draws.
 """
 
 from __future__ import annotations

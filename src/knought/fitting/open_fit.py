@@ -16,7 +16,6 @@ import numpy as np
 
 from knought.arrays import FloatArray, IndexArray, frozen
 from knought.chemistry.quantities import quantity
-from knought.errors import Caveat
 from knought.fitting import checks
 from knought.fitting.distribution import ParameterDistribution
 from knought.fitting.found import Found
@@ -35,6 +34,7 @@ from knought.numerics.quantiles import Histogram
 if TYPE_CHECKING:
     from collections.abc import Mapping
 
+    from knought.errors import Caveat
     from knought.fitting.estimate import Estimate
     from knought.fitting.run_errors import RunErrors
     from knought.fitting.scatter import ScatterChoice

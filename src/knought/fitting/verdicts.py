@@ -270,9 +270,9 @@ def _curvature_verdict(diagnostics: Diagnostics) -> list[Caveat]:
         Caveat(
             "curvature",
             f"ln k against 1/T is curved: ΔCₚ‡ = ({bent.value:.0f} ± "
-            f"{bent.standard_uncertainty:.0f}) J K⁻¹ mol⁻¹, p = {bent.probability:.2g}. Before it is called a heat capacity, rule "
-            "out a temperature error that grows, a second path, a pre-equilibrium that shifts, and "
-            "the approach to the diffusion limit.",
+            f"{bent.standard_uncertainty:.0f}) J K⁻¹ mol⁻¹, p = {bent.probability:.2g}. Before it "
+            "is called a heat capacity, rule out a temperature error that grows, a second path, a "
+            "pre-equilibrium that shifts, and the approach to the diffusion limit.",
         )
     ]
 

@@ -1,4 +1,4 @@
-"""The runs test: do signs follow each other as chance would have them?
+"""The runs test asks whether signs follow each other as chance would have them.
 
 Exact distribution of the number of runs of two kinds of signs (Wald and Wolfowitz, Ann. Math.
 Statist. 11 (1940) 147), by counting.
@@ -41,7 +41,7 @@ def runs_probability(values: FloatArray) -> float:
 
 
 def _ways(plus: int, minus: int, runs: int) -> int:
-    """Number of arrangements with exactly that many runs."""
+    """Count the arrangements with exactly that many runs."""
     half, odd = divmod(runs, 2)
     if not odd:
         return 2 * comb(plus - 1, half - 1) * comb(minus - 1, half - 1)

@@ -62,7 +62,8 @@ class Discussed:
         if self.background is not None:
             found += background_sentences(self.background)
         if self.plan is not None:
-            found += [*self.plan.assumptions, *self.plan.cautions]
+            found += self.plan.assumptions
+            found += [caution.message for caution in self.plan.cautions]
         return tuple(found)
 
     @property

@@ -130,8 +130,8 @@ def check_sentences(assessment: Assessment) -> list[str]:
         name, shift = max(checked.shifts.items(), key=lambda pair: abs(pair[1]))
         words = checked.in_ln_k.parameters[name].quantity.words
         sentences.append(
-            f"Fitting k itself instead of ln k ({checked.in_ln_k.surface.salt_law.words} law) moves "
-            f"no result by more than {abs(shift):.2f} of its standard uncertainties ({words})."
+            f"Fitting k instead of ln k ({checked.in_ln_k.surface.salt_law.words} law) moves no "
+            f"result by more than {abs(shift):.2f} of its standard uncertainties ({words})."
         )
     repeated = assessment.replicates
     if repeated is not None:

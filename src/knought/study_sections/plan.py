@@ -58,7 +58,7 @@ class PlanSection(Section):
     ionic_strength_uncertainty: Fraction = 0.0
     activation_energy: Energy = 50e3
     charge_product: float | None = None
-    salts: dict[str, MolPerLitre] = {}
+    salts: dict[str, MolPerLitre] = Field(default_factory=dict)
     forbidden: tuple[ForbiddenSection, ...] = ()
     least_temperatures: int | None = Field(default=None, ge=1)
     least_ionic_strengths: int | None = Field(default=None, ge=1)
