@@ -124,7 +124,8 @@ def test_ascii_is_ascii(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> N
 def test_pasted_cells_are_read_from_the_terminal(
     monkeypatch: pytest.MonkeyPatch, capsys: pytest.CaptureFixture[str]
 ) -> None:
-    monkeypatch.setattr("sys.stdin", io.StringIO(LIKE_CHARGES.replace(",", "\t")))
+    pasted = io.BytesIO(LIKE_CHARGES.replace(",", "\t").encode())
+    monkeypatch.setattr("sys.stdin", io.TextIOWrapper(pasted))
     assert run("fit", "-") == 0
     assert "9 runs" in capsys.readouterr().out
 
@@ -208,3 +209,17 @@ def test_the_template_is_a_study_that_only_lacks_its_runs(
     book.save(folder / "rates.xlsx")
     assert run("report", folder / "study.toml", "--out", tmp_path / "report") == 0
     assert (tmp_path / "report" / "report.html").stat().st_size > 10_000
+
+
+def test_reading_shows_what_was_understood_and_writes_it_clean(
+    tmp_path: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    messy = "t/°C;I/(mol/L);k/(L mol^-1 s^-1)\n15,0;0,01;4,62\n25,0;0,01;9,40\n35,0;0,01;18,1\n"
+    table = written(tmp_path, messy, "messy.csv")
+    clean = tmp_path / "clean.csv"
+    assert run("read", table, "--out", clean) == 0
+    said = capsys.readouterr().out
+    assert "read as temperature, +273.15: 15,0 → 288.15 K" in said
+    assert clean.read_text(encoding="utf-8").splitlines()[0].startswith("run,T/K,I/(mol/L)")
+    assert (tmp_path / "clean.schema.json").exists()
+    assert run("fit", clean) == 0

@@ -86,6 +86,8 @@ class Study:
             self.rates_path,
             sheet=said.rates.sheet,
             uncertainty_means=said.rates.uncertainty_means,
+            decimal=said.rates.decimal,
+            excess=said.rates.excess,
         )
         assessment = assess(
             rates,

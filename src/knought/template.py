@@ -37,6 +37,8 @@ title = "My study"
 [rates]
 file = "rates.xlsx"                        # or .csv, .tsv; beside this file
 # sheet = "rates"
+# uncertainty_means = "standard deviation" # what ± means, where the header does not say
+# decimal = ","                            # where the numbers of a text file do not show it
 
 [reaction]
 # What enters the rate-determining step, with charges. If you know it, say it: nothing narrows
@@ -61,6 +63,7 @@ file = "rates.xlsx"                        # or .csv, .tsv; beside this file
 # ion_size = ["1 Å", "12 Å"]               # uniform between
 # linear_coefficient = ["0.1 L/mol", "0.3 L/mol"]       # mean, standard uncertainty
 # interaction_coefficient = ["0 L/mol", "0.3 L/mol"]    # mean, standard uncertainty
+# constant_size = 0.5                      # odds that å, rather than B å, is the same at every T
 """
 
 

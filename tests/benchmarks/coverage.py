@@ -263,7 +263,7 @@ def _open(
     if not stated:
         # σ in units of its true value, over all that any study may find.
         nu = seen.runs - 3
-        scales = np.geomspace(0.03, 3 * (2000.0 ** (1 / nu)) if nu > 1 else 1e3, 40)
+        scales = np.geomspace(0.05, 3 * (2000.0 ** (1 / nu)) if nu > 1 else 1e3, 28)
     solver = open_solver(seen, surface, grid, errors, scales)
     names, rows, offsets = _rows(surface)
     variances = np.einsum("qp,cspr,qr->csq", rows, solver.covariances, rows)

@@ -170,6 +170,7 @@ def test_what_plus_minus_means_in_the_cells_of_k_may_stand_in_its_header() -> No
     ["", "pH", "A0", "date", "kinetics", "absorbance", "rate", "kelvin", "n/mol", "ln(k/T)",
      "-ln k",
      "ln(k/T)/(s^-1 K^-1)", "time", "file", "298.15", "Temperatures in March", "k(298 K)/s^-1",
+     "T, the bath", "k in the second run",
      "x" * 300],
 )  # fmt: skip
 def test_what_is_no_header_of_ours_is_left_to_the_caller(text: str) -> None:

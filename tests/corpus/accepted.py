@@ -120,6 +120,11 @@ ACCEPTED_TEXTS = (
         {"T": [298.15, 308.15], "k": [0.01, 0.02], "I": [0.01, 0.02]},
     ),
     Accepted(
+        "labels-like-headers.csv",
+        b"run,T/K,k/s^-1,note\nT,298.15,2.41e-3,\nk,308.15,5.1e-3,;:\n",
+        _PLAIN | {"run": ["T", "k"], "note": ["", ";:"]},
+    ),
+    Accepted(
         "two-lines.csv",
         "temperature,rate constant,\nT/K,value / s⁻¹,SD / s⁻¹\n"
         "298.15,2.41e-3,1e-5\n308.15,5.1e-3,2e-5\n".encode(),

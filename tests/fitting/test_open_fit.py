@@ -36,7 +36,7 @@ def test_the_mixture_is_what_sampling_from_prior_times_likelihood_gives() -> Non
     analytically cell by cell through scipy's multivariate normal on the residual space.
     """
     study = seen()
-    found = fit_open(study, scatter="given")
+    found = fit_open(study, scatter="given", priors=Priors(constant_size=1.0))
     random = np.random.default_rng(1)
     draws = 6_000
     size = random.uniform(1e-10, 12e-10, draws)
@@ -75,7 +75,7 @@ def test_the_mixture_is_what_sampling_from_prior_times_likelihood_gives() -> Non
 def test_one_cell_is_an_ordinary_fit() -> None:
     """With å, c and β fixed, the open law is the extended law with that å."""
     study = seen()
-    fixed = Priors((5e-10, 5e-10), (0.0, 0.0), (0.0, 0.0))
+    fixed = Priors((5e-10, 5e-10), (0.0, 0.0), (0.0, 0.0), constant_size=1.0)
     open_law = fit_open(study, priors=fixed, scatter="given")
     named = fit_surface(study, salt_law="extended", ion_size=5e-10, scatter="given")
     assert np.allclose(open_law.distribution.mean, named.distribution.mean, rtol=1e-9)
@@ -144,7 +144,7 @@ def test_the_open_charge_product_is_honest_about_its_width() -> None:
 def test_unknown_scatter_integrated_over_is_student_t() -> None:
     """With the law fixed, σ under 1/σ gives Student's t on n - p degrees of freedom exactly."""
     study = replace(seen(), u=frozen(np.ones(18)), u_given=False)
-    fixed = Priors((5e-10, 5e-10), (0.0, 0.0), (0.0, 0.0))
+    fixed = Priors((5e-10, 5e-10), (0.0, 0.0), (0.0, 0.0), constant_size=1.0)
     open_law = fit_open(study, priors=fixed)
     named = fit_surface(study, salt_law="extended", ion_size=5e-10)
     assert open_law.scatter.kind == "scatter"
@@ -289,7 +289,7 @@ def test_precise_runs_get_a_finer_grid() -> None:
     """u of 0.05 %: the default grid would be too coarse, and the answer still holds the truth."""
     study = simulate(extended(5.3), 2, STRENGTHS, studies=1, seed=4, u=5e-4).observations
     found = fit_open(study, scatter="given")
-    assert found.grid.cells > 17 * 13
+    assert found.grid.cells > 17 * 13 * 2
     low, high = found.parameters["charge_product"].interval(0.99)
     assert float(low) < 2 < float(high)
     finest = fit_open(study, scatter="given", refinement=8)

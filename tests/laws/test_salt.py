@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import re
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 import numpy as np
 import pytest
@@ -131,7 +131,7 @@ def test_the_open_law_contains_the_named_ones() -> None:
 def test_the_grid_of_the_open_law_carries_its_priors() -> None:
     grid = open_grid()
     weights = np.exp(grid.log_weight)
-    assert grid.cells == 17 * 13
+    assert grid.cells == 17 * 13 * 2
     assert weights.sum() == pytest.approx(1, abs=1e-12)
     assert weights @ grid.ion_size == pytest.approx(6.5e-10, rel=1e-12)
     spread = np.sqrt(weights @ (grid.ion_size - 6.5e-10) ** 2)
@@ -142,7 +142,7 @@ def test_the_grid_of_the_open_law_carries_its_priors() -> None:
 
 
 def test_priors_without_width_fix_a_coefficient() -> None:
-    grid = open_grid(Priors((4e-10, 4e-10), (0.2, 0.0), (0.0, 0.0)))
+    grid = open_grid(Priors((4e-10, 4e-10), (0.2, 0.0), (0.0, 0.0), constant_size=1.0))
     assert grid.cells == 1
     assert grid.law.parameters == ("charge_product",)
 
@@ -161,11 +161,10 @@ def test_narrowed_priors_keep_their_centres() -> None:
         ({"ion_size": (1.0, 12.0)}, "4.5 Å is 4.5e-10"),
         ({"linear_coefficient": (0.1, -0.3)}, "at least zero"),
         ({"interaction_coefficient": (0.2, 0.0)}, "small standard uncertainty"),
+        ({"constant_size": 1.5}, "between 0 and 1"),
     ],
 )
-def test_impossible_priors_are_refused(
-    priors: dict[str, tuple[float, float]], message: str
-) -> None:
+def test_impossible_priors_are_refused(priors: dict[str, Any], message: str) -> None:
     with pytest.raises(InputError, match=re.escape(message)):
         Priors(**priors)
 

@@ -255,8 +255,8 @@ def test_the_budget_is_told_alike_in_table_figure_and_record(assessment: kn.Asse
     parts = assessment.budget("rate_constant")
     assert shares["repeatability of k"] == pytest.approx(parts.shares["repeatability of k"])
     rows = [row for row in made.rows if row[0].raw != "all together"]
-    total = sum((float(row[2].raw or 0.0) for row in rows), 0.0)
-    assert total == pytest.approx(1)
+    listed: list[float] = [float(row[2].raw or 0.0) for row in rows]
+    assert sum(listed) == pytest.approx(1)
     ax = budget_bars(assessment, blank_figure().add_subplot())
     widths = sum(float(patch.get_width()) for patch in ax.patches)  # type: ignore[attr-defined]
     assert widths == pytest.approx(3)  # three results, each adding up to one

@@ -53,6 +53,10 @@ _PER_LITRE = 1e-3
 _LARGEST_ION = 1e-8
 
 
+#: B of water at 25 °C on the molar basis, m^-1 (L/mol)^½.
+_B_AT_25_CELSIUS = float(debye_huckel(298.15).B)
+
+
 @dataclass(frozen=True)
 class Domain:
     """Up to where a form is customarily used; going beyond is warned of, not refused.
@@ -357,11 +361,18 @@ class PitzerForm(ActivityForm):
 class OpenForm(ActivityForm):
     """√I/(1 + B å √I) - c I: contains or follows all the others.
 
+    Whether it is å or the product B å that keeps its value when the temperature changes, chemistry
+    does not say: the extended law fixes å, while Güntelberg, Davies, SIT and Pitzer fix the number
+    before √I. It makes no difference at one temperature, and one of hundreds of J/mol to E_a at
+    I → 0 for large charge products.
+
     Parameters
     ----------
     ion_size, linear_coefficient
-        å in m and c in L/mol; arrays broadcast against I and T, so that one call serves a grid.
-        Kept as read-only copies.
+        å in m (at 25 °C) and c in L/mol; arrays broadcast against I and T, so that one call serves
+        a grid. Kept as read-only copies.
+    follows_water
+        1 where B follows the temperature, 0 where it keeps its value at 25 °C; broadcasts too.
 
     Raises
     ------
@@ -371,6 +382,7 @@ class OpenForm(ActivityForm):
 
     ion_size: FloatArray | float
     linear_coefficient: FloatArray | float
+    follows_water: FloatArray | float = 1.0
 
     name: ClassVar[str] = "open"
     words: ClassVar[str] = "open law"
@@ -382,8 +394,10 @@ class OpenForm(ActivityForm):
             raise InputError("a coefficient c of the open form is not finite", "give it in L/mol")
         object.__setattr__(self, "ion_size", frozen(self.ion_size))
         object.__setattr__(self, "linear_coefficient", frozen(self.linear_coefficient))
+        object.__setattr__(self, "follows_water", frozen(self.follows_water))
 
     def _shape(self, I: FloatArray, B: FloatArray) -> _Shape:
-        shape = _screened(I, B, self.ion_size)
+        share = self.follows_water
+        shape = _screened(I, share * B + (1 - share) * _B_AT_25_CELSIUS, self.ion_size)
         c = self.linear_coefficient
-        return _Shape(shape.f - c * I, shape.f_I - c, shape.f_B)
+        return _Shape(shape.f - c * I, shape.f_I - c, share * shape.f_B)

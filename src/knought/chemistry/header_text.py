@@ -47,6 +47,8 @@ class HeaderParts:
         Exponent of a power of ten that stands behind the quantity; None where none does.
     remark
         What stood in brackets behind the unit.
+    loose
+        Whether the unit follows a comma or "in", as words of a sentence may as well.
     """
 
     prefactor: Fraction
@@ -54,6 +56,7 @@ class HeaderParts:
     unit: str | None
     power_behind: int | None = None
     remark: str = ""
+    loose: bool = False
 
 
 def plain_header(text: str) -> str:
@@ -94,7 +97,8 @@ def split_header(text: str) -> HeaderParts:
     unit, remark = _unit_of(tail.strip())
     if power is None:
         unit, remark, power = _power_at_the_end(unit, remark)
-    return HeaderParts(prefactor, quantity, unit, power, remark)
+    loose = tail.lstrip().startswith((",", "in "))
+    return HeaderParts(prefactor, quantity, unit, power, remark, loose)
 
 
 def _power_at_the_end(unit: str | None, remark: str) -> tuple[str | None, str, int | None]:

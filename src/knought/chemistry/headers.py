@@ -211,7 +211,13 @@ def _quantity(text: str, plain: str) -> Header | None:
             f"has words behind its unit that are not understood: {parts.remark}",
             "keep quantity and unit in the header, and say the rest in the column note",
         )
-    return _with_unit(header if said is None else _declared(header, said), parts)
+    try:
+        return _with_unit(header if said is None else _declared(header, said), parts)
+    except InputError:
+        # "T, the temperature of the bath" is a sentence and no header.
+        if parts.loose:
+            return None
+        raise
 
 
 _SAID = re.compile(

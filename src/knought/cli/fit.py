@@ -6,16 +6,14 @@ u(k)/(L mol^-1 s^-1); a dash reads cells pasted into the terminal.
 
 from __future__ import annotations
 
-import sys
 from pathlib import Path
 from typing import TYPE_CHECKING
 
 from knought.cli.console import add_format, layout_of, say
+from knought.cli.tables import add_table, read_table
 
 if TYPE_CHECKING:
     import argparse
-
-    from knought.measurement.table import RateTable
 
 __all__ = ["HELP", "NAME", "add_arguments", "run"]
 
@@ -28,8 +26,7 @@ _SALT_LAWS = "open (default), none, linear, limiting, guntelberg, extended, davi
 
 def add_arguments(parser: argparse.ArgumentParser) -> None:
     """Describe the arguments."""
-    parser.add_argument("table", metavar="TABLE", help="the table, or - for pasted cells")
-    parser.add_argument("--sheet", help="sheet of a spreadsheet, by name or number")
+    add_table(parser)
     parser.add_argument("--temperature-law", metavar="LAW", help=_TEMPERATURE_LAWS)
     parser.add_argument("--salt-law", metavar="LAW", help=_SALT_LAWS)
     parser.add_argument(
@@ -52,7 +49,7 @@ def run(options: argparse.Namespace) -> None:
     from knought.reporting.record import record_text
     from knought.reporting.summary import summary
 
-    rates = _table(options)
+    rates = read_table(options)
     assessment = assess(
         rates,
         temperature_law=options.temperature_law,
@@ -66,11 +63,3 @@ def run(options: argparse.Namespace) -> None:
     if options.json:
         atomic_write_text(Path(options.json), record_text(assessment))
         say(f"\nrecord: {options.json}", layout)
-
-
-def _table(options: argparse.Namespace) -> RateTable:
-    from knought.measurement.reading import read_rates, read_text
-
-    if options.table == "-":
-        return read_text(sys.stdin.read(), name="pasted cells")
-    return read_rates(Path(options.table), sheet=options.sheet)

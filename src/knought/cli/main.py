@@ -6,7 +6,7 @@ import argparse
 import sys
 from typing import TYPE_CHECKING, Protocol
 
-from knought.cli import compare, demo, fit, mechanism, plan, report, template
+from knought.cli import compare, demo, fit, mechanism, plan, read, report, template
 from knought.version import __version__
 
 if TYPE_CHECKING:
@@ -19,6 +19,7 @@ EXIT_DONE, EXIT_INPUT, EXIT_INTERRUPTED = 0, 2, 130
 _EXAMPLES = """\
 examples:
   knought demo                                     run the invented studies
+  knought read rates.xlsx --out clean.csv          what is understood of a table
   knought fit rates.csv                            table in, answer out
   knought fit rates.csv --reactants "A^2- + B^-"   the same with the charges known
   knought template --out my-study                  blank table and study file to fill in
@@ -48,7 +49,7 @@ class Subcommand(Protocol):
 
 
 #: Subcommands in the order in which the help lists them.
-_SUBCOMMANDS: tuple[Subcommand, ...] = (demo, fit, report, compare, mechanism, plan, template)
+_SUBCOMMANDS: tuple[Subcommand, ...] = (demo, read, fit, report, compare, mechanism, plan, template)
 
 
 def main(arguments: Sequence[str] | None = None) -> int:

@@ -4,7 +4,7 @@ Every estimate is linear in the observations, the shared errors and the priors, 
 standard uncertainty; so the squares of those coefficients ("gain") are the contributions, and they
 add up to the variance exactly. Under the open law they are averaged over its cells, and what the
 cells disagree by is the contribution of not knowing the salt law: first that of å (the variance of
-the means given å), then that of c (the rest).
+the means given å), then that of c, then that of what stays constant with temperature.
 """
 
 from __future__ import annotations
@@ -25,16 +25,18 @@ if TYPE_CHECKING:
 
     import numpy.typing as npt
 
-    from knought.arrays import FloatArray
+    from knought.arrays import FloatArray, IndexArray
     from knought.chemistry.quantities import Quantity
     from knought.fitting.found import Found
     from knought.fitting.run_errors import RunErrors
+    from knought.laws.open_law import OpenGrid
 
 __all__ = ["Budget", "budget"]
 
 _BETA = "prior of β"
-_ION_SIZE = "salt law left open: å"
-_LINEAR = "salt law left open: c"
+_ION_SIZE = "open law: å"
+_LINEAR = "open law: c"
+_FOLLOWS = "open law: å or B å constant"
 _SCATTER = "size of the scatter"
 
 #: What rounding leaves of a contribution that is zero, relative to the variance.
@@ -170,24 +172,28 @@ def _open_variances(found: OpenFit, rows: Rows) -> dict[str, float]:
     squares = np.einsum("cp,cpg->cg", matrix, gains) ** 2
     variances = _by_source(found.errors, squares, distribution.weights)
     means = distribution.of(rows).locations[:, 0]
-    size, linear = found.grid.ion_size[cell], found.grid.linear_coefficient[cell]
+    grid = found.grid
     total = sum(variances.values())
-    for source, part in _between(means, distribution.weights, size, linear).items():
+    for source, part in _between(means, distribution.weights, grid, cell).items():
         if part > _ROUNDING * total:
             variances[source] = part
     return variances
 
 
 def _between(
-    means: FloatArray, weights: FloatArray, size: FloatArray, linear: FloatArray
+    means: FloatArray, weights: FloatArray, grid: OpenGrid, cell: IndexArray
 ) -> dict[str, float]:
-    """Split the variance between components into that of å, of c given å, and of the rest (σ)."""
+    """Split the variance between components: å, then c, then what is constant in T, then σ."""
     overall = float(weights @ means)
-    by_size = _conditional_means(means, weights, size)
-    by_cell = _conditional_means(means, weights, size + 1j * linear)
+    by_size = _conditional_means(means, weights, grid.ion_size[cell])
+    by_shape = _conditional_means(
+        means, weights, grid.ion_size[cell] + 1j * grid.linear_coefficient[cell]
+    )
+    by_cell = _conditional_means(means, weights, cell)
     return {
         _ION_SIZE: float(weights @ (by_size - overall) ** 2),
-        _LINEAR: float(weights @ (by_cell - by_size) ** 2),
+        _LINEAR: float(weights @ (by_shape - by_size) ** 2),
+        _FOLLOWS: float(weights @ (by_cell - by_shape) ** 2),
         _SCATTER: float(weights @ (means - by_cell) ** 2),
     }
 

@@ -37,9 +37,6 @@ class ParameterDistribution:
         Infinite for normal components.
     cell : (c,) ndarray of int
         Which cell of a stacked salt law each component belongs to; zeros for a named law.
-    scatter_covariance : (p, p) ndarray
-        The part of the covariance that has the degrees of freedom, where the rest (errors that
-        runs share) is known; all of it if not given.
     """
 
     names: tuple[str, ...]
@@ -48,7 +45,6 @@ class ParameterDistribution:
     covariances: FloatArray
     degrees_of_freedom: float = math.inf
     cell: IndexArray | None = None
-    scatter_covariance: FloatArray | None = None
 
     def of(self, rows: Rows) -> Mixture:
         """Return the distribution of affine functions of the parameters.
@@ -69,18 +65,7 @@ class ParameterDistribution:
         half = np.einsum("...np,...pq->...nq", matrix, self.covariances)
         variances = np.einsum("...np,...np->...n", half, matrix)
         scales = np.sqrt(np.maximum(variances, 0))
-        return Mixture(self.weights, locations, scales, self._degrees(matrix, variances))
-
-    def _degrees(self, matrix: FloatArray, variances: FloatArray) -> FloatArray | float:
-        """Return degrees of freedom of each result (Welch-Satterthwaite, JCGM 100, G.4.1)."""
-        if self.scatter_covariance is None or math.isinf(self.degrees_of_freedom):
-            return self.degrees_of_freedom
-        own = np.einsum("...np,pq,...nq->...n", matrix, self.scatter_covariance, matrix)
-        own = np.broadcast_to(own, variances.shape)[0]
-        total = variances[0]
-        with np.errstate(divide="ignore", invalid="ignore"):
-            degrees = self.degrees_of_freedom * (total / own) ** 2
-        return np.where(own > 0, degrees, np.inf)
+        return Mixture(self.weights, locations, scales, self.degrees_of_freedom)
 
     def joint(self, rows: Rows) -> tuple[FloatArray, FloatArray]:
         """Return mean ``(n,)`` and covariance ``(n, n)`` of affine functions, jointly."""

@@ -182,10 +182,10 @@ def _sampler(found: Found) -> Callable[[np.random.Generator, int], FloatArray]:
         means, weights = found.distribution.means, found.distribution.weights
     elif isinstance(found, SurfaceFit):
         gains = found.headline_solution.gain[None]
-        means, weights = found.distribution.means, np.ones(1)
+        means, weights = found.distribution.means[:1], np.ones(1)
     else:
         raise InputError("this fit has no Monte Carlo", "ask a fit of a named or the open law")
-    nu = found.distribution.degrees_of_freedom
+    nu = found.scatter.headline_degrees_of_freedom
     named_scatter = isinstance(found, SurfaceFit) and np.isfinite(nu)
 
     def draw(random: np.random.Generator, size: int) -> FloatArray:

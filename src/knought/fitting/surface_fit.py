@@ -15,7 +15,7 @@ from knought.fitting.distribution import ParameterDistribution
 from knought.fitting.found import Found
 from knought.fitting.observations import Observations, observe
 from knought.fitting.run_errors import settle
-from knought.fitting.scatter import judge_scatter
+from knought.fitting.scatter import judge_scatter, scale_nodes
 from knought.laws.salt import salt_law as named_salt_law
 from knought.laws.surface import Surface
 from knought.laws.temperature import temperature_law as named_temperature_law
@@ -206,20 +206,33 @@ def _distribution(
     judged: Scatter,
     shares_errors: bool,
 ) -> ParameterDistribution:
-    """Return the distribution of the parameters behind the headline ±."""
+    """Return the distribution of the parameters behind the headline ±.
+
+    Where the scatter gives u and errors are shared besides, the size of the scatter is integrated
+    over: only what it tells has its degrees of freedom, and an effective number of them (JCGM 100,
+    G.4) holds too little for few.
+    """
     chosen = scaled if judged.from_scatter and scaled is not None else solution
-    independent = None
-    if judged.from_scatter and shares_errors:
-        # Only what the scatter tells has its degrees of freedom.
-        own = chosen.gain[:, : len(chosen.residuals)]
-        independent = own @ own.T
+    if not (judged.from_scatter and shares_errors):
+        return ParameterDistribution(
+            names=surface.parameters,
+            weights=np.ones(1),
+            means=chosen.parameters[None],
+            covariances=chosen.covariance[None],
+            degrees_of_freedom=judged.headline_degrees_of_freedom,
+        )
+    nu = judged.degrees_of_freedom
+    # In units of the scale found, ν/σ² has the χ² distribution on ν degrees of freedom.
+    sigma = scale_nodes(float(nu), nu)
+    log_weight = -nu * np.log(sigma) - 0.5 * nu / sigma**2
+    weight = np.exp(log_weight - log_weight.max())
+    runs = len(chosen.residuals)
+    own, common = chosen.gain[:, :runs], chosen.gain[:, runs:]
     return ParameterDistribution(
         names=surface.parameters,
-        weights=np.ones(1),
-        means=chosen.parameters[None],
-        covariances=chosen.covariance[None],
-        degrees_of_freedom=judged.headline_degrees_of_freedom,
-        scatter_covariance=independent,
+        weights=frozen(weight / weight.sum()),
+        means=np.broadcast_to(chosen.parameters, (len(sigma), len(chosen.parameters))),
+        covariances=sigma[:, None, None] ** 2 * (own @ own.T) + common @ common.T,
     )
 
 

@@ -30,6 +30,9 @@ NOT_DESCRIBED = 1e-3
 #: the other.
 _UNLIKELY, _SIGNIFICANT = 0.01, 0.05
 
+#: More integers than this are not listed one by one.
+_MOST_LISTED = 6
+
 #: A shift between the fits of k and of ln k that is said, in standard uncertainties.
 _K_SPACE_SHIFT = 1.0
 
@@ -132,10 +135,16 @@ def _charge_verdict(free: Found, given: float | None) -> list[Caveat]:
         Caveat(
             "charge-product-undecided",
             f"These runs cannot tell the charge product: its {interval} holds "
-            f"{', '.join(str(z) for z in inside)}. Giving the reactants, or runs at lower ionic "
+            f"{_listed(inside)}. Giving the reactants, or runs at lower ionic "
             "strength, would decide it.",
         )
     ]
+
+
+def _listed(integers: list[int]) -> str:
+    if len(integers) > _MOST_LISTED:
+        return f"every integer from {integers[0]} to {integers[-1]}"
+    return ", ".join(str(z) for z in integers)
 
 
 def integers_in(low: float, high: float) -> list[int]:

@@ -6,6 +6,9 @@ contains or closely follows the extended, Güntelberg, Davies, SIT and Pitzer fo
 knows of å, c and β enters as priors. Given å and c, the rest is linear; so the law is a small grid
 of (å, c) with a weight each, and every point of it an ordinary :class:`SaltLaw`.
 
+Whether å or B å is the same at every temperature is left open as well, with even odds: two cells
+for each (å, c).
+
 The grid: Gauss-Legendre nodes in å over its uniform prior (the posterior need not vanish at the
 ends, where a trapezoid would be crude) and equally spaced nodes in c over ±3 standard deviations
 (the trapezoid rule converges fastest for what falls off like a normal distribution).
@@ -46,6 +49,9 @@ class Priors:
         Mean and standard uncertainty of c in L/mol, normal; zero uncertainty fixes it.
     interaction_coefficient
         Mean and standard uncertainty of β in L/mol, normal.
+    constant_size
+        Probability that it is å that is the same at every temperature, as in the extended law, and
+        not the product B å, as in the others; 0 or 1 decides it.
 
     Raises
     ------
@@ -56,6 +62,7 @@ class Priors:
     ion_size: tuple[float, float] = (1 * _ANGSTROM, 12 * _ANGSTROM)
     linear_coefficient: tuple[float, float] = (0.1, 0.3)
     interaction_coefficient: tuple[float, float] = (0.0, 0.3)
+    constant_size: float = 0.5
 
     def __post_init__(self) -> None:
         low, high = self.ion_size
@@ -76,6 +83,11 @@ class Priors:
                     f"the prior of {name} is {mean:g} ± {deviation:g}",
                     "give a finite mean and a standard uncertainty of at least zero, in L/mol",
                 )
+        if not 0 <= self.constant_size <= 1:
+            raise InputError(
+                f"the probability of a constant ion size is {self.constant_size:g}",
+                "give it between 0 and 1",
+            )
         if self.interaction_coefficient[1] == 0 and self.interaction_coefficient[0] != 0:
             # A fixed β other than zero would have to be carried as an offset: one more path for
             # something a narrow prior says just as well.
@@ -99,6 +111,8 @@ class OpenGrid:
         ``(c, n)``.
     ion_size, linear_coefficient : (c,) ndarray
         å in m and c in L/mol of each cell.
+    follows_water : (c,) ndarray
+        1 where å is the same at every temperature, 0 where B å is.
     log_weight : (c,) ndarray
         Logarithm of each cell's prior weight; the weights add up to one.
     priors
@@ -108,6 +122,7 @@ class OpenGrid:
     law: SaltLaw
     ion_size: FloatArray
     linear_coefficient: FloatArray
+    follows_water: FloatArray
     log_weight: FloatArray
     priors: Priors
 
@@ -126,6 +141,7 @@ class OpenGrid:
         form = OpenForm(
             ion_size=float(self.ion_size[number]),
             linear_coefficient=float(self.linear_coefficient[number]),
+            follows_water=float(self.follows_water[number]),
         )
         return replace(self.law, form=form)
 
@@ -148,18 +164,23 @@ def open_grid(priors: Priors = DEFAULT_PRIORS, refinement: int = 1) -> OpenGrid:
     Returns
     -------
     OpenGrid
-        17 x 13 cells at `refinement` 1 with the default priors.
+        17 x 13 x 2 cells at `refinement` 1 with the default priors.
     """
     sizes, size_weights = _uniform_nodes(*priors.ion_size, _ION_SIZE_NODES * refinement)
     linears, linear_weights = _normal_nodes(
         *priors.linear_coefficient, (_LINEAR_NODES - 1) * refinement + 1
     )
-    size, linear = np.meshgrid(sizes, linears, indexing="ij")
-    weight = np.outer(size_weights, linear_weights).ravel()
+    odds = np.array([1 - priors.constant_size, priors.constant_size])
+    follows = np.flatnonzero(odds > 0).astype(float)
+    size, linear, share = (
+        axis.ravel() for axis in np.meshgrid(sizes, linears, follows, indexing="ij")
+    )
+    weight = np.einsum("a,b,c->abc", size_weights, linear_weights, odds[odds > 0]).ravel()
     return OpenGrid(
-        law=_stacked_law(size.ravel(), linear.ravel(), priors.interaction_coefficient[1] > 0),
-        ion_size=frozen(size.ravel()),
-        linear_coefficient=frozen(linear.ravel()),
+        law=_stacked_law(size, linear, share, priors.interaction_coefficient[1] > 0),
+        ion_size=frozen(size),
+        linear_coefficient=frozen(linear),
+        follows_water=frozen(share),
         log_weight=frozen(np.log(weight / weight.sum())),
         priors=priors,
     )
@@ -183,8 +204,10 @@ def narrowed(priors: Priors, factor: float) -> Priors:
     )
 
 
-def _stacked_law(size: FloatArray, linear: FloatArray, fits_interaction: bool) -> SaltLaw:
-    form = OpenForm(ion_size=frozen(size[:, None]), linear_coefficient=frozen(linear[:, None]))
+def _stacked_law(
+    size: FloatArray, linear: FloatArray, share: FloatArray, fits_interaction: bool
+) -> SaltLaw:
+    form = OpenForm(size[:, None], linear[:, None], share[:, None])
     return SaltLaw(OPEN, "open law", form, fits_interaction=fits_interaction)
 
 

@@ -202,6 +202,7 @@ def _both_standard_errors(found: SurfaceFit) -> dict[str, Any]:
 def _priors_record(priors: Priors) -> dict[str, Any]:
     size = quantity("ion_size")
     return {
+        "constant_size": {"probability": priors.constant_size},
         "ion_size": {
             "distribution": "uniform",
             "low": size.shown(priors.ion_size[0]),

@@ -93,6 +93,10 @@ def prior_sentence(priors: Priors) -> str:
         parts.append(
             f"{sign} = {mean:g} ± {deviation:g} L/mol" if deviation else f"{sign} {mean:g}"
         )
+    if priors.constant_size in {0.0, 1.0}:
+        parts.append(f"{'å' if priors.constant_size else 'B å'} the same at every temperature")
+    else:
+        parts.append(f"å (rather than B å) the same at every T in {priors.constant_size:.0%}")
     return f"with {join_words(parts)} before the data"
 
 

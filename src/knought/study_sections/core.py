@@ -36,6 +36,8 @@ class RatesSection(Section):
     file: str
     sheet: str | int | None = None
     uncertainty_means: str | None = None
+    decimal: Literal[".", ","] | None = None
+    excess: str | None = None
 
 
 class ReactionSection(Section):
@@ -61,6 +63,7 @@ class PriorsSection(Section):
     interaction_coefficient: tuple[LitrePerMol, LitrePerMol] = (
         DEFAULT_PRIORS.interaction_coefficient
     )
+    constant_size: float = Field(default=DEFAULT_PRIORS.constant_size, ge=0, le=1)
 
     def priors(self) -> Priors:
         """Return them as the fit takes them."""
@@ -68,6 +71,7 @@ class PriorsSection(Section):
             (self.ion_size[0], self.ion_size[1]),
             (self.linear_coefficient[0], self.linear_coefficient[1]),
             (self.interaction_coefficient[0], self.interaction_coefficient[1]),
+            self.constant_size,
         )
 
 

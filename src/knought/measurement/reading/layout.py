@@ -80,6 +80,11 @@ class Layout:
     problems: tuple[Problem, ...] = ()
     remarks: tuple[str, ...] = field(default=())
 
+    @property
+    def understood(self) -> int:
+        """Number of columns whose header is one of ours, rightly written."""
+        return sum(column.header is not None for column in self.columns)
+
 
 @dataclass(frozen=True)
 class _Candidate:

@@ -176,7 +176,11 @@ def _text_grid(text: str, name: str, encoding: str) -> TextGrid:
     declared = declared_delimiter(text)
     body = unmarked(text)
     possible = [declared] if declared else [mark for mark in DELIMITERS if mark in body]
-    fitting = [mark for mark in possible if _has_header(body, mark, name)]
+    understood = {mark: _headers(body, mark, name) for mark in possible}
+    # Two headers rightly written outweigh any number of cells that only begin as one.
+    fitting = [mark for mark in possible if understood[mark] >= 2] or [
+        mark for mark in possible if understood[mark] >= 0
+    ]
     if len(fitting) > 1:
         both = " or at each ".join(DELIMITERS[mark] for mark in fitting)
         raise InputError(
@@ -198,15 +202,19 @@ def _text_grid(text: str, name: str, encoding: str) -> TextGrid:
     )
 
 
-def _has_header(text: str, delimiter: str, name: str) -> bool:
-    """Whether a delimiter gives a text a header; only its first rows are taken apart."""
+def _headers(text: str, delimiter: str, name: str) -> int:
+    """Return how many headers a delimiter gives a text; -1 where it gives no header row.
+
+    Only the first rows are taken apart.
+    """
     rows = delimited_rows(text, delimiter, name)
     try:
         head = packed(islice(rows, 4 * SEARCHED_ROWS), name)
     except InputError:
         # Whoever takes the whole text apart says what is wrong with it.
-        return False
-    return find_layout(TextGrid(name, "delimited", head, delimiter=delimiter)) is not None
+        return -1
+    layout = find_layout(TextGrid(name, "delimited", head, delimiter=delimiter))
+    return -1 if layout is None else layout.understood
 
 
 def _no_header(grid: TextGrid) -> Problem:
