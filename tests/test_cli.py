@@ -223,3 +223,13 @@ def test_reading_shows_what_was_understood_and_writes_it_clean(
     assert clean.read_text(encoding="utf-8").splitlines()[0].startswith("run,T/K,I/(mol/L)")
     assert (tmp_path / "clean.schema.json").exists()
     assert run("fit", clean) == 0
+
+
+def test_monte_carlo_stands_beside_the_closed_form(
+    tmp_path: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    table = written(tmp_path, LIKE_CHARGES)
+    assert run("fit", table, "--monte-carlo", "20000", "--seed", "7") == 0
+    said = capsys.readouterr().out
+    assert "Monte Carlo, 20000 draws, seed 7" in said
+    assert said.count(" yes") >= 6

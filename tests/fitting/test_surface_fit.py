@@ -60,7 +60,7 @@ def test_a_joint_fit_is_that_of_statsmodels(temperature: str, salt: str) -> None
     assert names == found.surface.parameters
     assert np.allclose(found.distribution.mean, reference.params / size, rtol=1e-9)
     expected = reference.cov_params() / np.outer(size, size)
-    assert np.allclose(covariance, expected, rtol=1e-8)
+    assert np.allclose(covariance, expected, rtol=1e-9)
 
 
 def test_standard_errors_from_the_scatter_are_those_of_statsmodels() -> None:
@@ -411,3 +411,17 @@ def test_predictions_outside_the_runs_say_so() -> None:
     ]
     with pytest.raises(kn.InputError, match="0-100 °C"):
         found.rate_constant(T=400.0)
+
+
+def test_runs_that_are_not_in_liquid_water_are_named() -> None:
+    T = np.array([288.15, 298.15, 398.15, 308.15])
+    rates = kn.RateTable.from_arrays(
+        T,
+        [1.0, 2.0, 30.0, 4.0],
+        [0.01, 0.1, 0.01, 0.1],
+        unit="L mol^-1 s^-1",
+        run=["a", "b", "hot", "d"],
+    )
+    with pytest.raises(kn.InputError, match=r"run hot was measured at 398\.15 K"):
+        kn.fit(rates, salt_law="davies")
+    assert kn.fit(rates, salt_law="linear").salt_law == "linear"

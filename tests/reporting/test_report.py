@@ -258,8 +258,8 @@ def test_the_budget_is_told_alike_in_table_figure_and_record(assessment: kn.Asse
     listed: list[float] = [float(row[2].raw or 0.0) for row in rows]
     assert sum(listed) == pytest.approx(1)
     ax = budget_bars(assessment, blank_figure().add_subplot())
-    widths = sum(float(patch.get_width()) for patch in ax.patches)  # type: ignore[attr-defined]
-    assert widths == pytest.approx(3)  # three results, each adding up to one
+    widths = [float(patch.get_bbox().width) for patch in ax.patches]  # type: ignore[attr-defined]
+    assert sum(widths) == pytest.approx(3)  # three results, each adding up to one
     kept = record(assessment)["budget"]["rate_constant"]["variances"]
     assert sum(kept.values()) == pytest.approx(
         record(assessment)["parameters"]["rate_constant"]["standard_uncertainty"] ** 2, rel=1e-8

@@ -15,6 +15,9 @@ from knought.cli.tables import add_table, read_table
 if TYPE_CHECKING:
     import argparse
 
+    from knought.fitting.assess import Assessment
+    from knought.rounding import Layout
+
 __all__ = ["HELP", "NAME", "add_arguments", "run"]
 
 NAME = "fit"
@@ -36,6 +39,17 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
         "--reactants",
         metavar="TEXT",
         help='what enters the rate-determining step, with charges: "A^2- + B^-"',
+    )
+    parser.add_argument(
+        "--monte-carlo",
+        nargs="?",
+        type=int,
+        const=0,
+        metavar="DRAWS",
+        help="check every ± by Monte Carlo (JCGM 101); as many draws as it takes, if no number",
+    )
+    parser.add_argument(
+        "--seed", type=int, default=None, metavar="N", help="seed of the draws (20250101)"
     )
     parser.add_argument("--json", metavar="FILE", help="also write the record as JSON")
     add_format(parser)
@@ -60,6 +74,33 @@ def run(options: argparse.Namespace) -> None:
     layout = layout_of(options)
     say("\n".join([*account_lines(rates), ""]), layout)
     say("\n" + summary(assessment, layout), layout)
+    if options.monte_carlo is not None:
+        say("\n" + _drawn(assessment, options, layout), layout)
     if options.json:
         atomic_write_text(Path(options.json), record_text(assessment))
         say(f"\nrecord: {options.json}", layout)
+
+
+def _drawn(assessment: Assessment, options: argparse.Namespace, layout: Layout) -> str:
+    """Draw, with a progress bar on the terminal, and arrange what was found."""
+    from tqdm import tqdm
+
+    from knought.fitting.monte_carlo import monte_carlo
+    from knought.numerics.seeds import DEFAULT_SEED
+    from knought.reporting.cells import plain_lines
+    from knought.reporting.uncertainty_tables import monte_carlo_table
+
+    seed = DEFAULT_SEED if options.seed is None else options.seed
+    with tqdm(unit=" draws", disable=None, leave=False) as bar:
+
+        def progress(done: int) -> None:
+            bar.update(done - bar.n)
+
+        drawn = monte_carlo(
+            assessment.headline,
+            options.monte_carlo or None,
+            seed=seed,
+            progress=progress,
+        )
+    table = monte_carlo_table(drawn)
+    return "\n".join([table.title, *plain_lines(table, layout)])

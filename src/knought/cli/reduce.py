@@ -55,7 +55,10 @@ def run(options: argparse.Namespace) -> None:
 
 def _lines(found: Reduction) -> list[str]:
     lines = list(found.account)
-    lines += [f"warning ({each.code}): {each.message}" for each in found.caveats]
+    for code in dict.fromkeys(each.code for each in found.caveats):
+        alike = [each for each in found.caveats if each.code == code]
+        more = f" (and {len(alike) - 1} more runs likewise)" if len(alike) > 1 else ""
+        lines.append(f"warning ({code}): {alike[0].message}{more}")
     if found.shared_errors:
         lines += ["", "Errors that the runs share; these lines belong into the study file:"]
     for each in found.shared_errors:

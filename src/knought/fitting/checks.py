@@ -6,7 +6,8 @@ from typing import TYPE_CHECKING, NoReturn
 
 import numpy as np
 
-from knought.errors import Caveat, InputError
+from knought.chemistry.water import COLDEST, HOTTEST
+from knought.errors import Caveat, InputError, Problem
 
 if TYPE_CHECKING:
     from knought.arrays import FloatArray
@@ -23,6 +24,9 @@ __all__ = [
     "require_levels",
     "uncertainty_caveats",
 ]
+
+#: A temperature converted from a printed one may miss the bound of liquid water by rounding.
+_SLACK = 1e-9
 
 #: Outside the measured temperatures by less than this (K) is not called extrapolation.
 _TEMPERATURE_MARGIN = 1.0
@@ -41,9 +45,11 @@ def require_levels(seen: Observations, surface: Surface, *, charges_given: bool)
     Raises
     ------
     InputError
-        If a slope with temperature is asked of one temperature, a curvature of two, a salt effect
-        of no or one ionic strength, or there are fewer runs than parameters.
+        If a law needs water and a run lies outside 0-100 °C, a slope with temperature is asked of
+        one temperature, a curvature of two, a salt effect of no or one ionic strength, or there
+        are fewer runs than parameters.
     """
+    _require_water(seen, surface.salt_law)
     temperatures = len(seen.temperature_levels)
     names = surface.parameters
     law = surface.temperature_law
@@ -61,6 +67,32 @@ def require_levels(seen: Observations, surface: Surface, *, charges_given: bool)
         raise InputError(
             f"{seen.runs} runs cannot determine {len(names)} parameters ({', '.join(names)})",
             "measure more runs, or choose laws with fewer parameters",
+        )
+
+
+def _require_water(seen: Observations, law: SaltLaw) -> None:
+    """Refuse runs outside 0-100 °C where a law needs water, each by its label.
+
+    Raises
+    ------
+    InputError
+        If there are any.
+    """
+    if not law.needs_water:
+        return
+    outside = np.flatnonzero((seen.T < COLDEST - _SLACK) | (seen.T > HOTTEST + _SLACK))
+    if len(outside):
+        labels = seen.run or tuple(str(i + 1) for i in range(seen.runs))
+        raise InputError(
+            [
+                Problem(
+                    f"run {labels[i]} was measured at {seen.T[i]:.2f} K, and the salt law "
+                    f"{law.name!r} needs liquid water (0-100 °C)",
+                    "check the temperature and its unit; or choose the salt law 'none'",
+                    column="T",
+                )
+                for i in outside
+            ]
         )
 
 

@@ -136,7 +136,7 @@ def subset(seen: Observations, kept: IndexArray) -> Observations:
             return tuple(values[i] for i in kept)
         return frozen(np.asarray(values)[kept])
 
-    names = ("ln_k", "u", "T", "I", "u_T", "u_I", "batch", "salt")
+    names = ("ln_k", "u", "T", "I", "u_T", "u_I", "batch", "salt", "run")
     return replace(seen, **{name: part(getattr(seen, name)) for name in names})  # type: ignore[arg-type]
 
 

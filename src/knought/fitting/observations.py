@@ -49,6 +49,8 @@ class Observations:
         Batch and salt of each run, where the table has them.
     shared
         Errors that several runs share.
+    run
+        Labels of the runs, for messages.
     """
 
     ln_k: FloatArray
@@ -62,6 +64,7 @@ class Observations:
     batch: tuple[str, ...] | None = None
     salt: tuple[str, ...] | None = None
     shared: tuple[SharedError, ...] = ()
+    run: tuple[str, ...] | None = None
 
     @property
     def runs(self) -> int:
@@ -129,6 +132,7 @@ def observe(rates: RateTable, shared_errors: Sequence[SharedError] = ()) -> Obse
         batch=used.batch,
         salt=used.salt,
         shared=tuple(shared_errors),
+        run=used.run,
     )
 
 

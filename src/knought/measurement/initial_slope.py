@@ -4,8 +4,8 @@ The rule, stated once:
 
 1. Points before the dead time are left out; the polynomial is in t from the moment of mixing, so
    its linear coefficient is the slope at t = 0 whatever was left out.
-2. How the noise is correlated is learnt from the whole record, against a smooth curve of fifth
-   order (:mod:`knought.numerics.correlated_noise`); what stays unknown of it is in the answer.
+2. How the noise is correlated is learnt from the whole record, against a smooth curve of six
+   terms (:mod:`knought.numerics.correlated_noise`); what stays unknown of it is in the answer.
 3. Of the windows 1, 3/4, 9/16, ... of the record, all from its beginning, the longest is taken in
    which a polynomial of order 1, 2 or 3 leaves nothing that terms up to the fifth order explain
    (F-test at 5 %).
@@ -22,8 +22,8 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from knought.arrays import FloatArray, IndexArray
 from knought.errors import Caveat, InputError
+from knought.measurement.first_order import rough_rate_constants
 from knought.measurement.traces import checked_trace
 from knought.numerics.correlated_noise import (
     Noise,
@@ -37,6 +37,8 @@ from knought.numerics.correlated_noise import (
 if TYPE_CHECKING:
     from numpy.typing import ArrayLike
 
+    from knought.arrays import BoolArray, FloatArray, IndexArray
+    from knought.numerics.correlated_noise import Binned
     from knought.numerics.quantiles import Mixture
 
 __all__ = ["InitialSlope", "Slopes", "initial_slope", "initial_slopes"]
@@ -44,7 +46,10 @@ __all__ = ["InitialSlope", "Slopes", "initial_slope", "initial_slopes"]
 #: With fewer points correlation cannot be told, and every point is used.
 ENOUGH_POINTS = 24
 
-_WINDOWS = tuple(0.75**i for i in range(7))
+_WINDOWS = tuple(0.75**i for i in range(13))
+
+#: A smooth curve for learning the noise bends at least this much over the record.
+_LEAST_BEND = 2.0
 _HIGHEST_TESTED, _HIGHEST_ADEQUATE = 5, 3
 _SIGNIFICANCE = 0.05
 
@@ -82,7 +87,7 @@ class Slopes:
     order: IndexArray
     points: IndexArray
     window_end: FloatArray
-    adequate: IndexArray
+    adequate: BoolArray
     curvature: FloatArray
     end_ratio: FloatArray
     correlation_share: FloatArray
@@ -204,11 +209,9 @@ def initial_slopes(
     whole = binned(t, y)
     times = correlation_times(whole)
     wander = len(t) >= ENOUGH_POINTS
-    smooth = min(_HIGHEST_TESTED, len(t) // 3)
-    scaled = 2 * (whole.time - t[0]) / (t[-1] - t[0]) - 1
     noise = Noise(whole, times, wander=wander)
-    learnt = project(whole, np.polynomial.legendre.legvander(scaled, smooth), noise)
-    weights = learnt.weights(smooth + 1)
+    smooth = _smooth(t, y, whole)
+    weights = project(whole, smooth, noise).weights(smooth.shape[-1])
     choice = _Choice(len(y), weights)
     choice.correlation(noise)
     windows = _WINDOWS if window is None and wander else (1.0,)
@@ -218,6 +221,22 @@ def initial_slopes(
             break
         _try_window(choice, t[inside], y[:, inside], times, wander=wander, order=order)
     return choice.made()
+
+
+def _smooth(t: FloatArray, y: FloatArray, whole: Binned) -> FloatArray:
+    """Return columns of a curve that follows any reasonable course of the whole record.
+
+    A cubic and an exponential of each record's own rate with its slope, for records that go to
+    their end; few points get a parabola.
+    """
+    x = (t - t[0]) / (t[-1] - t[0])
+    if len(t) < ENOUGH_POINTS:
+        return whole.averaged(x[:, None] ** np.arange(min(3, len(t) - 2)))
+    k = np.maximum(rough_rate_constants(whole.time, whole.values) * (t[-1] - t[0]), _LEAST_BEND)
+    decay = np.exp(-k[:, None] * x)
+    shared = np.broadcast_to(x[:, None] ** np.arange(4), (len(y), len(t), 4))
+    columns = np.concatenate([shared, decay[..., None], (x * decay)[..., None]], axis=2)
+    return whole.averaged(columns)
 
 
 def _try_window(
@@ -268,11 +287,9 @@ class _Choice:
         each[1:] = np.repeat(noise.times, per_time)
         self.noise[1] = (shares * each).sum(axis=1) / np.maximum(self.noise[0], 1e-300)
 
-    def take(
-        self, passed: FloatArray, fits: Projected, order: int, end: float, points: int
-    ) -> None:
+    def take(self, passed: BoolArray, fits: Projected, order: int, end: float, points: int) -> None:
         """Give the records that pass and are still open this window and order."""
-        chosen = self.open & np.asarray(passed, dtype=bool)
+        chosen = self.open & passed
         self._note(chosen, fits, order, end, points)
         self.open &= ~chosen
 
@@ -281,7 +298,7 @@ class _Choice:
         self._note(self.open, fits, order, end, points)
 
     def _note(
-        self, chosen: FloatArray, fits: Projected, order: int, end: float, points: int
+        self, chosen: BoolArray, fits: Projected, order: int, end: float, points: int
     ) -> None:
         if not np.any(chosen):
             return

@@ -133,7 +133,7 @@ class Noise:
     def __init__(
         self, record: Binned, times: FloatArray | None = None, *, wander: bool = True
     ) -> None:
-        t, n = record.time, len(record.time)
+        t = record.time
         self.times = correlation_times(record) if times is None else times
         self._scale = np.sqrt(record.counts)
         distance = np.abs(t[:, None] - t)
@@ -225,10 +225,10 @@ class Projected:
         moved = (inverse @ right[..., :order, None])[..., 0]
         rss = square - np.einsum("mcj,mcj->mc", right[..., :order], moved)
         coefficients = self.start[:, None, :order] + moved
-        return coefficients, inverse, np.maximum(rss, 1e-300)
+        return coefficients, np.asarray(inverse, dtype=float), np.maximum(rss, 1e-300)
 
     def log_weight(self, order: int) -> FloatArray:
-        """Return ln (prior times residual likelihood) of each cell, ``(m, c)``, up to a constant."""
+        """Return ln (prior times residual likelihood) of each cell, ``(m, c)``, but a constant."""
         _, inverse, rss = self.along(order)
         determinant = np.linalg.slogdet(inverse)[1]
         return np.asarray(

@@ -18,11 +18,19 @@ from knought.reporting.cells import (
     text_column,
     words,
 )
+from knought.rounding import unit_text
 
 if TYPE_CHECKING:
     from knought.fitting.assess import Assessment
+    from knought.fitting.monte_carlo import Drawn, MonteCarlo
 
-__all__ = ["BUDGETED", "budget_table", "influence_table", "prior_table"]
+__all__ = [
+    "BUDGETED",
+    "budget_table",
+    "influence_table",
+    "monte_carlo_table",
+    "prior_table",
+]
 
 #: Results whose budget is shown.
 BUDGETED = ("rate_constant", "activation_energy", "activation_entropy", "charge_product")
@@ -145,4 +153,45 @@ def influence_table(assessment: Assessment) -> Table | None:
         tuple(columns),
         rows,
         ("Changes in units of the standard uncertainty with everything in; the largest ones.",),
+    )
+
+
+def monte_carlo_table(found: MonteCarlo) -> Table:
+    """Return what drawing gives beside the closed form: JCGM 101, clause 8."""
+    rows = tuple(_drawn_row(each) for each in found.parameters.values())
+    how = "" if found.converged else "; not yet stable to two digits of u"
+    return Table(
+        "monte-carlo",
+        f"Monte Carlo, {found.draws} draws, seed {found.seed}{how}",
+        (
+            text_column("quantity"),
+            number_column("u, drawn"),
+            number_column("u, closed form"),
+            number_column("95 % interval, drawn"),
+            number_column("shortest"),
+            number_column("closed form"),
+            text_column("unit"),
+            text_column("ends agree"),
+        ),
+        rows,
+        (
+            "Ends agree: both ends of the closed form lie within half a unit of the first "
+            "significant digit of u of those drawn (JCGM 101, 8.1).",
+        ),
+    )
+
+
+def _drawn_row(drawn: Drawn) -> tuple[Cell, ...]:
+    what, u = drawn.quantity, drawn.standard_uncertainty
+    spans = (drawn.interval(), drawn.shortest_interval(), drawn.linear_interval)
+    texts = [
+        " to ".join(what.rounded(end, u).number() for end in (low, high)) for low, high in spans
+    ]
+    return (
+        words(what.symbol.text),
+        number(float(f"{what.shown(u):.3g}")),
+        number(float(f"{what.shown(drawn.linear_uncertainty):.3g}")),
+        *(words(text) for text in texts),
+        words(unit_text(what.shown_unit)),
+        words("yes" if drawn.validates_linear() else "no"),
     )

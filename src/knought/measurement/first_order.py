@@ -1,0 +1,503 @@
+"""First-order and pseudo-first-order traces, with the end point unknown.
+
+The idea first: signal = s∞ + (s₀ - s∞) e^(-kt) is linear in everything but k. For a given k the
+levels are a linear least-squares problem (separable least squares, Golub and Pereyra, SIAM J.
+Numer. Anal. 10 (1973) 413), so that one search over ln k finds the best fit without a starting
+value: a grid over everything the trace can tell, then Gauss-Newton steps inside the best bracket.
+Points before the dead time are left out; an exponential doesn't care where it begins.
+
+The noise may be correlated (:mod:`knought.numerics.correlated_noise`): with 24 points or more it is
+learnt from the residuals, and k is a mixture over what it may be; with fewer, points count as
+independent.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from knought.errors import Caveat, InputError
+from knought.measurement.first_order_pattern import Pattern, pattern_of
+from knought.measurement.traces import checked_trace
+from knought.numerics.correlated_noise import Noise, Projected, binned, mixture_of, project
+
+if TYPE_CHECKING:
+    from numpy.typing import ArrayLike
+
+    from knought.arrays import FloatArray, IndexArray
+    from knought.numerics.quantiles import Mixture
+
+__all__ = ["FirstOrder", "FirstOrders", "first_order", "first_orders", "rough_rate_constants"]
+
+#: With fewer points correlation cannot be told.
+ENOUGH_POINTS = 24
+
+#: Search over k times the span of the trace.
+_SLOWEST, _GRID = 1e-3, 120
+_MOST_STEPS, _LAST_STEP = 80, 1e-14
+
+#: k times span below which the end point is guessed from a curve that hardly bends.
+_FAR_END = 1.0
+
+
+@dataclass(frozen=True)
+class _Model:
+    """Which levels are unknown.
+
+    Attributes
+    ----------
+    initial, final
+        Levels that are known.
+    drift
+        Whether a linear drift is fitted.
+    """
+
+    initial: float | None
+    final: float | None
+    drift: bool
+
+    def data(self, y: FloatArray) -> FloatArray:
+        """Return the signals less the level that is known."""
+        known = self.initial if self.initial is not None else self.final
+        return y if known is None else y - known
+
+    def columns(self, t: FloatArray, k: FloatArray) -> FloatArray:
+        """Return the linear columns for each k, ``(m, n, q)``; the amplitude's is the first."""
+        shape = (len(k), len(t))
+        decay = np.exp(-k[:, None] * t)
+        columns = [-np.expm1(-k[:, None] * t) if self.initial is not None else decay]
+        if self.initial is None and self.final is None:
+            columns.append(np.ones(shape))
+        if self.drift:
+            columns.append(np.broadcast_to(t / t[-1], shape))
+        return np.stack(columns, axis=2)
+
+    def slope(self, t: FloatArray, k: FloatArray) -> FloatArray:
+        """Return ∂(first column)/∂ln k, ``(m, n)``."""
+        sign = 1.0 if self.initial is not None else -1.0
+        x = k[:, None] * t
+        return np.asarray(sign * x * np.exp(-x))
+
+
+@dataclass(frozen=True, eq=False)
+class FirstOrders:
+    """Rate constants of m records on the same times.
+
+    Attributes
+    ----------
+    weights, values, scales : (m, c) ndarray
+        Mixture of Student t distributions of each k.
+    degrees_of_freedom
+        The same for all.
+    rate_constants, levels : (m,), (m, q) ndarray
+        Ordinary least-squares k and linear coefficients, amplitude first.
+    u_rate_constants, u_levels : (m,), (m, q) ndarray
+        Their standard uncertainties with independent noise.
+    residual_deviation : (m,) ndarray
+        √(RSS/ν) of the ordinary fit.
+    correlation_share : (m,) ndarray
+        Mean share of correlated noise in one point's variance.
+    """
+
+    weights: FloatArray
+    values: FloatArray
+    scales: FloatArray
+    degrees_of_freedom: int
+    rate_constants: FloatArray
+    levels: FloatArray
+    u_rate_constants: FloatArray
+    u_levels: FloatArray
+    residual_deviation: FloatArray
+    correlation_share: FloatArray
+
+    @property
+    def value(self) -> FloatArray:
+        """Mean of each k."""
+        return np.asarray(np.sum(self.weights * self.values, axis=1))
+
+    @property
+    def standard_uncertainty(self) -> FloatArray:
+        """Standard uncertainty of each k."""
+        spread = (self.values - self.value[:, None]) ** 2
+        return np.asarray(np.sqrt(np.sum(self.weights * (self.scales**2 + spread), axis=1)))
+
+    def covered(self, truth: float, coverage: float = 0.95) -> FloatArray:
+        """Whether each interval of that coverage holds `truth`, as ones and zeros."""
+        from scipy.special import stdtr
+
+        standard = (truth - self.values) / self.scales
+        cdf = np.sum(self.weights * stdtr(self.degrees_of_freedom, standard), axis=1)
+        return np.asarray(np.abs(cdf - 0.5) <= coverage / 2, dtype=float)
+
+
+@dataclass(frozen=True, eq=False)
+class FirstOrder:
+    """A first-order rate constant from a trace.
+
+    Attributes
+    ----------
+    value, standard_uncertainty
+        k in s^-1 (or one over the unit of time).
+    distribution
+        The mixture of Student t distributions that they come from.
+    naive_uncertainty
+        What least squares with independent noise claims.
+    initial_level, final_level
+        Signal at t = 0 and at the end of the reaction.
+    u_initial_level, u_final_level
+        Their standard uncertainties with independent noise; zero where the level was given.
+    residual_deviation
+        √(RSS/ν), in the unit of the signal.
+    points
+        Points used.
+    degrees_of_freedom
+        Of the Student t distributions.
+    half_lives
+        How many half-lives the trace covers.
+    correlation_share
+        Mean share of correlated noise in one point's variance.
+    pattern
+        Whether the residuals follow a pattern, and what two exponentials would make of it.
+    caveats
+        What a reader must know.
+    """
+
+    value: float
+    standard_uncertainty: float
+    distribution: Mixture = field(repr=False)
+    naive_uncertainty: float
+    initial_level: float
+    final_level: float
+    u_initial_level: float
+    u_final_level: float
+    residual_deviation: float
+    points: int
+    degrees_of_freedom: int
+    half_lives: float
+    correlation_share: float
+    pattern: Pattern
+    caveats: tuple[Caveat, ...] = ()
+
+    def interval(self, coverage: float = 0.95) -> tuple[float, float]:
+        """Return the interval of the given coverage.
+
+        Raises
+        ------
+        InputError
+            If `coverage` is not between 0 and 1.
+        """
+        low, high = self.distribution.interval(coverage)
+        return float(low), float(high)
+
+
+def first_orders(
+    time: ArrayLike,
+    signals: ArrayLike,
+    initial: float | None = None,
+    *,
+    final: float | None = None,
+    dead_time: float | None = None,
+    drift: bool = False,
+) -> FirstOrders:
+    """Return k of m records on the same times.
+
+    Parameters
+    ----------
+    time : (n,) array_like
+        Times from mixing, rising.
+    signals : (m, n) array_like
+        Records.
+    initial, final
+        A level that is known: at t = 0, or at the end. At most one.
+    dead_time
+        Points before it are left out.
+    drift
+        Whether to fit a linear drift of the instrument as well.
+
+    Raises
+    ------
+    InputError
+        If times or signals cannot be, both levels are given, too few points are left, or a trace
+        does not bend.
+    """
+    t, y = checked_trace(time, signals, dead_time)
+    if initial is not None and final is not None:
+        raise InputError(
+            "both levels of a first-order trace are given",
+            "give the one that is known best; the trace says the other",
+        )
+    model = _Model(initial, final, drift)
+    unknowns = 2 + (initial is None and final is None) + drift
+    if len(t) <= unknowns:
+        raise InputError(
+            f"{len(t)} points are left for {unknowns} unknowns",
+            f"record at least {unknowns + 1} points",
+        )
+    data = model.data(y)
+    k = _refined(model, t, data, _searched(model, t, data))
+    levels, covariance, deviation = _ordinary(model, t, data, k)
+    fits, record_points = _correlated(model, t, data, k, levels)
+    weights = fits.weights(unknowns)
+    shift, scale = fits.parameter(unknowns - 1, unknowns)
+    noise_shares = fits.shares
+    u = np.sqrt(np.diagonal(covariance, axis1=1, axis2=2))
+    return FirstOrders(
+        weights,
+        k[:, None] * (1 + shift),
+        k[:, None] * scale,
+        record_points - unknowns,
+        k,
+        levels,
+        k * u[:, -1],
+        u[:, :-1],
+        deviation,
+        weights @ noise_shares,
+    )
+
+
+def _searched(model: _Model, t: FloatArray, y: FloatArray) -> FloatArray:
+    """Return the best k of a grid for each record.
+
+    Raises
+    ------
+    InputError
+        If it is the slowest or the fastest of the grid.
+    """
+    grid = _grid(t)
+    place = _best_of(grid, model, t, y)
+    ends = {0: "slower", len(grid) - 1: "faster"}
+    for end, word in ends.items():
+        if np.any(place == end):
+            remedy = (
+                "follow it for at least one half-life, or use the initial slope"
+                if end == 0
+                else "record faster, or check dead time and the unit of time"
+            )
+            raise InputError(f"the trace is {word} than its points can tell", remedy)
+    return grid[place]
+
+
+def _grid(t: FloatArray) -> FloatArray:
+    """Return rate constants from a line's to one that is over at the second point."""
+    span, fastest = float(t[-1] - t[0]), 6.0 / float(np.min(np.diff(t)))
+    count = max(_GRID, int(20 * np.log(fastest * span)))
+    return np.geomspace(_SLOWEST / span, fastest, count)
+
+
+def _best_of(grid: FloatArray, model: _Model, t: FloatArray, y: FloatArray) -> IndexArray:
+    """Return the place in the grid of each record's best k."""
+    best, place = np.full(len(y), -np.inf), np.zeros(len(y), dtype=np.intp)
+    for i, k in enumerate(grid):
+        basis = np.linalg.qr(model.columns(t, np.array([k]))[0])[0]
+        explained = np.sum((y @ basis) ** 2, axis=1)
+        better = explained > best
+        best[better], place[better] = explained[better], i
+    return place
+
+
+def rough_rate_constants(time: FloatArray, signals: FloatArray) -> FloatArray:
+    """Return k of m records within a few per cent, whatever they look like.
+
+    Parameters
+    ----------
+    time, signals : (n,), (m, n) ndarray
+        Records that were checked.
+    """
+    grid = _grid(time)
+    return grid[_best_of(grid, _Model(None, None, drift=False), time, signals)]
+
+
+def _refined(model: _Model, t: FloatArray, y: FloatArray, k: FloatArray) -> FloatArray:
+    """Refine each k by Gauss-Newton steps of the separable problem, halved where they overshoot."""
+    k = k.copy()
+    rss = _rss(model, t, y, k)
+    for _ in range(_MOST_STEPS):
+        step = np.clip(_step(model, t, y, k), -0.3, 0.3)
+        for _halving in range(30):
+            moved = _rss(model, t, y, k * np.exp(step))
+            worse = moved > rss * (1 + 1e-13)
+            if not np.any(worse):
+                break
+            step = np.where(worse, step / 2, step)
+        k *= np.exp(step)
+        rss = np.minimum(rss, moved)
+        if np.max(np.abs(step)) < _LAST_STEP:
+            break
+    return k
+
+
+def _levels(model: _Model, t: FloatArray, y: FloatArray, k: FloatArray) -> FloatArray:
+    basis, upper = np.linalg.qr(model.columns(t, k))
+    along = np.swapaxes(basis, 1, 2) @ y[..., None]
+    return np.asarray(np.linalg.solve(upper, along)[..., 0])
+
+
+def _residuals(model: _Model, t: FloatArray, y: FloatArray, k: FloatArray) -> FloatArray:
+    fitted = model.columns(t, k) @ _levels(model, t, y, k)[..., None]
+    return np.asarray(y - fitted[..., 0])
+
+
+def _rss(model: _Model, t: FloatArray, y: FloatArray, k: FloatArray) -> FloatArray:
+    return np.asarray(np.sum(_residuals(model, t, y, k) ** 2, axis=1))
+
+
+def _jacobian(model: _Model, t: FloatArray, k: FloatArray, levels: FloatArray) -> FloatArray:
+    """Return ∂signal/∂(levels, ln k), ``(m, n, q + 1)``."""
+    last = levels[:, :1] * model.slope(t, k)
+    return np.concatenate([model.columns(t, k), last[..., None]], axis=2)
+
+
+def _step(model: _Model, t: FloatArray, y: FloatArray, k: FloatArray) -> FloatArray:
+    levels = _levels(model, t, y, k)
+    basis, upper = np.linalg.qr(_jacobian(model, t, k, levels))
+    along = np.swapaxes(basis, 1, 2) @ _residuals(model, t, y, k)[..., None]
+    return np.asarray(along[:, -1, 0] / upper[:, -1, -1])
+
+
+def _ordinary(
+    model: _Model, t: FloatArray, y: FloatArray, k: FloatArray
+) -> tuple[FloatArray, FloatArray, FloatArray]:
+    """Return levels, covariance of (levels, ln k), and √(RSS/ν), with independent noise."""
+    levels = _levels(model, t, y, k)
+    jacobian = _jacobian(model, t, k, levels)
+    upper = np.linalg.qr(jacobian)[1]
+    inverse = np.linalg.inv(upper)
+    left = len(t) - jacobian.shape[2]
+    deviation = np.sqrt(_rss(model, t, y, k) / left)
+    covariance = inverse @ np.swapaxes(inverse, 1, 2) * deviation[:, None, None] ** 2
+    return levels, covariance, deviation
+
+
+@dataclass(frozen=True, eq=False)
+class _Cells(Projected):
+    """Fits with the wander's share of each cell."""
+
+    shares: FloatArray = field(default_factory=lambda: np.zeros(0))
+
+
+def _correlated(
+    model: _Model, t: FloatArray, y: FloatArray, k: FloatArray, levels: FloatArray
+) -> tuple[_Cells, int]:
+    """Linearise about the ordinary fit and solve with every correlation the noise may have.
+
+    Bins are equally wide half in time and half in the progress of the reaction, so that no fast
+    part is averaged away.
+    """
+    typical = float(np.exp(np.median(np.log(k))))
+    progress = -np.expm1(-typical * (t - t[0]))
+    place = progress / progress[-1] + (t - t[0]) / (t[-1] - t[0])
+    record = binned(t, _residuals(model, t, y, k), place=place)
+    noise = Noise(record, wander=len(t) >= ENOUGH_POINTS)
+    fits = project(record, record.averaged(_jacobian(model, t, k, levels)), noise)
+    return _Cells(**vars(fits), shares=noise.shares), len(record.time)
+
+
+def first_order(
+    time: ArrayLike,
+    signal: ArrayLike,
+    initial: float | None = None,
+    *,
+    final: float | None = None,
+    dead_time: float | None = None,
+    drift: bool = False,
+) -> FirstOrder:
+    """Return the first-order rate constant of a trace; no starting value is needed.
+
+    Parameters
+    ----------
+    time : (n,) array_like
+        Times from mixing, rising.
+    signal : (n,) array_like
+        Absorbance or another signal linear in concentration.
+    initial
+        The level at t = 0, where it is known: 0 for a product that was not there.
+    final
+        The level at the end, where it is known instead.
+    dead_time
+        Points before it are left out.
+    drift
+        Whether to fit a linear drift of the instrument as well.
+
+    Returns
+    -------
+    FirstOrder
+
+    Raises
+    ------
+    InputError
+        If time or signal cannot be, both levels are given, too few points are left, or the trace
+        does not bend.
+    """
+    signal = np.asarray(signal, dtype=float)
+    found = first_orders(time, signal[None], initial, final=final, dead_time=dead_time, drift=drift)
+    t, y = checked_trace(time, signal[None], dead_time)
+    k, levels = float(found.rate_constants[0]), found.levels[0]
+    model = _Model(initial, final, drift)
+    residual = _residuals(model, t, model.data(y), np.array([k]))[0]
+    pattern = pattern_of(t, y[0], residual, found.levels.shape[1] + 1)
+    amplitude, u_amplitude = float(levels[0]), float(found.u_levels[0, 0])
+    if initial is not None:
+        ends = (initial, initial + amplitude, 0.0, u_amplitude)
+    elif final is not None:
+        ends = (final + amplitude, final, u_amplitude, 0.0)
+    else:
+        u_start = _u_start(model, t, model.data(y), k)
+        ends = (
+            float(levels[0] + levels[1]),
+            float(levels[1]),
+            u_start,
+            float(found.u_levels[0, 1]),
+        )
+    distribution = mixture_of(
+        found.weights[0], found.values[0], found.scales[0], found.degrees_of_freedom
+    )
+    half_lives = k * float(t[-1]) / np.log(2.0)
+    return FirstOrder(
+        value=float(distribution.mean),
+        standard_uncertainty=float(distribution.standard_deviation),
+        distribution=distribution,
+        naive_uncertainty=float(found.u_rate_constants[0]),
+        initial_level=ends[0],
+        final_level=ends[1],
+        u_initial_level=ends[2],
+        u_final_level=ends[3],
+        residual_deviation=float(found.residual_deviation[0]),
+        points=len(t),
+        degrees_of_freedom=found.degrees_of_freedom,
+        half_lives=float(half_lives),
+        correlation_share=float(found.correlation_share[0]),
+        pattern=pattern,
+        caveats=tuple(_caveats(pattern, k * float(t[-1] - t[0]), model, len(t))),
+    )
+
+
+def _u_start(model: _Model, t: FloatArray, y: FloatArray, k: float) -> float:
+    """Return u of amplitude plus final level."""
+    covariance = _ordinary(model, t, y, np.array([k]))[1][0]
+    return float(np.sqrt(covariance[:2, :2].sum()))
+
+
+def _caveats(pattern: Pattern, reach: float, model: _Model, points: int) -> list[Caveat]:
+    said = []
+    if pattern.found:
+        said.append(Caveat("first-order-pattern", pattern.sentence))
+    if reach < _FAR_END and model.final is None:
+        said.append(
+            Caveat(
+                "first-order-far-end",
+                f"The trace ends at k t = {reach:.2f}, before the reaction has gone halfway or "
+                "little more; the end level is extrapolated and k rests on the curve's bend. "
+                "Follow it longer, give the end level, or use the initial slope.",
+            )
+        )
+    if points < ENOUGH_POINTS:
+        said.append(
+            Caveat(
+                "first-order-few-points",
+                f"With {points} points correlation of the noise cannot be told; u takes the points "
+                "as independent.",
+            )
+        )
+    return said

@@ -1,0 +1,404 @@
+"""``[medium]`` and ``[traces]`` of a study file: from pipette and photometer to the rate table."""
+
+from __future__ import annotations
+
+import math
+import tomllib
+from dataclasses import dataclass
+from fractions import Fraction
+from pathlib import Path
+from typing import TYPE_CHECKING, Annotated, Any, Literal
+
+from pydantic import BeforeValidator, ConfigDict, Field, ValidationError
+
+from knought.chemistry.activity import (
+    ActivityForm,
+    DaviesForm,
+    ExtendedForm,
+    GuntelbergForm,
+    LimitingForm,
+    PitzerForm,
+    SITForm,
+)
+from knought.chemistry.equilibria import Equilibrium
+from knought.chemistry.equilibria_known import known_equilibria
+from knought.chemistry.medium_series import MediumSeries, prepare_series
+from knought.chemistry.recipe import Recipe, Stock
+from knought.errors import InputError, Problem
+from knought.measurement.absorbance import Optics
+from knought.measurement.complexed_product import ComplexedProduct
+from knought.measurement.reduction import Kind, Method, Reduction, reduce_traces
+from knought.measurement.runs_reading import Runs, read_runs
+from knought.measurement.traces import Trace
+from knought.measurement.traces_reading import read_traces
+from knought.study_sections.base import (
+    Energy,
+    Entropy,
+    Kelvin,
+    MolPerLitre,
+    Relative,
+    Section,
+    in_unit,
+)
+
+if TYPE_CHECKING:
+    from collections.abc import Callable, Sequence
+
+__all__ = ["MediumSection", "TracesSection", "Upstream", "read_upstream"]
+
+Absorptivity = Annotated[float, BeforeValidator(in_unit("L mol^-1 cm^-1"))]
+Centimetre = Annotated[float, BeforeValidator(in_unit("cm"))]
+Litre = Annotated[float, BeforeValidator(in_unit("L"))]
+Second = Annotated[float, BeforeValidator(in_unit("s"))]
+
+_FORMS: dict[str, type[ActivityForm]] = {
+    form.name: form
+    for form in (LimitingForm, GuntelbergForm, ExtendedForm, DaviesForm, SITForm, PitzerForm)
+}
+
+
+class EquilibriumSection(Section):
+    """An equilibrium with its constant: `lg_K`, or `K` as a number in mol/L (mol/kg)."""
+
+    reaction: str
+    lg_K: float | None = None
+    K: float | None = Field(default=None, gt=0)
+    reference_temperature: Kelvin = 298.15
+    enthalpy: Energy = 0.0
+    heat_capacity: Entropy = 0.0
+    u_lg_K: float = Field(default=0.0, ge=0)
+    u_K: Relative | None = None
+    u_enthalpy: Energy = 0.0
+    basis: Literal["molar", "molal"] = "molar"
+    ionic_strength: MolPerLitre = 0.0
+    source: str = ""
+
+    def equilibrium(self) -> Equilibrium:
+        """Return it as the solver takes it.
+
+        Raises
+        ------
+        InputError
+            If there is not one constant, or the reaction is wrong.
+        """
+        if (self.lg_K is None) == (self.K is None):
+            raise InputError(
+                Problem("one of lg_K and K is needed", "give one of them", read=self.reaction)
+            )
+        return Equilibrium(
+            self.reaction,
+            self.lg_K if self.lg_K is not None else math.log10(self.K or 1.0),
+            self.reference_temperature,
+            self.enthalpy,
+            self.heat_capacity,
+            self.u_lg_K if self.u_K is None else self.u_K / math.log(10.0),
+            self.u_enthalpy,
+            self.basis,
+            self.ionic_strength,
+            self.source,
+        )
+
+
+class StockSection(Section):
+    """``[[medium.stocks]]``: a stock solution."""
+
+    name: str
+    contents: dict[str, MolPerLitre]
+    u: Relative = 0.0
+
+
+class RecipeSection(Section):
+    """``[[medium.recipes]]``: what was poured into one run."""
+
+    run: str
+    volumes: dict[str, Litre] = Field(default_factory=dict)
+    water: Litre = 0.0
+    total_volume: Litre | None = None
+    final: dict[str, MolPerLitre] = Field(default_factory=dict)
+
+
+class MediumSection(Section):
+    """``[medium]``: what is in the solutions, and the equilibria among it.
+
+    Without recipes each run holds the substances of its ``c(...)`` columns and `final`.
+    """
+
+    temperature: Kelvin = 298.15
+    activity_law: Literal["limiting", "guntelberg", "extended", "davies", "sit", "pitzer"] = (
+        "davies"
+    )
+    equilibria: tuple[str, ...] = ()
+    equilibrium: tuple[EquilibriumSection, ...] = ()
+    stocks: tuple[StockSection, ...] = ()
+    recipes: tuple[RecipeSection, ...] = ()
+    final: dict[str, MolPerLitre] = Field(default_factory=dict)
+    u_volume: Relative = 0.0
+
+    def form(self) -> ActivityForm:
+        """Return the activity law."""
+        return _FORMS[self.activity_law]()
+
+    def all_equilibria(self) -> tuple[Equilibrium, ...]:
+        """Return the equilibria, named ones first.
+
+        Raises
+        ------
+        InputError
+            If a name is unknown, or an equilibrium is wrong.
+        """
+        named = [each for name in self.equilibria for each in known_equilibria(name)]
+        return (*named, *(each.equilibrium() for each in self.equilibrium))
+
+    def made(self, runs: Runs | None = None) -> tuple[Recipe, ...]:
+        """Return a recipe for each run; in the order of `runs`, where they are given.
+
+        Raises
+        ------
+        InputError
+            If a run has no recipe, or a recipe is wrong.
+        """
+        stocks = tuple(Stock(each.name, each.contents, each.u) for each in self.stocks)
+        by_run = {each.run: each for each in self.recipes}
+        if runs is not None and not by_run:
+            return tuple(
+                Recipe(
+                    final={
+                        **self.final,
+                        **{name: float(c[i]) for name, c in runs.concentrations.items()},
+                    },
+                    name=run,
+                )
+                for i, run in enumerate(runs.run)
+            )
+        labels = tuple(by_run) if runs is None else runs.run
+        missing = [run for run in labels if run not in by_run]
+        if missing or not labels:
+            raise InputError(
+                f"there is no recipe for {', '.join(missing) or 'any run'}",
+                "add [[medium.recipes]] with run = ...",
+            )
+        return tuple(
+            Recipe(
+                volumes=by_run[run].volumes,
+                stocks=stocks,
+                water=by_run[run].water,
+                total_volume=by_run[run].total_volume,
+                final={**self.final, **by_run[run].final},
+                name=run,
+                u_volume=self.u_volume,
+            )
+            for run in labels
+        )
+
+    def series(self, runs: Runs | None = None) -> MediumSeries:
+        """Return the media of the runs, at each run's own temperature.
+
+        Raises
+        ------
+        InputError
+            If a recipe is missing or wrong, or the equilibria cannot be solved.
+        """
+        T: float | Sequence[float] = self.temperature if runs is None else runs.T.tolist()
+        return prepare_series(self.made(runs), T, self.all_equilibria(), self.form())
+
+
+class OpticsSection(Section):
+    """``[traces.optics]``: what makes absorbance a concentration."""
+
+    absorptivity: Absorptivity | None = None
+    path_length: Centimetre = 1.0
+    stoichiometric_number: float = 1.0
+    u_absorptivity: Relative = 0.0
+    u_path_length: Relative = 0.0
+
+
+class ProductSection(Section):
+    """``[traces.product]``: a product that is held in complexes or other forms, too."""
+
+    formula: str
+    absorptivities: dict[str, Absorptivity]
+    equilibria: tuple[EquilibriumSection, ...]
+
+
+class TracesSection(Section):
+    """``[traces]``: traces or slopes, and how they become rate constants."""
+
+    runs: str
+    file: str | None = None
+    sheet: str | int | None = None
+    kind: Kind = "first-order"
+    orders: dict[str, int | float | str] = Field(default_factory=dict)
+    initial: float | None = None
+    dead_time: Second = 0.0
+    window: Second | None = None
+    polynomial: int | None = Field(default=None, ge=1, le=5)
+    drift: bool = False
+    stocks: dict[str, Relative] = Field(default_factory=dict)
+    optics: OpticsSection | None = None
+    product: ProductSection | None = None
+
+    def method(self) -> Method:
+        """Return how traces become rate constants.
+
+        Raises
+        ------
+        InputError
+            If an order is no number, or optics or product are wrong.
+        """
+        try:
+            orders = {name: Fraction(str(order)) for name, order in self.orders.items()}
+        except (ValueError, ZeroDivisionError) as error:
+            raise InputError(
+                Problem("is no order of reaction", "write 1, 2 or 1/2", read=str(self.orders))
+            ) from error
+        return Method(
+            self.kind,
+            orders,
+            self.initial,
+            self.dead_time,
+            self.window,
+            self.polynomial,
+            self.drift,
+            self._optics(),
+            dict(self.stocks),
+        )
+
+    def _optics(self) -> Optics | None:
+        if self.optics is None and self.product is None:
+            return None
+        said = self.optics or OpticsSection()
+        product = None
+        if self.product is not None:
+            product = ComplexedProduct(
+                self.product.formula,
+                tuple(each.equilibrium() for each in self.product.equilibria),
+                self.product.absorptivities,
+            )
+        return Optics(
+            said.absorptivity,
+            said.path_length,
+            said.stoichiometric_number,
+            said.u_absorptivity,
+            said.u_path_length,
+            product,
+        )
+
+
+@dataclass(frozen=True)
+class Upstream:
+    """The upstream part of a study.
+
+    Attributes
+    ----------
+    medium, traces
+        Its sections; None where they are not there.
+    """
+
+    medium: MediumSection | None
+    traces: TracesSection | None
+
+    def files(self, beside: Callable[[str, str], Path]) -> tuple[tuple[str, Path], ...]:
+        """Return names and paths of every file that is read, for the record.
+
+        Parameters
+        ----------
+        beside
+            Finds a file beside the study file: (name, key) -> path.
+        """
+        if self.traces is None:
+            return ()
+        named = [(self.traces.runs, "[traces] runs")]
+        if self.traces.file is not None:
+            named.append((self.traces.file, "[traces] file"))
+        runs = read_runs(beside(*named[0]))
+        own = [(name, "column trace") for name in runs.words.get("trace", ()) if name]
+        return tuple((name, beside(name, key)) for name, key in [*named, *own])
+
+    def reduced(self, beside: Callable[[str, str], Path]) -> Reduction:
+        """Read runs and traces, and make the table of rate constants.
+
+        Parameters
+        ----------
+        beside
+            Finds a file beside the study file: (name, key) -> path.
+
+        Raises
+        ------
+        InputError
+            If there is no ``[traces]``, or anything in it cannot be read or reduced.
+        """
+        if self.traces is None:
+            raise InputError("the study has no [traces]", "say where runs and traces are")
+        runs = read_runs(beside(self.traces.runs, "[traces] runs"))
+        traces: dict[str, Trace] = {}
+        if self.traces.file is not None:
+            path = beside(self.traces.file, "[traces] file")
+            traces |= {each.run: each for each in read_traces(path, self.traces.sheet)}
+        for run, name in zip(runs.run, runs.words.get("trace", ()), strict=False):
+            if name:
+                traces[run] = _only(read_traces(beside(name, "column trace")), name)
+        media = None if self.medium is None else self.medium.series(runs)
+        return reduce_traces(runs, traces, self.traces.method(), media)
+
+
+def _only(traces: tuple[Trace, ...], name: str) -> Trace:
+    """Return the one trace of a run's own file.
+
+    Raises
+    ------
+    InputError
+        If there are several.
+    """
+    if len(traces) > 1:
+        raise InputError(
+            Problem(
+                f"holds {len(traces)} traces",
+                "a run's own file holds one; name a wide table as [traces] file",
+                file=name,
+            )
+        )
+    return traces[0]
+
+
+class _UpstreamFile(Section):
+    """A study file of which only these sections are looked at."""
+
+    model_config = ConfigDict(extra="ignore", frozen=True)
+
+    medium: MediumSection | None = None
+    traces: TracesSection | None = None
+
+
+def read_upstream(path: Path) -> Upstream:
+    """Read ``[medium]`` and ``[traces]`` of a study file, or of a file that holds nothing else.
+
+    Raises
+    ------
+    InputError
+        If it cannot be read, or one of these sections is wrong; every problem is told.
+    """
+    try:
+        data: dict[str, Any] = tomllib.loads(path.read_text(encoding="utf-8"))
+    except OSError as error:
+        raise InputError(
+            Problem(f"cannot be read: {error.strerror}", "check the path", file=path.name)
+        ) from error
+    except (UnicodeDecodeError, tomllib.TOMLDecodeError) as error:
+        raise InputError(
+            Problem(f"is not valid TOML in UTF-8: {error}", "mend it", file=path.name)
+        ) from error
+    try:
+        found = _UpstreamFile.model_validate(data)
+    except ValidationError as error:
+        raise InputError(
+            [
+                Problem(
+                    str(each.get("ctx", {}).get("error", each["msg"])).rstrip("."),
+                    read=str(each["input"]),
+                    file=path.name,
+                    column=".".join(map(str, each["loc"])),
+                )
+                for each in error.errors()
+            ]
+        ) from error
+    return Upstream(found.medium, found.traces)
