@@ -27,6 +27,7 @@ from knought.chemistry.activity import DaviesForm
 from knought.fitting.observations import Observations
 from knought.fitting.open_fit import open_solver
 from knought.fitting.run_errors import RunErrors, run_errors
+from knought.fitting.scatter import scale_nodes
 from knought.laws.activation import activation_rows
 from knought.laws.open_law import open_grid
 from knought.laws.salt import SALT_LAWS, SaltLaw, salt_law
@@ -311,25 +312,27 @@ def _named(
     n, nu = seen.runs, fit.degrees_of_freedom
     parts = rows @ fit.gain
     own, shared = np.sum(parts[:, :n] ** 2, axis=1), np.sum(parts[:, n:] ** 2, axis=1)
-    deviation: FloatArray
-    freedom: FloatArray | float
+    goal = np.array([true[name] for name in names])
+    one = np.ones(1)
     if stated:
-        deviation, freedom = np.sqrt(own + shared)[None], math.inf
+        deviation = np.broadcast_to(np.sqrt(own + shared), places.shape)
+        chance = Mixture(one, places[None], deviation[None]).cdf(goal)
     else:
-        # Generalised χ² of each study; shared errors keep their size, the scatter is scaled. The
-        # estimator keeps the weights of the true ratio, which real studies find by iteration.
+        # Generalised χ² of each study; shared errors keep their size, the scatter is scaled and
+        # integrated over. The estimator keeps the weights of the true ratio, which real studies
+        # find by iteration.
         residual = (observed - design.offset - theta @ design.rows.T) / errors.u
         J = errors.shared / errors.u[:, None]
         pulled = residual @ J
         inner = np.linalg.inv(np.eye(J.shape[1]) + J.T @ J)
         chi = np.sum(residual**2, axis=1) - np.einsum("mi,ij,mj->m", pulled, inner, pulled)
         scatter = chi[:, None] / nu * own
-        deviation = np.sqrt(scatter + shared)
-        freedom = nu * ((scatter + shared) / np.maximum(scatter, 1e-300)) ** 2
-    goal = np.array([true[name] for name in names])
-    chance = Mixture(
-        np.ones(1), places[None], np.broadcast_to(deviation, places.shape)[None], freedom
-    ).cdf(goal)
+        sigma = scale_nodes(float(nu), nu)
+        weight = sigma**-nu * np.exp(-0.5 * nu / sigma**2)
+        chance = np.zeros_like(places)
+        for share, scale in zip(weight / weight.sum(), sigma, strict=True):
+            spread = np.sqrt(scale**2 * scatter + shared)
+            chance += share * Mixture(one, places[None], spread[None]).cdf(goal)
     inside = np.mean((chance >= 0.025) & (chance <= 0.975), axis=0)
     return dict.fromkeys(QUANTITIES, math.nan) | dict(zip(names, inside.tolist(), strict=True))
 
