@@ -36,6 +36,7 @@ FORMS: list[ActivityForm] = [
     SITForm(),
     PitzerForm(),
     OpenForm(4e-10, 0.2),
+    OpenForm(4e-10, 0.2, 0.0),
 ]
 ids = [f"{form.name}-{i}" for i, form in enumerate(FORMS)]
 

@@ -14,7 +14,7 @@ import pytest
 
 from knought.fitting.open_fit import fit_open, open_solver
 from knought.fitting.run_errors import run_errors
-from knought.laws.open_law import open_grid
+from knought.laws.open_law import DEFAULT_PRIORS, Priors, open_grid
 from knought.laws.surface import Surface
 from knought.laws.temperature import temperature_law
 from knought.numerics.quantiles import Mixture
@@ -26,10 +26,10 @@ if TYPE_CHECKING:
 STUDIES = 1000
 
 
-def probabilities(studies: Studies) -> dict[str, FloatArray]:
+def probabilities(studies: Studies, priors: Priors = DEFAULT_PRIORS) -> dict[str, FloatArray]:
     """F(truth) of ln k° and of the charge product in every study, through assess's own solver."""
     seen = studies.observations
-    grid = open_grid()
+    grid = open_grid(priors)
     surface = Surface(temperature_law("eyring"), grid.law, 298.15, seen.order)
     solutions = open_solver(seen, surface, grid, run_errors(seen)).solve(studies.ln_k)
     weights, p = solutions.weights, len(surface.parameters)
@@ -39,6 +39,7 @@ def probabilities(studies: Studies) -> dict[str, FloatArray]:
     for name, true in (
         ("ln_rate_constant", studies.true_ln_k),
         ("charge_product", studies.charge_product),
+        ("activation_enthalpy", 50_000.0),
     ):
         j = surface.parameters.index(name)
         component = Mixture(np.ones(1), means[None, :, :, j], scales[None, None, :, j])
@@ -57,7 +58,7 @@ def test_intervals_hold_the_truth_in_nine_studies_of_ten_at_least(
         studies = simulate(TRUTHS[truth], z, np.geomspace(*span, 6), studies=STUDIES, seed=seed)
         for name, chance in probabilities(studies).items():
             held = float(np.mean((chance >= 0.025) & (chance <= 0.975)))
-            if held < 0.90:
+            if held < 0.90 and name != "activation_enthalpy":
                 shortfalls.append(f"z_A z_B = {z}: {name} held in {held:.1%}")
     assert not shortfalls
 
@@ -71,8 +72,49 @@ def test_the_counted_probability_is_that_of_the_interval_that_assess_reports() -
         found = fit_open(seen, scatter="given")
         for name, chance in chances.items():
             mixture = found.distribution.parameter(name)
-            true = studies.true_ln_k if name == "ln_rate_constant" else studies.charge_product
+            true = {
+                "ln_rate_constant": studies.true_ln_k,
+                "charge_product": studies.charge_product,
+                "activation_enthalpy": 50_000.0,
+            }[name]
             assert float(mixture.cdf(true)) == pytest.approx(float(chance[i]), abs=1e-8)
             low, high = mixture.interval(0.95)
             inside = bool(low <= true <= high)
             assert inside == bool(0.025 <= chance[i] <= 0.975)
+
+
+@pytest.mark.parametrize("truth", ["extended, 3 Å", "Güntelberg", "Davies 0.2", "SIT, β = -0.3"])
+@pytest.mark.parametrize("z", [4, -4])
+def test_the_enthalpy_at_zero_ionic_strength_is_held_whatever_stays_constant(
+    truth: str, z: int
+) -> None:
+    """The extended law fixes å with temperature, the others the number before √I.
+
+    Taking the first for granted held ΔH‡ of Davies 0.2 in 86 % of precise studies only.
+    """
+    studies = simulate(
+        TRUTHS[truth],
+        z,
+        np.geomspace(0.02, 0.5, 6),
+        studies=STUDIES,
+        seed=77,
+        u=0.01,
+        temperatures=(288.15, 295.65, 303.15, 310.65, 318.15),
+    )
+    chance = probabilities(studies)["activation_enthalpy"]
+    assert np.mean((chance >= 0.025) & (chance <= 0.975)) > 0.92
+
+
+def test_fixing_what_stays_constant_would_not_hold_it() -> None:
+    """The reason for the second kind of cell: with the ion size fixed, Davies 0.2 is missed."""
+    studies = simulate(
+        TRUTHS["Davies 0.2"],
+        -4,
+        np.geomspace(0.02, 0.5, 6),
+        studies=STUDIES,
+        seed=77,
+        u=0.01,
+        temperatures=(288.15, 295.65, 303.15, 310.65, 318.15),
+    )
+    chance = probabilities(studies, Priors(constant_size=1.0))["activation_enthalpy"]
+    assert np.mean((chance >= 0.025) & (chance <= 0.975)) < 0.92

@@ -1,0 +1,20 @@
+"""Noise of a photometer: white, and wander that is correlated from one point to the next."""
+
+from __future__ import annotations
+
+import numpy as np
+
+from knought.arrays import FloatArray
+from knought.numerics.seeds import generator
+
+
+def noisy(
+    records: int, points: int, phi: float, share: float, size: float, seed: int
+) -> FloatArray:
+    """Records of noise, share of variance an autoregression of first order with `phi`."""
+    random = generator(20_250_505, seed)
+    white = random.standard_normal((records, points))
+    wander = random.standard_normal((records, points))
+    for i in range(1, points):
+        wander[:, i] = phi * wander[:, i - 1] + np.sqrt(1 - phi**2) * wander[:, i]
+    return np.asarray(size * (np.sqrt(1 - share) * white + np.sqrt(share) * wander))
