@@ -32,6 +32,10 @@ _STEP = 1e-6
 #: A gap below this is no gap.
 _CLOSED = 1e-5
 
+#: A gap above this is looked at again, with whole steps of this size.
+_SUSPECT = 1e-2
+_WHOLE_STEP = 1e-4
+
 #: Weights below this are none.
 _NO_WEIGHT = 1e-6
 
@@ -110,7 +114,14 @@ def continuous_design(criterion: Criterion, runs: float) -> ContinuousDesign:
 
 def _value_and_gap(criterion: Criterion, weights: FloatArray, runs: float) -> tuple[float, float]:
     value, towards = derivatives(criterion, weights, runs)
-    return value, max(0.0, -float(towards.min()))
+    gap = max(0.0, -float(towards.min()))
+    if gap > _SUSPECT:
+        # Updates of rank one lose their digits where a design leaves a direction undetermined (one
+        # temperature, for a charge product): there each small change is evaluated whole.
+        moved = (1 - _WHOLE_STEP) * weights + _WHOLE_STEP * np.eye(len(weights))
+        whole = (criterion.values(moved * runs) / value - 1) / _WHOLE_STEP
+        gap = min(gap, max(0.0, -float(whole.min())))
+    return value, gap
 
 
 def _descended(criterion: Criterion, weights: FloatArray, runs: float) -> FloatArray:
