@@ -99,7 +99,7 @@ def test_all_problems_of_a_study_file_are_told_at_once(folder: Path) -> None:
 
 def test_a_study_file_needs_its_table(folder: Path) -> None:
     (folder / "study.toml").write_text("[study]\n", encoding="utf-8")
-    with pytest.raises(kn.InputError, match="needed and missing"):
+    with pytest.raises(kn.InputError, match="name one of the two sections"):
         read_study(folder / "study.toml")
     with pytest.raises(kn.InputError, match="cannot be read"):
         read_study(folder / "no.toml")

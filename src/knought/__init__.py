@@ -17,6 +17,7 @@ from knought.version import __version__
 
 if TYPE_CHECKING:
     from knought.chemistry.debye_huckel import debye_huckel
+    from knought.chemistry.medium import ionic_strength
     from knought.chemistry.species import Species, charge_product, parse_reactants, parse_species
     from knought.discussion.candidates import Candidate, Expectation
     from knought.discussion.compare import compare
@@ -41,6 +42,8 @@ if TYPE_CHECKING:
     from knought.fitting.profile import profile_ion_size
     from knought.fitting.surface_fit import SurfaceFit, fit_many
     from knought.laws.open_law import Priors
+    from knought.measurement.first_order import first_order
+    from knought.measurement.initial_slope import initial_slope
     from knought.measurement.reading import read_rates
     from knought.measurement.shared_errors import SharedError
     from knought.measurement.table import RateTable
@@ -74,10 +77,13 @@ __all__ = [
     "debye_huckel",
     "electrostatic_part",
     "encounter_limit",
+    "first_order",
     "fit",
     "fit_in_k",
     "fit_ion_size",
     "fit_many",
+    "initial_slope",
+    "ionic_strength",
     "monte_carlo",
     "parse_reactants",
     "parse_species",
@@ -116,10 +122,13 @@ _HOMES = {
     "debye_huckel": "chemistry.debye_huckel",
     "electrostatic_part": "discussion.electrostatics",
     "encounter_limit": "discussion.encounter",
+    "first_order": "measurement.first_order",
     "fit": "fitting.fit",
     "fit_in_k": "fitting.k_space",
     "fit_ion_size": "fitting.ion_size",
     "fit_many": "fitting.surface_fit",
+    "initial_slope": "measurement.initial_slope",
+    "ionic_strength": "chemistry.medium",
     "monte_carlo": "fitting.monte_carlo",
     "parse_reactants": "chemistry.species",
     "parse_species": "chemistry.species",

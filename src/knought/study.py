@@ -2,11 +2,11 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from knought.errors import InputError, Problem
+from knought.errors import Caveat, InputError, Problem
 from knought.files import sha256_of, whole_folder
 from knought.fitting.assess import assess
 from knought.measurement.reading import read_rates
@@ -14,10 +14,14 @@ from knought.reporting.cells import plain_lines
 from knought.reporting.page import page
 from knought.reporting.report import Report
 from knought.study_file import read_study_file
+from knought.study_sections.upstream import Upstream
 
 if TYPE_CHECKING:
+    from collections.abc import Sequence
+
     from knought.discussion.next_runs import Plan
     from knought.fitting.assess import Assessment
+    from knought.measurement.table import RateTable
     from knought.reporting.discussed import Discussed
     from knought.study_file import StudyFile
 
@@ -68,11 +72,6 @@ class Study:
             )
         return target
 
-    @property
-    def rates_path(self) -> Path:
-        """Where the table of rate constants is."""
-        return self.beside(self.settings.rates.file, "[rates] file")
-
     def report(self) -> Report:
         """Read the table, assess it, and return the report.
 
@@ -82,15 +81,9 @@ class Study:
             If anything in the study is wrong, or the runs cannot carry what is asked of them.
         """
         said = self.settings
-        rates = read_rates(
-            self.rates_path,
-            sheet=said.rates.sheet,
-            uncertainty_means=said.rates.uncertainty_means,
-            decimal=said.rates.decimal,
-            excess=said.rates.excess,
-        )
+        reduced = None if said.rates is not None else self._upstream().reduced(self.beside)
         assessment = assess(
-            rates,
+            self._rates() if reduced is None else reduced.rates,
             temperature_law=said.laws.temperature,
             salt_law=said.laws.salt,
             reference_temperature=said.study.reference_temperature,
@@ -99,8 +92,13 @@ class Study:
             reactants=said.reaction.reactants,
             ion_size=said.laws.ion_size,
             priors=said.priors.priors(),
-            shared_errors=[each.error() for each in said.shared_errors],
+            shared_errors=[
+                *(each.error() for each in said.shared_errors),
+                *(() if reduced is None else reduced.shared_errors),
+            ],
         )
+        if reduced is not None:
+            assessment = replace(assessment, caveats=(*assessment.caveats, *_once(reduced.caveats)))
         return Report(
             assessment,
             said.study.title,
@@ -109,10 +107,34 @@ class Study:
             _discussed(self, assessment),
         )
 
+    def _rates(self) -> RateTable:
+        """Read the table that ``[rates]`` names.
+
+        Raises
+        ------
+        TypeError
+            If there is none: a fault of ours, as the study file was checked before.
+        """
+        rates = self.settings.rates
+        if rates is None:  # the study file was refused without either source
+            raise TypeError("a study without [rates] has no table to read")
+        return read_rates(
+            self.beside(rates.file, "[rates] file"),
+            sheet=rates.sheet,
+            uncertainty_means=rates.uncertainty_means,
+            decimal=rates.decimal,
+            excess=rates.excess,
+        )
+
+    def _upstream(self) -> Upstream:
+        return Upstream(self.settings.medium, self.settings.traces)
+
     def _inputs(self) -> tuple[tuple[str, str], ...]:
         """Name and hash of every file that the study reads."""
         said = self.settings
-        files = [(said.rates.file, self.rates_path)]
+        files = [*self._upstream().files(self.beside)]
+        if said.rates is not None:
+            files = [(said.rates.file, self.beside(said.rates.file, "[rates] file"))]
         if said.literature is not None:
             file = said.literature.file
             files.append((file, self.beside(file, "[literature] file")))
@@ -120,6 +142,16 @@ class Study:
             (self.path.name, sha256_of(self.path)),
             *((name, sha256_of(path)) for name, path in files),
         )
+
+
+def _once(caveats: Sequence[Caveat]) -> list[Caveat]:
+    """Say each kind of caveat of single traces once, with how many more there are."""
+    found = []
+    for code in dict.fromkeys(each.code for each in caveats):
+        alike = [each for each in caveats if each.code == code]
+        more = f" ({len(alike) - 1} more traces likewise)" if len(alike) > 1 else ""
+        found.append(Caveat(code, alike[0].message + more))
+    return found
 
 
 def _discussed(study: Study, assessment: Assessment) -> Discussed | None:

@@ -11,7 +11,7 @@ import difflib
 import tomllib
 from typing import TYPE_CHECKING, Any, get_args
 
-from pydantic import BaseModel, ValidationError
+from pydantic import BaseModel, ValidationError, model_validator
 
 from knought.errors import InputError, Problem
 from knought.study_sections.base import Section
@@ -24,7 +24,9 @@ from knought.study_sections.core import (
     StudySection,
 )
 from knought.study_sections.discussion import CandidateSection, LiteratureSection
+from knought.study_sections.medium import MediumSection
 from knought.study_sections.plan import PlanSection
+from knought.study_sections.upstream import TracesSection
 
 if TYPE_CHECKING:
     from pathlib import Path
@@ -39,7 +41,9 @@ class StudyFile(Section):
     """A whole study file; sections that are left out keep their defaults."""
 
     study: StudySection = StudySection()
-    rates: RatesSection
+    rates: RatesSection | None = None
+    medium: MediumSection | None = None
+    traces: TracesSection | None = None
     reaction: ReactionSection = ReactionSection()
     laws: LawsSection = LawsSection()
     priors: PriorsSection = PriorsSection()
@@ -47,6 +51,15 @@ class StudyFile(Section):
     literature: LiteratureSection | None = None
     candidates: tuple[CandidateSection, ...] = ()
     plan: PlanSection | None = None
+
+    @model_validator(mode="after")
+    def _one_source(self) -> StudyFile:
+        if (self.rates is None) == (self.traces is None):
+            raise ValueError(
+                "a study needs its rate constants from [rates], or from the traces of [traces]: "
+                "name one of the two sections"
+            )
+        return self
 
 
 def read_study_file(path: Path) -> StudyFile:
@@ -95,7 +108,7 @@ def read_study_file(path: Path) -> StudyFile:
 
 def _problem(file: str, detail: dict[str, Any]) -> Problem:
     """Turn one finding of pydantic into one of ours."""
-    where = [str(part) for part in detail["loc"]]
+    where = [str(part) for part in detail["loc"]] or ["the study"]
     place = f"[{'.'.join(where[:-1])}] {where[-1]}" if len(where) > 1 else where[0]
     kind = detail["type"]
     if kind == "extra_forbidden":

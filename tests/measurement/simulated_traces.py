@@ -2,10 +2,14 @@
 
 from __future__ import annotations
 
+from typing import TYPE_CHECKING
+
 import numpy as np
 
-from knought.arrays import FloatArray
 from knought.numerics.seeds import generator
+
+if TYPE_CHECKING:
+    from knought.arrays import FloatArray
 
 
 def noisy(

@@ -8,7 +8,8 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from knought.errors import InputError
-from knought.measurement.initial_slope import initial_slope, initial_slopes
+from knought.measurement.initial_slope import initial_slope
+from knought.measurement.initial_slope_rule import initial_slopes
 from tests.measurement.simulated_traces import noisy
 
 
@@ -17,8 +18,8 @@ def test_intervals_of_the_slope_hold_the_truth_as_often_as_they_say(reach: float
     held = []
     t = np.linspace(0, 1, 600)
     for seed, (phi, share) in enumerate([(0.0, 0.0), (0.6, 1.0), (0.85, 0.5)]):
-        for dead in (0.0, 0.03):
-            y = -np.expm1(-reach * t) / reach + noisy(200, 600, phi, share, 0.01, seed)
+        for other, dead in enumerate((0.0, 0.03)):
+            y = -np.expm1(-reach * t) / reach + noisy(300, 600, phi, share, 0.01, seed + 10 * other)
             held.append(initial_slopes(t, y, dead_time=dead).covered(1.0).mean())
     assert 0.93 <= np.mean(held) <= 0.97, held
     assert min(held) > 0.90, held
@@ -83,7 +84,7 @@ def test_few_points_are_taken_as_independent_and_it_is_said() -> None:
     assert "slope-few-points" in {each.code for each in found.caveats}
 
 
-@settings(max_examples=20, deadline=None)
+@settings(max_examples=8, deadline=None)
 @given(st.floats(1e-3, 1e3), st.floats(1e-3, 1e3), st.floats(-10.0, 10.0))
 def test_slopes_follow_units_and_do_not_see_the_level(
     unit: float, gain: float, level: float

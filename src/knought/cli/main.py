@@ -6,7 +6,7 @@ import argparse
 import sys
 from typing import TYPE_CHECKING, Protocol
 
-from knought.cli import compare, demo, fit, mechanism, plan, read, report, template
+from knought.cli import compare, demo, fit, mechanism, medium, plan, read, reduce, report, template
 from knought.version import __version__
 
 if TYPE_CHECKING:
@@ -49,7 +49,18 @@ class Subcommand(Protocol):
 
 
 #: Subcommands in the order in which the help lists them.
-_SUBCOMMANDS: tuple[Subcommand, ...] = (demo, read, fit, report, compare, mechanism, plan, template)
+_SUBCOMMANDS: tuple[Subcommand, ...] = (
+    demo,
+    medium,
+    reduce,
+    read,
+    fit,
+    report,
+    compare,
+    mechanism,
+    plan,
+    template,
+)
 
 
 def main(arguments: Sequence[str] | None = None) -> int:

@@ -16,7 +16,7 @@ if TYPE_CHECKING:
     import argparse
 
     from knought.chemistry.medium_series import MediumSeries
-    from knought.study_sections.upstream import MediumSection
+    from knought.study_sections.medium import MediumSection
 
 __all__ = ["HELP", "NAME", "add_arguments", "run"]
 
@@ -70,7 +70,8 @@ def _section(options: argparse.Namespace) -> tuple[MediumSection, tuple[str, ...
     InputError
         If the recipe cannot be read.
     """
-    from knought.study_sections.upstream import MediumSection, RecipeSection, read_upstream
+    from knought.study_sections.medium import MediumSection, RecipeSection
+    from knought.study_sections.upstream import read_upstream
 
     first = options.recipe[0]
     names = tuple(name.strip() for name in options.equilibria.split(",") if name.strip())

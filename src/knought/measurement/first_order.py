@@ -20,65 +20,30 @@ import numpy as np
 
 from knought.errors import Caveat, InputError
 from knought.measurement.first_order_pattern import Pattern, pattern_of
+from knought.measurement.first_order_search import (
+    SingleExponential,
+    jacobian,
+    ordinary,
+    refined,
+    residuals,
+    searched,
+)
 from knought.measurement.traces import checked_trace
 from knought.numerics.correlated_noise import Noise, Projected, binned, mixture_of, project
 
 if TYPE_CHECKING:
     from numpy.typing import ArrayLike
 
-    from knought.arrays import FloatArray, IndexArray
+    from knought.arrays import FloatArray
     from knought.numerics.quantiles import Mixture
 
-__all__ = ["FirstOrder", "FirstOrders", "first_order", "first_orders", "rough_rate_constants"]
+__all__ = ["FirstOrder", "FirstOrders", "first_order", "first_orders"]
 
 #: With fewer points correlation cannot be told.
 ENOUGH_POINTS = 24
 
-#: Search over k times the span of the trace.
-_SLOWEST, _GRID = 1e-3, 120
-_MOST_STEPS, _LAST_STEP = 80, 1e-14
-
 #: k times span below which the end point is guessed from a curve that hardly bends.
 _FAR_END = 1.0
-
-
-@dataclass(frozen=True)
-class _Model:
-    """Which levels are unknown.
-
-    Attributes
-    ----------
-    initial, final
-        Levels that are known.
-    drift
-        Whether a linear drift is fitted.
-    """
-
-    initial: float | None
-    final: float | None
-    drift: bool
-
-    def data(self, y: FloatArray) -> FloatArray:
-        """Return the signals less the level that is known."""
-        known = self.initial if self.initial is not None else self.final
-        return y if known is None else y - known
-
-    def columns(self, t: FloatArray, k: FloatArray) -> FloatArray:
-        """Return the linear columns for each k, ``(m, n, q)``; the amplitude's is the first."""
-        shape = (len(k), len(t))
-        decay = np.exp(-k[:, None] * t)
-        columns = [-np.expm1(-k[:, None] * t) if self.initial is not None else decay]
-        if self.initial is None and self.final is None:
-            columns.append(np.ones(shape))
-        if self.drift:
-            columns.append(np.broadcast_to(t / t[-1], shape))
-        return np.stack(columns, axis=2)
-
-    def slope(self, t: FloatArray, k: FloatArray) -> FloatArray:
-        """Return ∂(first column)/∂ln k, ``(m, n)``."""
-        sign = 1.0 if self.initial is not None else -1.0
-        x = k[:, None] * t
-        return np.asarray(sign * x * np.exp(-x))
 
 
 @dataclass(frozen=True, eq=False)
@@ -228,7 +193,7 @@ def first_orders(
             "both levels of a first-order trace are given",
             "give the one that is known best; the trace says the other",
         )
-    model = _Model(initial, final, drift)
+    model = SingleExponential(initial, final, drift)
     unknowns = 2 + (initial is None and final is None) + drift
     if len(t) <= unknowns:
         raise InputError(
@@ -236,8 +201,8 @@ def first_orders(
             f"record at least {unknowns + 1} points",
         )
     data = model.data(y)
-    k = _refined(model, t, data, _searched(model, t, data))
-    levels, covariance, deviation = _ordinary(model, t, data, k)
+    k = refined(model, t, data, searched(model, t, data))
+    levels, covariance, deviation = ordinary(model, t, data, k)
     fits, record_points = _correlated(model, t, data, k, levels)
     weights = fits.weights(unknowns)
     shift, scale = fits.parameter(unknowns - 1, unknowns)
@@ -257,119 +222,6 @@ def first_orders(
     )
 
 
-def _searched(model: _Model, t: FloatArray, y: FloatArray) -> FloatArray:
-    """Return the best k of a grid for each record.
-
-    Raises
-    ------
-    InputError
-        If it is the slowest or the fastest of the grid.
-    """
-    grid = _grid(t)
-    place = _best_of(grid, model, t, y)
-    ends = {0: "slower", len(grid) - 1: "faster"}
-    for end, word in ends.items():
-        if np.any(place == end):
-            remedy = (
-                "follow it for at least one half-life, or use the initial slope"
-                if end == 0
-                else "record faster, or check dead time and the unit of time"
-            )
-            raise InputError(f"the trace is {word} than its points can tell", remedy)
-    return grid[place]
-
-
-def _grid(t: FloatArray) -> FloatArray:
-    """Return rate constants from a line's to one that is over at the second point."""
-    span, fastest = float(t[-1] - t[0]), 6.0 / float(np.min(np.diff(t)))
-    count = max(_GRID, int(20 * np.log(fastest * span)))
-    return np.geomspace(_SLOWEST / span, fastest, count)
-
-
-def _best_of(grid: FloatArray, model: _Model, t: FloatArray, y: FloatArray) -> IndexArray:
-    """Return the place in the grid of each record's best k."""
-    best, place = np.full(len(y), -np.inf), np.zeros(len(y), dtype=np.intp)
-    for i, k in enumerate(grid):
-        basis = np.linalg.qr(model.columns(t, np.array([k]))[0])[0]
-        explained = np.sum((y @ basis) ** 2, axis=1)
-        better = explained > best
-        best[better], place[better] = explained[better], i
-    return place
-
-
-def rough_rate_constants(time: FloatArray, signals: FloatArray) -> FloatArray:
-    """Return k of m records within a few per cent, whatever they look like.
-
-    Parameters
-    ----------
-    time, signals : (n,), (m, n) ndarray
-        Records that were checked.
-    """
-    grid = _grid(time)
-    return grid[_best_of(grid, _Model(None, None, drift=False), time, signals)]
-
-
-def _refined(model: _Model, t: FloatArray, y: FloatArray, k: FloatArray) -> FloatArray:
-    """Refine each k by Gauss-Newton steps of the separable problem, halved where they overshoot."""
-    k = k.copy()
-    rss = _rss(model, t, y, k)
-    for _ in range(_MOST_STEPS):
-        step = np.clip(_step(model, t, y, k), -0.3, 0.3)
-        for _halving in range(30):
-            moved = _rss(model, t, y, k * np.exp(step))
-            worse = moved > rss * (1 + 1e-13)
-            if not np.any(worse):
-                break
-            step = np.where(worse, step / 2, step)
-        k *= np.exp(step)
-        rss = np.minimum(rss, moved)
-        if np.max(np.abs(step)) < _LAST_STEP:
-            break
-    return k
-
-
-def _levels(model: _Model, t: FloatArray, y: FloatArray, k: FloatArray) -> FloatArray:
-    basis, upper = np.linalg.qr(model.columns(t, k))
-    along = np.swapaxes(basis, 1, 2) @ y[..., None]
-    return np.asarray(np.linalg.solve(upper, along)[..., 0])
-
-
-def _residuals(model: _Model, t: FloatArray, y: FloatArray, k: FloatArray) -> FloatArray:
-    fitted = model.columns(t, k) @ _levels(model, t, y, k)[..., None]
-    return np.asarray(y - fitted[..., 0])
-
-
-def _rss(model: _Model, t: FloatArray, y: FloatArray, k: FloatArray) -> FloatArray:
-    return np.asarray(np.sum(_residuals(model, t, y, k) ** 2, axis=1))
-
-
-def _jacobian(model: _Model, t: FloatArray, k: FloatArray, levels: FloatArray) -> FloatArray:
-    """Return ∂signal/∂(levels, ln k), ``(m, n, q + 1)``."""
-    last = levels[:, :1] * model.slope(t, k)
-    return np.concatenate([model.columns(t, k), last[..., None]], axis=2)
-
-
-def _step(model: _Model, t: FloatArray, y: FloatArray, k: FloatArray) -> FloatArray:
-    levels = _levels(model, t, y, k)
-    basis, upper = np.linalg.qr(_jacobian(model, t, k, levels))
-    along = np.swapaxes(basis, 1, 2) @ _residuals(model, t, y, k)[..., None]
-    return np.asarray(along[:, -1, 0] / upper[:, -1, -1])
-
-
-def _ordinary(
-    model: _Model, t: FloatArray, y: FloatArray, k: FloatArray
-) -> tuple[FloatArray, FloatArray, FloatArray]:
-    """Return levels, covariance of (levels, ln k), and √(RSS/ν), with independent noise."""
-    levels = _levels(model, t, y, k)
-    jacobian = _jacobian(model, t, k, levels)
-    upper = np.linalg.qr(jacobian)[1]
-    inverse = np.linalg.inv(upper)
-    left = len(t) - jacobian.shape[2]
-    deviation = np.sqrt(_rss(model, t, y, k) / left)
-    covariance = inverse @ np.swapaxes(inverse, 1, 2) * deviation[:, None, None] ** 2
-    return levels, covariance, deviation
-
-
 @dataclass(frozen=True, eq=False)
 class _Cells(Projected):
     """Fits with the wander's share of each cell."""
@@ -378,7 +230,7 @@ class _Cells(Projected):
 
 
 def _correlated(
-    model: _Model, t: FloatArray, y: FloatArray, k: FloatArray, levels: FloatArray
+    model: SingleExponential, t: FloatArray, y: FloatArray, k: FloatArray, levels: FloatArray
 ) -> tuple[_Cells, int]:
     """Linearise about the ordinary fit and solve with every correlation the noise may have.
 
@@ -388,9 +240,9 @@ def _correlated(
     typical = float(np.exp(np.median(np.log(k))))
     progress = -np.expm1(-typical * (t - t[0]))
     place = progress / progress[-1] + (t - t[0]) / (t[-1] - t[0])
-    record = binned(t, _residuals(model, t, y, k), place=place)
+    record = binned(t, residuals(model, t, y, k), place=place)
     noise = Noise(record, wander=len(t) >= ENOUGH_POINTS)
-    fits = project(record, record.averaged(_jacobian(model, t, k, levels)), noise)
+    fits = project(record, record.averaged(jacobian(model, t, k, levels)), noise)
     return _Cells(**vars(fits), shares=noise.shares), len(record.time)
 
 
@@ -434,8 +286,8 @@ def first_order(
     found = first_orders(time, signal[None], initial, final=final, dead_time=dead_time, drift=drift)
     t, y = checked_trace(time, signal[None], dead_time)
     k, levels = float(found.rate_constants[0]), found.levels[0]
-    model = _Model(initial, final, drift)
-    residual = _residuals(model, t, model.data(y), np.array([k]))[0]
+    model = SingleExponential(initial, final, drift)
+    residual = residuals(model, t, model.data(y), np.array([k]))[0]
     pattern = pattern_of(t, y[0], residual, found.levels.shape[1] + 1)
     amplitude, u_amplitude = float(levels[0]), float(found.u_levels[0, 0])
     if initial is not None:
@@ -473,13 +325,13 @@ def first_order(
     )
 
 
-def _u_start(model: _Model, t: FloatArray, y: FloatArray, k: float) -> float:
+def _u_start(model: SingleExponential, t: FloatArray, y: FloatArray, k: float) -> float:
     """Return u of amplitude plus final level."""
-    covariance = _ordinary(model, t, y, np.array([k]))[1][0]
+    covariance = ordinary(model, t, y, np.array([k]))[1][0]
     return float(np.sqrt(covariance[:2, :2].sum()))
 
 
-def _caveats(pattern: Pattern, reach: float, model: _Model, points: int) -> list[Caveat]:
+def _caveats(pattern: Pattern, reach: float, model: SingleExponential, points: int) -> list[Caveat]:
     said = []
     if pattern.found:
         said.append(Caveat("first-order-pattern", pattern.sentence))

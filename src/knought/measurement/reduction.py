@@ -22,28 +22,23 @@ from knought.chemistry.species import parse_species
 from knought.errors import Caveat, InputError, Problem
 from knought.measurement.first_order import first_order
 from knought.measurement.initial_slope import initial_slope
-from knought.measurement.shared_errors import SharedError
+from knought.measurement.reduction_errors import shared_errors_of
 from knought.measurement.table import RateTable
 
 if TYPE_CHECKING:
-    from collections.abc import Mapping, Sequence
+    from collections.abc import Mapping
 
     from knought.arrays import FloatArray
     from knought.chemistry.medium import Medium
     from knought.chemistry.medium_series import MediumSeries
     from knought.measurement.absorbance import Optics
     from knought.measurement.runs_reading import Runs
+    from knought.measurement.shared_errors import SharedError
     from knought.measurement.traces import Trace
 
 __all__ = ["Kind", "Method", "Reduction", "reduce_traces"]
 
 Kind = Literal["first-order", "initial-slope", "slopes"]
-
-#: Effects of one source on several runs that differ by less than this share are one number.
-_ALIKE = 0.1
-
-#: Effects on I below this relative size are not worth a name.
-_NEGLIGIBLE = 1e-4
 
 
 @dataclass(frozen=True, eq=False)
@@ -160,7 +155,7 @@ def reduce_traces(
             ]
     if problems:
         raise InputError(problems)
-    shared, u_I, lines = _shared(runs, method, media, found)
+    shared, u_I, lines = shared_errors_of(runs, method, media, [each.by_constant for each in found])
     words = runs.words
     rates = RateTable(
         k=np.array([each.value for each in found]) / divisor,
@@ -337,58 +332,6 @@ def _ligand(runs: Runs, i: int, medium: Medium | None, formula: str) -> float:
         f"the concentration of {formula}, which binds the product, is not known",
         f"add a column with a substance that gives {formula}, or a medium",
     )
-
-
-def _shared(
-    runs: Runs, method: Method, media: MediumSeries | None, found: Sequence[_Found]
-) -> tuple[tuple[SharedError, ...], FloatArray | None, list[str]]:
-    """Return the shared errors, u(I) of each run's own, and lines that say so."""
-    errors = list(() if method.optics is None else method.optics.shared_errors())
-    lines: list[str] = []
-    for name, n in method.orders.items():
-        u = method.stocks.get(name, 0.0) * abs(float(n))
-        if u:
-            errors.append(SharedError(f"stock of {name}", kind="factor", u=u))
-    for reaction in dict.fromkeys(name for each in found for name in each.by_constant):
-        effects = np.array([each.by_constant.get(reaction, 0.0) for each in found])
-        if np.any(effects):
-            size = float(np.sqrt(np.mean(effects**2)))
-            errors.append(SharedError(f"K of {reaction}", kind="factor", u=size))
-            if np.ptp(effects) > _ALIKE * size:
-                lines.append(
-                    f"K of {reaction} moves ln k by {effects.min():.2g} to {effects.max():.2g} "
-                    f"from run to run; the shared error takes their root mean square, {size:.2g}"
-                )
-    u_I = None
-    if media is not None and runs.I is None:
-        more, u_I, further = _of_ionic_strength(media)
-        errors += more
-        lines += further
-    return tuple(errors), u_I, lines
-
-
-def _of_ionic_strength(
-    media: MediumSeries,
-) -> tuple[list[SharedError], FloatArray | None, list[str]]:
-    """Split u(I) into shared factors, where a source moves every I alike, and each run's own."""
-    errors: list[SharedError] = []
-    lines: list[str] = []
-    variance = media.own**2
-    for name, column in zip(media.sources, media.shared.T, strict=True):
-        relative = column / media.ionic_strength
-        size = float(np.sqrt(np.mean(relative**2)))
-        if size < _NEGLIGIBLE:
-            continue
-        if np.ptp(relative) <= _ALIKE * size:
-            errors.append(SharedError(f"{name} in I", kind="ionic-strength-factor", u=size))
-        else:
-            variance = variance + column**2
-            lines.append(
-                f"{name} moves I by {100 * relative.min():.2g} to {100 * relative.max():.2g} % "
-                "from run to run; it is in u(I) of each run"
-            )
-    u_I = np.sqrt(variance)
-    return errors, (u_I if np.all(u_I > 0) else None), lines
 
 
 def _method_line(method: Method, order: Fraction) -> str:

@@ -17,6 +17,7 @@ part within a bin.
 from __future__ import annotations
 
 from dataclasses import dataclass
+from functools import lru_cache
 
 import numpy as np
 
@@ -40,7 +41,7 @@ _SHARES = np.array([0.15, 0.35, 0.55, 0.75, 0.92])
 _CORRELATION_TIMES, _LONGEST_TIME = 7, 0.2
 
 #: Weight before the data are seen of "no correlation"; the rest is spread over the cells.
-_WHITE = 0.4
+_WHITE = 0.5
 
 
 @dataclass(frozen=True, eq=False)
@@ -136,11 +137,9 @@ class Noise:
         t = record.time
         self.times = correlation_times(record) if times is None else times
         self._scale = np.sqrt(record.counts)
-        distance = np.abs(t[:, None] - t)
-        scaled = np.exp(-distance / self.times[:, None, None]) * (
-            self._scale[:, None] * self._scale
+        self._values, self._vectors = _spectra(
+            (t - t[0]).tobytes(), record.counts.tobytes(), self.times.tobytes()
         )
-        self._values, self._vectors = np.linalg.eigh(scaled)
         per_time = len(_SHARES) if wander else 0
         rest = per_time * len(self.times)
         self.shares = np.concatenate([[0.0], np.tile(_SHARES[:per_time], len(self.times))])
@@ -171,6 +170,19 @@ def correlation_times(record: Binned) -> FloatArray:
     span = float(record.time[-1] - record.time[0])
     points = float(record.counts.sum())
     return np.geomspace(span / points, span * _LONGEST_TIME, _CORRELATION_TIMES)
+
+
+@lru_cache(maxsize=64)
+def _spectra(time: bytes, counts: bytes, times: bytes) -> tuple[FloatArray, FloatArray]:
+    """Return eigenvalues and vectors of C, scaled by √counts, for each τ.
+
+    Traces of a study share their times, and so these, the dearest part; at most 15 MB are kept.
+    """
+    t, root = np.frombuffer(time), np.sqrt(np.frombuffer(counts))
+    distance = np.abs(t[:, None] - t)
+    decay = np.exp(-distance / np.frombuffer(times)[:, None, None])
+    values, vectors = np.linalg.eigh(decay * (root[:, None] * root))
+    return frozen(values), frozen(vectors)
 
 
 @dataclass(frozen=True, eq=False)
