@@ -204,3 +204,19 @@ def test_a_wrong_shared_error_is_named(folder: Path, line: str, message: str) ->
     with pytest.raises(kn.InputError) as caught:
         read_study(with_lines(folder, *lines))
     assert message in str(caught.value)
+
+
+def test_a_study_runs_from_traces_to_the_report(tmp_path: Path) -> None:
+    from tests.measurement.test_absorbance import _write_study
+
+    kn.run_study(_write_study(tmp_path), tmp_path / "out")
+    record = json.loads((tmp_path / "out" / "results.json").read_text(encoding="utf-8"))
+    assert [each["path"] for each in record["inputs"]] == ["study.toml", "runs.csv", "traces.csv"]
+    assert "molar absorptivity" in record["budget"]["rate_constant"]["variances"]
+    assert record["parameters"]["charge_product"]["standard_uncertainty"] > 0
+
+
+def test_a_study_takes_its_rates_from_one_source(folder: Path) -> None:
+    path = with_lines(folder, "[traces]", 'runs = "runs.csv"', 'kind = "first-order"')
+    with pytest.raises(kn.InputError, match="name one of the two sections"):
+        read_study(path)
