@@ -65,7 +65,7 @@ def pitzer(T: FloatArray, I: FloatArray, z: float) -> FloatArray:
 
 TRUTHS: dict[str, Truth] = {
     "extended, 3 Å": extended(3),
-    "extended, 6 Å": extended(6),
+    "extended, 5 Å": extended(5),
     "extended, 9 Å": extended(9),
     "Güntelberg": guntelberg,
     "Davies 0.2": davies(0.2),

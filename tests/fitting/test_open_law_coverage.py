@@ -7,6 +7,8 @@ there lies between 0.025 and 0.975, which is what is counted: no root is sought.
 
 from __future__ import annotations
 
+import functools
+from fractions import Fraction
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -22,28 +24,57 @@ from tests.simulation import CHARGE_PRODUCTS, RANGES, TRUTHS, Studies, simulate
 
 if TYPE_CHECKING:
     from knought.arrays import FloatArray
+    from knought.numerics.marginal import CellSolver
+from knought.arrays import frozen
+from knought.fitting.observations import Observations
 
 STUDIES = 1000
+TRUE_ENTHALPY = 50_000.0
 
 
-def probabilities(studies: Studies, priors: Priors = DEFAULT_PRIORS) -> dict[str, FloatArray]:
-    """F(truth) of ln k° and of the charge product in every study, through assess's own solver."""
-    seen = studies.observations
+@functools.cache
+def _prepared(
+    priors: Priors, T: tuple[float, ...], I: tuple[float, ...], u: float
+) -> tuple[CellSolver, Surface]:
+    """The solver of a design: the same for every truth and charge product."""
+    n = len(T)
+    seen = Observations(
+        frozen(np.zeros(n)),
+        frozen(np.full(n, u)),
+        frozen(T),
+        frozen(I),
+        None,
+        None,
+        u_given=True,
+        order=Fraction(2),
+    )
     grid = open_grid(priors)
     surface = Surface(temperature_law("eyring"), grid.law, 298.15, seen.order)
-    solutions = open_solver(seen, surface, grid, run_errors(seen)).solve(studies.ln_k)
+    return open_solver(seen, surface, grid, run_errors(seen)), surface
+
+
+def probabilities(
+    studies: Studies,
+    priors: Priors = DEFAULT_PRIORS,
+    names: tuple[str, ...] = ("ln_rate_constant", "charge_product"),
+) -> dict[str, FloatArray]:
+    """F(truth) of ln k° and of the charge product in every study, through assess's own solver."""
+    seen = studies.observations
+    solver, surface = _prepared(priors, tuple(seen.T), tuple(seen.ionic_strength), seen.u[0])
+    solutions = solver.solve(studies.ln_k)
     weights, p = solutions.weights, len(surface.parameters)
     means = solutions.means.reshape(len(weights), -1, p)
     scales = np.sqrt(np.diagonal(solutions.covariances.reshape(-1, p, p), axis1=1, axis2=2))
     found = {}
-    for name, true in (
-        ("ln_rate_constant", studies.true_ln_k),
-        ("charge_product", studies.charge_product),
-        ("activation_enthalpy", 50_000.0),
-    ):
+    truths = {
+        "ln_rate_constant": studies.true_ln_k,
+        "charge_product": studies.charge_product,
+        "activation_enthalpy": TRUE_ENTHALPY,
+    }
+    for name in names:
         j = surface.parameters.index(name)
         component = Mixture(np.ones(1), means[None, :, :, j], scales[None, None, :, j])
-        found[name] = np.sum(weights * component.cdf(true), axis=1)
+        found[name] = np.sum(weights * component.cdf(truths[name]), axis=1)
     return found
 
 
@@ -58,7 +89,7 @@ def test_intervals_hold_the_truth_in_nine_studies_of_ten_at_least(
         studies = simulate(TRUTHS[truth], z, np.geomspace(*span, 6), studies=STUDIES, seed=seed)
         for name, chance in probabilities(studies).items():
             held = float(np.mean((chance >= 0.025) & (chance <= 0.975)))
-            if held < 0.90 and name != "activation_enthalpy":
+            if held < 0.90:
                 shortfalls.append(f"z_A z_B = {z}: {name} held in {held:.1%}")
     assert not shortfalls
 
@@ -75,7 +106,7 @@ def test_the_counted_probability_is_that_of_the_interval_that_assess_reports() -
             true = {
                 "ln_rate_constant": studies.true_ln_k,
                 "charge_product": studies.charge_product,
-                "activation_enthalpy": 50_000.0,
+                "activation_enthalpy": TRUE_ENTHALPY,
             }[name]
             assert float(mixture.cdf(true)) == pytest.approx(float(chance[i]), abs=1e-8)
             low, high = mixture.interval(0.95)
@@ -101,7 +132,7 @@ def test_the_enthalpy_at_zero_ionic_strength_is_held_whatever_stays_constant(
         u=0.01,
         temperatures=(288.15, 295.65, 303.15, 310.65, 318.15),
     )
-    chance = probabilities(studies)["activation_enthalpy"]
+    chance = probabilities(studies, names=("activation_enthalpy",))["activation_enthalpy"]
     assert np.mean((chance >= 0.025) & (chance <= 0.975)) > 0.92
 
 
@@ -116,5 +147,6 @@ def test_fixing_what_stays_constant_would_not_hold_it() -> None:
         u=0.01,
         temperatures=(288.15, 295.65, 303.15, 310.65, 318.15),
     )
-    chance = probabilities(studies, Priors(constant_size=1.0))["activation_enthalpy"]
+    fixed = Priors(constant_size=1.0)
+    chance = probabilities(studies, fixed, ("activation_enthalpy",))["activation_enthalpy"]
     assert np.mean((chance >= 0.025) & (chance <= 0.975)) < 0.92

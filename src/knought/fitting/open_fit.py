@@ -74,6 +74,10 @@ class OpenFit(Found):
     cell_weights: FloatArray
     log_evidence: float
 
+    def with_caveat(self, caveat: Caveat) -> OpenFit:
+        """Return the fit with one more thing that must be said with it."""
+        return replace(self, caveats=(*self.caveats, caveat))
+
     def _form_parameters(self) -> Mapping[str, Estimate]:
         found = {}
         low, high = self.grid.priors.ion_size

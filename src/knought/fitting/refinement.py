@@ -2,19 +2,21 @@
 
 from __future__ import annotations
 
-from dataclasses import replace
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Protocol, Self, TypeVar
 
 import numpy as np
 
 from knought.errors import Caveat
 
 if TYPE_CHECKING:
-    from collections.abc import Callable
+    from collections.abc import Callable, Mapping
 
-    from knought.fitting.open_fit import OpenFit
+    from knought.arrays import FloatArray
+    from knought.fitting.distribution import ParameterDistribution
+    from knought.fitting.estimate import Estimate
+    from knought.laws.open_law import OpenGrid
 
-__all__ = ["refined"]
+__all__ = ["OnGrid", "refined"]
 
 #: A grid is refined where its effective number of cells is below this, up to this refinement,
 #: until results move by less than this part of their u.
@@ -23,7 +25,38 @@ _FINEST = 8
 _SETTLED_GRID = 0.01
 
 
-def refined(fitted: Callable[[int], OpenFit]) -> OpenFit:
+class OnGrid(Protocol):
+    """What a fit on a grid tells of itself."""
+
+    @property
+    def grid(self) -> OpenGrid:
+        """The cells."""
+        ...
+
+    @property
+    def cell_weights(self) -> FloatArray:
+        """Weight of each cell after the data."""
+        ...
+
+    @property
+    def distribution(self) -> ParameterDistribution:
+        """What is known of the linear parameters."""
+        ...
+
+    @property
+    def parameters(self) -> Mapping[str, Estimate]:
+        """Every parameter by its name."""
+        ...
+
+    def with_caveat(self, caveat: Caveat) -> Self:
+        """Return the fit with one more caveat."""
+        ...
+
+
+Fitted = TypeVar("Fitted", bound=OnGrid)
+
+
+def refined(fitted: Callable[[int], Fitted]) -> Fitted:
     """Return a fit on a grid fine enough.
 
     Parameters
@@ -33,7 +66,7 @@ def refined(fitted: Callable[[int], OpenFit]) -> OpenFit:
 
     Returns
     -------
-    OpenFit
+    OnGrid
         On the default grid, where many of its cells carry the weight; else on one doubled until
         neither ln k° nor the charge product moves by a hundredth of its standard uncertainty, or
         with a caveat that none is fine enough.
@@ -51,18 +84,18 @@ def refined(fitted: Callable[[int], OpenFit]) -> OpenFit:
             "intervals may be off by more than a hundredth of u. Narrow the priors about "
             f"å = {found.parameters['ion_size'].written()}.",
         )
-        return replace(found, caveats=(*found.caveats, caveat))
+        return found.with_caveat(caveat)
     return found
 
 
-def _few_cells(found: OpenFit) -> bool:
+def _few_cells(found: OnGrid) -> bool:
     """Return whether too few cells of a grid with several carry the weight."""
     if found.grid.cells == 1:
         return False
     return 1.0 / float(np.sum(found.cell_weights**2)) < _FEWEST_CELLS
 
 
-def _moved(before: OpenFit, after: OpenFit) -> float:
+def _moved(before: OnGrid, after: OnGrid) -> float:
     """Return by how much a finer grid moved value or u of any parameter, over its u."""
     moves = []
     for name in ("ln_rate_constant", "charge_product"):
