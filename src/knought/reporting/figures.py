@@ -96,7 +96,7 @@ def salt_effect(assessment: Assessment, ax: Axes) -> Axes:
     charges = found.parameters.get("charge_product")
     for i in _spread(len(levels)):
         T = float(levels[i])
-        mixture = found.at(T, roots**2)["rate_constant"].distribution
+        mixture = found.distribution.of(found.surface.ln_k(T, roots**2))
         low, high = (end / LN10 for end in mixture.interval(0.95))
         middle = mixture.mean / LN10
         ax.fill_between(roots, low, high, color=colours[i], alpha=0.22, linewidth=0)
@@ -181,7 +181,7 @@ def _line(
     label: str,
 ) -> None:
     """Draw one fitted line with its 95 % confidence and prediction bands."""
-    mixture = found.at(T, I)["rate_constant"].distribution
+    mixture = found.distribution.of(found.surface.ln_k(T, I))
     x, middle = 1000.0 / T, mixture.mean
     low, high = mixture.interval(0.95)
     # A further run scatters about the line with the typical u of the runs.
