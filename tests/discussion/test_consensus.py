@@ -3,15 +3,20 @@
 from __future__ import annotations
 
 import math
+from typing import TYPE_CHECKING
 
 import numpy as np
 import pytest
+import statsmodels.api
 from hypothesis import given, settings
 from hypothesis import strategies as st
 from statsmodels.stats.meta_analysis import combine_effects
 
 from knought.discussion.consensus import ConsensusMethod, consensus
 from knought.errors import InputError
+
+if TYPE_CHECKING:
+    from knought.arrays import FloatArray
 
 #: Nine laboratories: values and variances, and what the R package metafor publishes for them
 #: (read): DerSimonian-Laird, Paule-Mandel and fixed-effect results, Q, I², H², and the standard
@@ -142,6 +147,64 @@ def test_one_value_has_no_scatter() -> None:
     assert math.isnan(found.birge_ratio)
     assert found.hartung_knapp_interval() == (-math.inf, math.inf)
     assert found.leave_one_out() == ()
+
+
+def random_common(k: int = 9) -> FloatArray:
+    """What three shared errors do to k sources."""
+    jacobian = np.random.default_rng(5).normal(size=(k, 3))
+    return np.asarray(0.1 * jacobian @ jacobian.T)
+
+
+def test_shared_errors_make_it_generalised_least_squares() -> None:
+    """The mean and its u as statsmodels' GLS gives them for the same covariance."""
+    common = random_common()
+    found = consensus(VALUES, UNCERTAINTIES, "fixed", common=common)
+    sigma = np.diag(VARIANCES) + common
+    theirs = statsmodels.api.GLS(VALUES, np.ones(9), sigma=sigma).fit()
+    assert found.value == pytest.approx(float(theirs.params[0]), rel=1e-12)
+    assert found.standard_uncertainty**2 == pytest.approx(
+        float(theirs.normalized_cov_params[0, 0]), rel=1e-10
+    )
+    assert found.q == pytest.approx(float(theirs.ssr), rel=1e-10)
+    assert found.weights.sum() == pytest.approx(1.0)
+    assert found.uncertainties == pytest.approx(np.sqrt(np.diagonal(sigma)))
+
+
+@pytest.mark.parametrize("method", METHODS)
+def test_an_error_that_moves_all_sources_alike_only_widens(method: ConsensusMethod) -> None:
+    apart = consensus(VALUES, UNCERTAINTIES, method)
+    found = consensus(VALUES, UNCERTAINTIES, method, common=np.full((9, 9), 0.3**2))
+    assert found.value == pytest.approx(apart.value, rel=1e-12)
+    assert found.between_variance == pytest.approx(apart.between_variance, rel=1e-9)
+    assert found.q == pytest.approx(apart.q, rel=1e-10)
+    assert found.standard_uncertainty == pytest.approx(
+        math.hypot(apart.standard_uncertainty, 0.3), rel=1e-12
+    )
+
+
+def test_the_moments_of_both_methods_hold_with_shared_errors() -> None:
+    """By the definition of each: E[Q] = k - 1 + τ² tr P, and the scatter at τ² is k - 1."""
+    common = random_common()
+    covariance = np.diag(VARIANCES) + common
+
+    def residual_form(between: float) -> FloatArray:
+        W = np.linalg.inv(covariance + between * np.eye(9))
+        ones = np.ones(9)
+        return np.asarray(W - np.outer(W @ ones, ones @ W) / (ones @ W @ ones))
+
+    moment = consensus(VALUES, UNCERTAINTIES, "dersimonian-laird", common=common)
+    P = residual_form(0.0)
+    assert moment.between_variance == pytest.approx((VALUES @ P @ VALUES - 8) / np.trace(P))
+    root = consensus(VALUES, UNCERTAINTIES, "paule-mandel", common=common)
+    assert VALUES @ residual_form(root.between_variance) @ VALUES == pytest.approx(8.0)
+
+
+@pytest.mark.parametrize(
+    "common", [np.eye(3), np.full((9, 9), math.nan), -np.eye(9), np.triu(np.ones((9, 9)))]
+)
+def test_what_is_no_covariance_of_the_sources_is_refused(common: FloatArray) -> None:
+    with pytest.raises(InputError):
+        consensus(VALUES, UNCERTAINTIES, common=common)
 
 
 def test_inputs_stay_as_they_are_and_results_cannot_be_changed() -> None:

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 from fractions import Fraction
+from typing import TYPE_CHECKING
 
 import numpy as np
 import pytest
@@ -28,6 +29,9 @@ from tests.discussion.studies import (
     arrhenius,
     study,
 )
+
+if TYPE_CHECKING:
+    from knought.fitting.found import Found
 
 #: Debye-Hückel A of water, molar, at 30 °C: definition with IAPWS-95 density and R8-97 permittivity
 #: (computed with the library iapws 1.5.5).
@@ -246,6 +250,30 @@ def test_carrying_adds_the_uncertainty_of_the_way_only() -> None:
     )
     step = abs(1 / 303.15 - 1 / 288.15)
     assert far.carrying_uncertainty == pytest.approx(u_slope * step, rel=1e-6)
+
+
+@pytest.mark.parametrize("found", [FOUND, fit(study())], ids=["named law", "open law"])
+def test_the_distance_of_ours_to_papers_at_one_point_does_not_depend_on_where_they_meet(
+    found: Found,
+) -> None:
+    """The way there and ours at its end share their errors: what is left is ours at the papers."""
+    papers = [k_paper(3e-3, 0.03, T=313.15, I=0.1), k_paper(3.3e-3, 0.05, T=313.15, I=0.1)]
+    here = compare(found, papers, T=313.15, I=0.1).consensuses["rate_constant"]
+    far = compare(found, papers, T=283.15, I=0.0).consensuses["rate_constant"]
+    assert far.z == pytest.approx(here.z, rel=1e-9)
+    assert far.carried[0].carrying_uncertainty > 0
+    assert here.carried[0].carrying_uncertainty == pytest.approx(0.0, abs=1e-12)
+
+
+def test_papers_carried_the_same_way_share_its_error() -> None:
+    """Two equal papers carried from one point: their own ± averages out, the way does not."""
+    papers = [k_paper(3e-3, 0.03, T=288.15, I=0.01)] * 2
+    together = compare(FOUND, papers, T=313.15, I=0.1, method="fixed").consensuses["rate_constant"]
+    way = together.carried[0].carrying_uncertainty
+    assert together.consensus is not None
+    assert together.consensus.standard_uncertainty == pytest.approx(
+        math.hypot(0.03 / math.sqrt(2), way), rel=1e-9
+    )
 
 
 def test_a_paper_that_disagrees_is_named_as_the_one_that_moves_the_consensus() -> None:

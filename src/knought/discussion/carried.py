@@ -3,8 +3,9 @@
 Papers measured at different T and I cannot be averaged as they stand. Each is carried to one T and
 I by the difference of our own surface between the two, value + [ours(T, I) - ours(T', I')], with
 the uncertainty of that difference from the joint covariance; parts that both points share fall
-out. The carried values share our surface, which the consensus takes as independent: where the
-carrying weighs more than the papers' own ±, that is said.
+out. All steps are taken along the one surface, so their errors are shared: the consensus has their
+whole covariance. So does its distance to ours: Σ w [value + ours(T, I) - ours(T', I')] less
+ours(T, I) is Σ w [value - ours(T', I')], where ours counts at the papers' conditions only.
 """
 
 from __future__ import annotations
@@ -17,16 +18,18 @@ import numpy as np
 
 from knought.discussion.consensus import Consensus, ConsensusMethod, consensus
 from knought.laws.activation import activation_rows
+from knought.laws.surface import Rows
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
 
+    from knought.arrays import FloatArray
     from knought.discussion.literature import LiteratureValue
     from knought.discussion.matched import Match
     from knought.fitting.estimate import Estimate
     from knought.fitting.found import Found
 
-__all__ = ["Carried", "CarriedConsensus", "carried_consensus", "carry"]
+__all__ = ["Carried", "CarriedConsensus", "carried_consensus"]
 
 #: Quantities that are carried; a charge product needs no carrying and is combined as it is.
 _ROW_NAMES = {
@@ -59,6 +62,12 @@ class Carried:
     standard_uncertainty: float
     carrying_uncertainty: float
 
+    @property
+    def own_uncertainty(self) -> float:
+        """What the paper's own ± comes to, as compared; nan where it gives none."""
+        theirs = self.literature.compared_uncertainty
+        return math.nan if theirs is None else theirs
+
 
 @dataclass(frozen=True, eq=False)
 class CarriedConsensus:
@@ -76,6 +85,8 @@ class CarriedConsensus:
         Ours there.
     consensus
         Of the papers that give an uncertainty; None where fewer than two do.
+    difference_uncertainty
+        u of ours less the consensus, what both share taken into account; nan without a consensus.
     """
 
     name: str
@@ -84,6 +95,7 @@ class CarriedConsensus:
     carried: tuple[Carried, ...]
     ours: Estimate
     consensus: Consensus | None
+    difference_uncertainty: float
 
     @property
     def weighted(self) -> tuple[Carried, ...]:
@@ -97,18 +109,11 @@ class CarriedConsensus:
 
     @property
     def z(self) -> float:
-        """(ours - consensus)/u_c, u of the consensus after Hartung and Knapp; nan without one.
-
-        With the larger of the two uncertainties of the consensus: that from the scatter is small
-        by chance where few papers happen to agree.
-        """
+        """(ours - consensus)/u_c; nan without a consensus."""
         if self.consensus is None:
             return math.nan
-        u = max(self.consensus.standard_uncertainty, self.consensus.hartung_knapp_uncertainty)
         mean = float(self.ours.distribution.mean)
-        return (mean - self.consensus.value) / math.hypot(
-            u, float(self.ours.distribution.standard_deviation)
-        )
+        return (mean - self.consensus.value) / self.difference_uncertainty
 
     @property
     def carrying_dominates(self) -> bool:
@@ -119,29 +124,42 @@ class CarriedConsensus:
         )
 
 
-def carry(fit: Found, match: Match, T: float, I: float) -> Carried:
-    """Carry one matched literature value to `T` (K) and `I` (mol/L) along our surface.
+@dataclass(frozen=True, eq=False)
+class _Ways:
+    """Our surface between the papers' conditions and the common ones.
 
-    Raises
-    ------
-    InputError
-        If a property of water is needed outside 0-100 °C.
+    Attributes
+    ----------
+    steps : (k,) ndarray
+        Ours at the common conditions less ours at each paper's.
+    covariance : (k, k) ndarray
+        Of the steps.
+    at_papers : (k, k) ndarray
+        Covariance of ours at the papers' conditions.
     """
-    step, u_step = _step(fit, match, T, I)
-    theirs = match.literature.compared_uncertainty
-    total = math.nan if theirs is None else math.hypot(theirs, u_step)
-    return Carried(match.literature, match.literature_value + step, total, u_step)
+
+    steps: FloatArray
+    covariance: FloatArray
+    at_papers: FloatArray
+
+    @property
+    def variances(self) -> FloatArray:
+        """Of each step, shape ``(k,)``."""
+        return np.diagonal(self.covariance)
 
 
-def _step(fit: Found, match: Match, T: float, I: float) -> tuple[float, float]:
-    """Return ours at (T, I) less ours at the paper's conditions, and its u."""
-    name = _ROW_NAMES.get(match.literature.name)
-    if name is None:
-        return 0.0, 0.0
-    there = activation_rows(fit.surface, T, I)[name]
-    here = activation_rows(fit.surface, match.T, match.I or 0.0)[name]
-    mixture = fit.distribution.of(there - here)
-    return float(mixture.mean[0]), float(mixture.standard_deviation[0])
+def _ways(fit: Found, name: str, matches: Sequence[Match], T: float, I: float) -> _Ways:
+    k = len(matches)
+    there = [activation_rows(fit.surface, each.T, each.I or 0.0)[name] for each in matches]
+    here = activation_rows(fit.surface, T, I)[name]
+    mean, joint = fit.distribution.joint(Rows.stacked([*(here - each for each in there), *there]))
+    return _Ways(mean[:k], joint[:k, :k], joint[k:, k:])
+
+
+def _nothing_carried(ours: Estimate, k: int) -> _Ways:
+    """Return the ways of a quantity that has no conditions: ours is the same for every paper."""
+    u = float(ours.distribution.standard_deviation)
+    return _Ways(np.zeros(k), np.zeros((k, k)), np.full((k, k), u**2))
 
 
 def carried_consensus(
@@ -181,20 +199,46 @@ def carried_consensus(
     name = matches[0].literature.name
     T = fit.reference_temperature if T is None else T
     strength = _common_strength(fit, matches) if I is None else I
-    carried = tuple(carry(fit, each, T, strength) for each in matches)
-    ours = matches[0].ours if name not in _ROW_NAMES else fit.at(T, strength)[name]
-    usable = [each for each in carried if math.isfinite(each.standard_uncertainty)]
-    combined = None
-    if len(usable) >= 2:
-        combined = consensus(
-            [each.value for each in usable],
-            [each.standard_uncertainty for each in usable],
-            method,
-        )
+    row_name = _ROW_NAMES.get(name)
+    ours = matches[0].ours if row_name is None else fit.at(T, strength)[name]
     if ours is None:
         return None
+    if row_name is None:
+        ways = _nothing_carried(ours, len(matches))
+    else:
+        ways = _ways(fit, row_name, matches, T, strength)
+    carried = tuple(
+        _carried(*each) for each in zip(matches, ways.steps, ways.variances, strict=True)
+    )
+    combined, u_difference = _together(carried, ways, method)
     shown = strength if fit.describes_salt else None
-    return CarriedConsensus(name, T, shown, carried, ours, combined)
+    return CarriedConsensus(name, T, shown, carried, ours, combined, u_difference)
+
+
+def _carried(match: Match, step: float, variance: float) -> Carried:
+    u_step = math.sqrt(max(variance, 0.0))
+    theirs = match.literature.compared_uncertainty
+    total = math.nan if theirs is None else math.hypot(theirs, u_step)
+    return Carried(match.literature, match.literature_value + float(step), total, u_step)
+
+
+def _together(
+    carried: Sequence[Carried], ways: _Ways, method: ConsensusMethod
+) -> tuple[Consensus | None, float]:
+    """Return the consensus of the papers that give an uncertainty, and u of ours less it."""
+    own = np.array([each.own_uncertainty for each in carried])
+    values = np.array([each.value for each in carried])
+    use = np.flatnonzero(np.isfinite(own))
+    if len(use) < 2:
+        return None, math.nan
+    chosen = np.ix_(use, use)
+    combined = consensus(values[use], own[use], method, common=ways.covariance[chosen])
+    w = combined.weights
+    # The larger of the two uncertainties of the papers: that from their scatter is small by chance
+    # where few of them happen to agree.
+    scatter = max(1.0, combined.hartung_knapp_uncertainty / combined.standard_uncertainty)
+    papers = scatter**2 * float(w**2 @ (own[use] ** 2 + combined.between_variance))
+    return combined, math.sqrt(papers + float(w @ ways.at_papers[chosen] @ w))
 
 
 def _common_strength(fit: Found, matches: Sequence[Match]) -> float:

@@ -11,12 +11,16 @@ As τ² is itself known poorly from few sources, the interval of Hartung and Kna
 (2001) 1771) takes its width from the weighted scatter with Student's t of k - 1 degrees of freedom.
 The Birge ratio √(Q/(k - 1)) (Birge, Phys. Rev. 40 (1932) 207) says by what factor the stated
 uncertainties would have to grow to explain the scatter.
+
+Sources may share errors. With their whole covariance V in place of the u², the weights are
+W = (V + τ² 1)⁻¹, the mean is that of generalised least squares, and Σ w (y - μ)² becomes the
+quadratic form (y - μ)ᵀ W (y - μ); the moment and the root for τ² are taken of that in the same way.
 """
 
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 from typing import TYPE_CHECKING, Literal, TypeAlias, get_args
 
 import numpy as np
@@ -47,8 +51,10 @@ class Consensus:
     ----------
     method
         How the between-source variance was found.
-    values, uncertainties : (k,) ndarray
+    values : (k,) ndarray
         What was combined.
+    covariance : (k, k) ndarray
+        Its stated covariance; diagonal where no errors are shared.
     value
         The weighted mean.
     standard_uncertainty
@@ -61,11 +67,16 @@ class Consensus:
 
     method: ConsensusMethod
     values: FloatArray
-    uncertainties: FloatArray
+    covariance: FloatArray
     value: float
     standard_uncertainty: float
     between_variance: float
     q: float
+
+    @property
+    def uncertainties(self) -> FloatArray:
+        """Stated standard uncertainty of each value, shape ``(k,)``."""
+        return np.sqrt(np.diagonal(self.covariance))
 
     @property
     def sources(self) -> int:
@@ -79,9 +90,12 @@ class Consensus:
 
     @property
     def weights(self) -> FloatArray:
-        """Weight of each value, adding up to one, shape ``(k,)``."""
-        raw = 1.0 / (self.uncertainties**2 + self.between_variance)
-        return np.asarray(raw / raw.sum())
+        """Weight of each value, adding up to one, shape ``(k,)``.
+
+        One may be below zero where sources share most of their errors: what they share is then
+        taken off by their difference.
+        """
+        return _Weighted(self.values, self.covariance, self.between_variance).weights
 
     @property
     def probability(self) -> float:
@@ -112,8 +126,8 @@ class Consensus:
         """√(Σ w (y - μ)²/((k - 1) Σ w)): the uncertainty that the scatter itself shows."""
         if self.degrees_of_freedom == 0:
             return math.nan
-        scatter = float(self.weights @ (self.values - self.value) ** 2)
-        return math.sqrt(scatter / self.degrees_of_freedom)
+        weighted = _Weighted(self.values, self.covariance, self.between_variance)
+        return weighted.uncertainty * math.sqrt(weighted.scatter / self.degrees_of_freedom)
 
     def interval(self, coverage: float = 0.95) -> tuple[float, float]:
         """Return the interval from the standard uncertainty and the normal distribution.
@@ -146,7 +160,7 @@ class Consensus:
             return ()
         keep = ~np.eye(self.sources, dtype=bool)
         return tuple(
-            consensus(self.values[rest], self.uncertainties[rest], method=self.method)
+            _combined(self.values[rest], self.covariance[np.ix_(rest, rest)], self.method)
             for rest in keep
         )
 
@@ -159,6 +173,8 @@ def consensus(
     values: ArrayLike,
     uncertainties: ArrayLike,
     method: ConsensusMethod = "dersimonian-laird",
+    *,
+    common: ArrayLike | None = None,
 ) -> Consensus:
     """Combine values of one quantity from several sources.
 
@@ -167,9 +183,11 @@ def consensus(
     values : (k,) array_like
         The values, in one unit and at one set of conditions; rate constants as ln k.
     uncertainties : (k,) array_like
-        Their standard uncertainties, in the same unit.
+        Their standard uncertainties from errors of their own, in the same unit.
     method
         ``"dersimonian-laird"``, ``"paule-mandel"`` or ``"fixed"``.
+    common : (k, k) array_like, optional
+        Covariance of further errors that sources share; none if not given.
 
     Returns
     -------
@@ -178,40 +196,63 @@ def consensus(
     Raises
     ------
     InputError
-        If the method is unknown, lengths differ, there is no value, or a number is not finite or
-        an uncertainty not above zero.
+        If the method is unknown, lengths differ, there is no value, a number is not finite, an
+        uncertainty is not above zero, or `common` is no covariance of k values.
     """
-    y, u = _checked(values, uncertainties, method)
-    fixed = Consensus(
-        method="fixed",
-        values=y,
-        uncertainties=u,
-        value=0.0,
-        standard_uncertainty=0.0,
-        between_variance=0.0,
-        q=_scatter(y, u, 0.0),
-    )
-    if method == "dersimonian-laird":
-        between = _dersimonian_laird(u, fixed.q)
-    elif method == "paule-mandel":
-        between = _paule_mandel(y, u)
-    else:
-        between = 0.0
-    weights = 1.0 / (u**2 + between)
-    return replace(
-        fixed,
-        method=method,
-        value=float(weights @ y / weights.sum()),
-        standard_uncertainty=float(1.0 / np.sqrt(weights.sum())),
-        between_variance=between,
-    )
-
-
-def _checked(values: ArrayLike, uncertainties: ArrayLike, method: str) -> tuple[FloatArray, ...]:
     if method not in _METHODS:
         raise InputError(
             f"no way to combine values is called {method!r}", f"choose from {', '.join(_METHODS)}"
         )
+    y, u = _checked(values, uncertainties)
+    covariance = np.diag(u**2)
+    if common is not None:
+        covariance = covariance + _checked_common(common, len(y))
+    return _combined(y, frozen(covariance), method)
+
+
+class _Weighted:
+    """The mean of generalised least squares with W = (V + τ² 1)⁻¹, by a Cholesky factor."""
+
+    def __init__(self, y: FloatArray, covariance: FloatArray, between: float) -> None:
+        lower = np.linalg.cholesky(covariance + between * np.eye(len(y)))
+        ones = np.linalg.solve(lower, np.ones(len(y)))
+        information = float(ones @ ones)
+        self.uncertainty = 1.0 / math.sqrt(information)
+        self.weights: FloatArray = np.linalg.solve(lower.T, ones) / information
+        self.mean = float(self.weights @ y)
+        # About the mean first: squares of large numbers would cancel.
+        away = np.linalg.solve(lower, y - self.mean)
+        self.scatter = float(away @ away)
+        self._inverse = np.linalg.inv(lower)
+
+    @property
+    def expected_per_variance(self) -> float:
+        """Trace of P, the residual form W - W 1 1ᵀ W/(1ᵀ W 1): what a unit of τ² adds to Q."""
+        squares = float(np.sum(self._inverse**2))
+        return squares - float(np.sum(self.weights**2)) / self.uncertainty**2
+
+
+def _combined(y: FloatArray, covariance: FloatArray, method: ConsensusMethod) -> Consensus:
+    fixed = _Weighted(y, covariance, 0.0)
+    if method == "dersimonian-laird":
+        between = _dersimonian_laird(fixed, len(y))
+    elif method == "paule-mandel":
+        between = _paule_mandel(y, covariance)
+    else:
+        between = 0.0
+    final = _Weighted(y, covariance, between)
+    return Consensus(
+        method=method,
+        values=y,
+        covariance=covariance,
+        value=final.mean,
+        standard_uncertainty=final.uncertainty,
+        between_variance=between,
+        q=fixed.scatter,
+    )
+
+
+def _checked(values: ArrayLike, uncertainties: ArrayLike) -> tuple[FloatArray, FloatArray]:
     y, u = frozen(values), frozen(uncertainties)
     if y.ndim != 1 or y.shape != u.shape or y.size == 0:
         raise InputError(
@@ -226,34 +267,47 @@ def _checked(values: ArrayLike, uncertainties: ArrayLike, method: str) -> tuple[
     return y, u
 
 
-def _scatter(y: FloatArray, u: FloatArray, between: float) -> float:
-    """Return Σ w (y - μ)² with w = 1/(u² + τ²)."""
-    weights = 1.0 / (u**2 + between)
-    mean = weights @ y / weights.sum()
-    return float(weights @ (y - mean) ** 2)
+def _checked_common(common: ArrayLike, k: int) -> FloatArray:
+    shared = np.asarray(common, dtype=float)
+    if shared.shape != (k, k) or not np.all(np.isfinite(shared)):
+        raise InputError(
+            f"the covariance of shared errors has shape {shared.shape} for {k} values, or holds "
+            "numbers that are not finite",
+            f"give a {k} by {k} matrix",
+        )
+    size = float(np.abs(shared).max())
+    least = float(np.linalg.eigvalsh(0.5 * (shared + shared.T)).min())
+    if np.abs(shared - shared.T).max() > 1e-9 * size or least < -1e-9 * size:
+        raise InputError(
+            "the covariance of shared errors is not symmetric, or has a negative variance",
+            "build it as J Jᵀ from what each shared error does to each value",
+        )
+    return np.asarray(0.5 * (shared + shared.T))
 
 
-def _dersimonian_laird(u: FloatArray, q: float) -> float:
-    """τ² = max(0, (Q - (k - 1))/(Σ w - Σ w²/Σ w)) with w = 1/u²."""
-    weights = 1.0 / u**2
-    below = float(weights.sum() - (weights**2).sum() / weights.sum())
-    return max(0.0, (q - (len(u) - 1)) / below) if len(u) > 1 else 0.0
+def _dersimonian_laird(fixed: _Weighted, k: int) -> float:
+    """τ² = max(0, (Q - (k - 1))/tr P); tr P is Σ w - Σ w²/Σ w where nothing is shared."""
+    return max(0.0, (fixed.scatter - (k - 1)) / fixed.expected_per_variance) if k > 1 else 0.0
 
 
-def _paule_mandel(y: FloatArray, u: FloatArray) -> float:
+def _paule_mandel(y: FloatArray, covariance: FloatArray) -> float:
     """Return τ² for which the scatter equals its expectation; zero where it never exceeds it.
 
     The scatter falls steadily with τ², so that halving a bracket finds the one root.
     """
+
+    def scatter(between: float) -> float:
+        return _Weighted(y, covariance, between).scatter
+
     wanted = len(y) - 1
-    if _scatter(y, u, 0.0) <= wanted:
+    if scatter(0.0) <= wanted:
         return 0.0
     low, high = 0.0, float(np.ptp(y) ** 2)
-    while _scatter(y, u, high) > wanted:
+    while scatter(high) > wanted:
         high *= 2.0
     for _ in range(_MOST_STEPS):
         middle = 0.5 * (low + high)
-        low, high = (middle, high) if _scatter(y, u, middle) > wanted else (low, middle)
+        low, high = (middle, high) if scatter(middle) > wanted else (low, middle)
         if high - low <= _RELATIVE_TOLERANCE * high:
             break
     return 0.5 * (low + high)

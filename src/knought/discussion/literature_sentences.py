@@ -174,8 +174,8 @@ def consensus_sentences(carried: CarriedConsensus) -> list[str]:
         )
     if carried.carrying_dominates:
         sentences.append(
-            "For one paper at least, carrying it here adds more to its uncertainty than its own ±: "
-            "the papers then share our surface, and their consensus is less sure than it looks."
+            "For one paper at least, carrying it here adds more to its uncertainty than its own ±; "
+            "what the papers share by being carried along one surface is in the consensus."
         )
     return sentences
 

@@ -253,7 +253,7 @@ class Found:
         names = self.distribution.names
         rows = activation_rows(self.surface, self.reference_temperature if T is None else T, I)
         names_at = [name for name in rows if name not in names or T is not None or np.any(I)]
-        stacked = _stack([self._identity_rows(), *(rows[name] for name in names_at)])
+        stacked = Rows.stacked([self._identity_rows(), *(rows[name] for name in names_at)])
         mean, covariance = self.distribution.joint(stacked)
         labels = [f"basis:{name}" for name in names] + names_at
         values = dict(zip(labels, uncertainties.correlated_values(mean, covariance), strict=True))
@@ -297,22 +297,3 @@ class Found:
 
 def _first(mixture: Mixture, scalar: bool) -> Mixture:
     return mixture.first() if scalar else mixture
-
-
-def _stack(parts: list[Rows]) -> Rows:
-    """Join affine functions, some of which carry the cells' axis, along the results' axis."""
-    cells = np.broadcast_shapes(*(_cells(part) for part in parts))
-    return Rows(
-        np.concatenate(
-            [np.broadcast_to(part.offset, (*cells, part.offset.shape[-1])) for part in parts],
-            axis=-1,
-        ),
-        np.concatenate(
-            [np.broadcast_to(part.rows, (*cells, *part.rows.shape[-2:])) for part in parts],
-            axis=-2,
-        ),
-    )
-
-
-def _cells(rows: Rows) -> tuple[int, ...]:
-    return rows.offset.shape[:-1] or rows.rows.shape[:-2]

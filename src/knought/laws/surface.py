@@ -17,6 +17,8 @@ import numpy as np
 from knought.errors import InputError
 
 if TYPE_CHECKING:
+    from collections.abc import Sequence
+
     from numpy.typing import ArrayLike
 
     from knought.arrays import FloatArray
@@ -54,6 +56,23 @@ class Rows:
     def plus(self, constant: FloatArray | float) -> Rows:
         """Add a known number, or one for each condition."""
         return Rows(self.offset + constant, self.rows)
+
+    @staticmethod
+    def stacked(parts: Sequence[Rows]) -> Rows:
+        """Join functions, some of which may carry the cells' axis, along the conditions' axis."""
+        cells = np.broadcast_shapes(
+            *(part.offset.shape[:-1] or part.rows.shape[:-2] for part in parts)
+        )
+        return Rows(
+            np.concatenate(
+                [np.broadcast_to(part.offset, (*cells, part.offset.shape[-1])) for part in parts],
+                axis=-1,
+            ),
+            np.concatenate(
+                [np.broadcast_to(part.rows, (*cells, *part.rows.shape[-2:])) for part in parts],
+                axis=-2,
+            ),
+        )
 
 
 @dataclass(frozen=True)
