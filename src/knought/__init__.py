@@ -21,6 +21,7 @@ if TYPE_CHECKING:
     from knought.chemistry.species import Species, charge_product, parse_reactants, parse_species
     from knought.discussion.candidates import Candidate, Expectation
     from knought.discussion.compare import compare
+    from knought.discussion.compensation import compensation
     from knought.discussion.consensus import consensus
     from knought.discussion.electrostatics import electrostatic_part
     from knought.discussion.encounter import encounter_limit
@@ -30,6 +31,7 @@ if TYPE_CHECKING:
     from knought.discussion.next_runs import Plan, plan
     from knought.discussion.reach import Forbidden
     from knought.discussion.runs_curve import runs_curve
+    from knought.discussion.solvent import solvent_series
     from knought.errors import Caveat, InputError, Problem
     from knought.fitting.assess import Assessment, assess
     from knought.fitting.bootstrap import bootstrap
@@ -73,6 +75,7 @@ __all__ = [
     "bootstrap",
     "charge_product",
     "compare",
+    "compensation",
     "consensus",
     "debye_huckel",
     "electrostatic_part",
@@ -93,6 +96,7 @@ __all__ = [
     "read_rates",
     "run_study",
     "runs_curve",
+    "solvent_series",
     "weigh",
 ]
 
@@ -118,6 +122,7 @@ _HOMES = {
     "bootstrap": "fitting.bootstrap",
     "charge_product": "chemistry.species",
     "compare": "discussion.compare",
+    "compensation": "discussion.compensation",
     "consensus": "discussion.consensus",
     "debye_huckel": "chemistry.debye_huckel",
     "electrostatic_part": "discussion.electrostatics",
@@ -138,6 +143,7 @@ _HOMES = {
     "read_rates": "measurement.reading",
     "run_study": "study",
     "runs_curve": "discussion.runs_curve",
+    "solvent_series": "discussion.solvent",
     "weigh": "discussion.mechanism",
 }
 

@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING
 import pytest
 from pydantic import ValidationError
 
-from knought.cli import compare, mechanism
+from knought.cli import compare, compensation, mechanism
 from knought.cli.mechanism import read_candidate
 from knought.errors import InputError
 from knought.study_sections.discussion import CandidateSection, LiteratureSection
@@ -158,3 +158,29 @@ def test_the_literature_of_a_study_file() -> None:
     assert section.consensus == "dersimonian-laird"
     with pytest.raises(ValidationError):
         LiteratureSection.model_validate({"file": "x", "consensus": "median"})
+
+
+def test_compensation_names_the_artefact_and_draws_both_plots(
+    rates: str, tmp_path: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    """Three times one reaction with other errors: errors alone make the line."""
+    paths = []
+    for seed in (4, 5, 6):
+        path = tmp_path / f"reaction {seed}.csv"
+        study(noise=1.0, seed=seed).to_frame().to_csv(path, index=False)
+        paths.append(str(path))
+    figure = tmp_path / "both.svg"
+    call(compensation, *paths, "--figure", str(figure))
+    said = capsys.readouterr().out
+    for words in ("reaction 4", "harmonic mean", "isokinetic artefact", "no relation is shown"):
+        assert words in said
+    assert figure.read_text(encoding="utf-8").count("<svg") == 1
+
+
+def test_reactions_need_names_of_their_own(rates: str) -> None:
+    with pytest.raises(InputError, match="two reactions are called 'rates'"):
+        call(compensation, rates, rates, rates)
+    with pytest.raises(InputError, match="1 labels for 3 tables"):
+        call(compensation, rates, rates, rates, "--label", "a")
+    with pytest.raises(InputError, match="three at least"):
+        call(compensation, rates, rates, "--label", "a", "--label", "b")

@@ -6,7 +6,19 @@ import argparse
 import sys
 from typing import TYPE_CHECKING, Protocol
 
-from knought.cli import compare, demo, fit, mechanism, medium, plan, read, reduce, report, template
+from knought.cli import (
+    compare,
+    compensation,
+    demo,
+    fit,
+    mechanism,
+    medium,
+    plan,
+    read,
+    reduce,
+    report,
+    template,
+)
 from knought.version import __version__
 
 if TYPE_CHECKING:
@@ -22,6 +34,7 @@ examples:
   knought read rates.xlsx --out clean.csv          what is understood of a table
   knought fit rates.csv                            table in, answer out
   knought fit rates.csv --reactants "A^2- + B^-"   the same with the charges known
+  knought compensation a.csv b.csv c.csv           several reactions together
   knought template --out my-study                  blank table and study file to fill in
   knought report my-study/study.toml --out report  everything, into a folder
 """
@@ -58,6 +71,7 @@ _SUBCOMMANDS: tuple[Subcommand, ...] = (
     report,
     compare,
     mechanism,
+    compensation,
     plan,
     template,
 )

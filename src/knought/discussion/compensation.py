@@ -135,15 +135,26 @@ class Compensation:
     gibbs_slope_uncertainty: float
 
     @property
+    def degrees_of_freedom(self) -> int:
+        """Of the scatter about a line."""
+        return len(self.points) - 2
+
+    @property
+    def slope_interval(self) -> tuple[float, float]:
+        """95 % interval of the slope of ΔH‡ against ΔS‡, in K (Student's t)."""
+        reach = _reach(self.degrees_of_freedom) * self.slope_uncertainty
+        return self.slope - reach, self.slope + reach
+
+    @property
     def artefact_suspected(self) -> bool:
         """Whether the 95 % interval of the slope holds T_hm: errors alone would give that line."""
-        reach = _reach(len(self.points) - 2) * self.slope_uncertainty
-        return abs(self.slope - self.harmonic_mean_temperature) <= reach
+        low, high = self.slope_interval
+        return low <= self.harmonic_mean_temperature <= high
 
     @property
     def related(self) -> bool:
         """Whether the slope of ΔH‡ against ΔG‡ at T_hm differs from zero at 95 %."""
-        reach = _reach(len(self.points) - 2) * self.gibbs_slope_uncertainty
+        reach = _reach(self.degrees_of_freedom) * self.gibbs_slope_uncertainty
         return abs(self.gibbs_slope) > reach
 
 

@@ -5,7 +5,7 @@ from __future__ import annotations
 import math
 from typing import TYPE_CHECKING
 
-from knought.discussion.literature_sentences import probability_text
+from knought.discussion.literature_sentences import probability_text, signed_fixed
 from knought.discussion.standing import law_words, signed
 
 if TYPE_CHECKING:
@@ -273,21 +273,23 @@ def shift_sentence(shifts: Sequence[Shift], laws: str) -> str:
 
 def compensation_sentences(found: Compensation) -> list[str]:
     """Return what a plot of ΔH‡ against ΔS‡ does and does not say."""
+    low, high = (signed_fixed(end, 0) for end in found.slope_interval)
     sentences = [
-        f"ΔH‡ against ΔS‡ of {len(found.points)} reactions has a slope of {found.slope:.0f} ± "
-        f"{found.slope_uncertainty:.0f} K; the harmonic mean of the experimental temperatures is "
+        f"ΔH‡ against ΔS‡ of {len(found.points)} reactions has a slope of "
+        f"{signed_fixed(found.slope, 0)} K (95 % interval {low} to {high} K from the scatter, "
+        f"ν = {found.degrees_of_freedom}); the harmonic mean of the experimental temperatures is "
         f"{found.harmonic_mean_temperature:.0f} K."
     ]
     if found.artefact_suspected:
         sentences.append(
-            "The two agree: errors of ΔH‡ and ΔS‡ alone, which go together, give such a line (the "
-            "isokinetic artefact; Krug, Hunter and Grieger 1976). It is no evidence of a common "
-            "mechanism."
+            "The interval holds that temperature: errors of ΔH‡ and ΔS‡ alone, which go together, "
+            "could give such a line (the isokinetic artefact; Krug, Hunter and Grieger 1976). It "
+            "is no evidence of a common mechanism."
         )
     sentences.append(
         f"Against ΔG‡ at {found.harmonic_mean_temperature:.0f} K, where the errors are nearly "
-        f"uncorrelated, ΔH‡ has a slope of {found.gibbs_slope:.2g} ± "
-        f"{found.gibbs_slope_uncertainty:.2g}: "
+        f"uncorrelated, ΔH‡ has a slope of {signed_fixed(found.gibbs_slope, 2)} with a "
+        f"standard uncertainty of {found.gibbs_slope_uncertainty:.2g} from the scatter: "
         + ("a relation beyond the errors." if found.related else "no relation is shown.")
     )
     return sentences

@@ -34,6 +34,7 @@ __all__ = [
     "symbol_cell",
     "text_column",
     "unit_cell",
+    "value_cells",
     "words",
 ]
 
@@ -163,12 +164,16 @@ def estimate_cells(estimate: Estimate) -> tuple[Cell, Cell]:
     """Return value and standard uncertainty as two cells, in the shown unit."""
     what = estimate.quantity
     value, u = float(estimate.value), float(estimate.standard_uncertainty)
-    digits = what.rounded(value, None if estimate.given else u)
-    value_cell = _cell(what.shown(value), digits, pair=False)
     if estimate.given:
-        return value_cell, words("given")
+        return _cell(what.shown(value), what.rounded(value, None), pair=False), words("given")
+    return value_cells(what, value, u)
+
+
+def value_cells(what: Quantity, value: float, u: float) -> tuple[Cell, Cell]:
+    """Return value and standard uncertainty (SI units) as two cells, in the shown unit."""
+    digits = what.rounded(value, u)
     spread = Rounded(digits.uncertainty, "", digits.exponent)
-    return value_cell, _cell(what.shown(u), spread, pair=False)
+    return _cell(what.shown(value), digits, pair=False), _cell(what.shown(u), spread, pair=False)
 
 
 def pair_cell(estimate: Estimate | None) -> Cell:
