@@ -1,13 +1,17 @@
 """How often nominal 95 % intervals hold the truth: simulated studies over a seeded design.
 
     python -m tests.benchmarks.coverage run [--cells 360] [--studies 4000] [--workers 2]
+    python -m tests.benchmarks.coverage recount
     python -m tests.benchmarks.coverage table
 
 ``run`` goes on where it stopped (results are kept line by line in ``coverage.csv`` beside this
 script), ``table`` prints the summary that stands in DEVELOPERS.md. A cell is one truth, charge
 product, range of I, design of runs, size of u, stated or from scatter, with or without shared
-errors. Whether an interval holds the truth is read from the distribution function at the truth,
-which is the same statement and needs no root; mean widths come from a hundred studies.
+errors. Cells 360 to 387 have errors of each run's T and I besides, and a fit of their own for every
+study (:mod:`tests.benchmarks.coverage_conditions`). ``recount`` counts the named laws' intervals of
+scatter beside shared errors once more, which is quick, and keeps what stands of the open law.
+Whether an interval holds the truth is read from the distribution function at the truth, which is
+the same statement and needs no root; mean widths come from a hundred studies.
 """
 
 from __future__ import annotations
@@ -27,7 +31,6 @@ from knought.chemistry.activity import DaviesForm
 from knought.fitting.observations import Observations
 from knought.fitting.open_fit import open_solver
 from knought.fitting.run_errors import RunErrors, run_errors
-from knought.fitting.scatter import scale_nodes
 from knought.laws.activation import activation_rows
 from knought.laws.open_law import open_grid
 from knought.laws.salt import SALT_LAWS, SaltLaw, salt_law
@@ -36,6 +39,7 @@ from knought.laws.temperature import temperature_law
 from knought.measurement.shared_errors import SharedError
 from knought.numerics.least_squares import solve
 from knought.numerics.quantiles import Mixture
+from knought.numerics.scatter_beside_known import scatter_beside_known
 from tests.simulation import (
     BOLTZMANN,
     GAS_CONSTANT,
@@ -120,6 +124,33 @@ class Cell:
     u: float
     stated: bool
     shared: bool
+    u_T: float = 0.0
+    u_I: float = 0.0
+
+
+#: The first cell whose runs have errors of T and I, and how many such cells there are.
+CONDITIONS_FROM, CONDITIONS_CELLS = 360, 28
+
+
+def cells_with_condition_errors() -> list[Cell]:
+    """Cells whose runs have errors of their own T (K) and I (relative): two of every truth."""
+    random = np.random.default_rng(20261202)
+    names = list(LAWS)
+    return [
+        Cell(
+            CONDITIONS_FROM + number,
+            names[number % len(names)],
+            0 if LAWS[names[number % len(names)]].only_neutral else int(random.choice(CHARGES)),
+            RANGES[random.integers(len(RANGES))],
+            int(random.choice(DESIGNS)),
+            float(random.choice([0.01, 0.02, 0.04])),
+            stated=True,
+            shared=bool(random.integers(2)),
+            u_T=float(random.choice([0.05, 0.1, 0.3])),
+            u_I=float(random.choice([0.01, 0.03])),
+        )
+        for number in range(CONDITIONS_CELLS)
+    ]
 
 
 def cells(count: int) -> list[Cell]:
@@ -158,10 +189,26 @@ def conditions(runs: int, span: tuple[float, float]) -> tuple[FloatArray, FloatA
 
 def evaluate(cell: Cell, studies: int) -> dict[str, object]:
     """Simulate a cell and count how often each interval holds the truth."""
+    if cell.u_T > 0:
+        from tests.benchmarks.coverage_conditions import evaluate_one_by_one
+
+        return labels(cell, studies) | evaluate_one_by_one(cell, studies)
+    law = LAWS[cell.law]
+    seen, errors, observed = simulated(cell, studies)
+    true = true_values(cell.charges)
+    found = labels(cell, studies)
+    held, width = _open(seen, errors, observed, true, cell.stated)
+    found |= {f"open {name}": value for name, value in held.items()}
+    found |= {f"width {name}": value for name, value in width.items()}
+    return found | _named_laws(law, seen, errors, observed, true, cell.stated)
+
+
+def simulated(cell: Cell, studies: int) -> tuple[Observations, RunErrors, FloatArray]:
+    """Return the conditions of a cell, the errors of its runs, and ln k of every study."""
     law = LAWS[cell.law]
     T, I = conditions(cell.runs, cell.span)
     n = len(T)
-    exact = _eyring(T) + np.log(10) * law.truth(T, I, cell.charges)
+    exact = true_ln_k(law.truth, cell.charges, T, I)
     seen = Observations(
         frozen(exact),
         frozen(np.full(n, cell.u)),
@@ -178,7 +225,12 @@ def evaluate(cell: Cell, studies: int) -> dict[str, object]:
     noise = cell.u * random.standard_normal((studies, n))
     common = random.standard_normal((studies, errors.shared.shape[1])) @ errors.shared.T
     observed = exact + noise + common
-    found: dict[str, object] = {
+    return seen, errors, observed
+
+
+def labels(cell: Cell, studies: int) -> dict[str, object]:
+    """What a line of the results says of its cell."""
+    return {
         "cell": cell.number,
         "law": cell.law,
         "charges": cell.charges,
@@ -187,21 +239,52 @@ def evaluate(cell: Cell, studies: int) -> dict[str, object]:
         "u": cell.u,
         "u from": "stated" if cell.stated else "scatter",
         "shared": int(cell.shared),
+        "u(T)": cell.u_T,
+        "u(I)": cell.u_I,
         "studies": studies,
-        "covered": int(law.covered),
+        "covered": int(LAWS[cell.law].covered),
     }
-    true = _true_values(cell.charges)
-    held, width = _open(seen, errors, observed, true, cell.stated)
-    found |= {f"open {name}": value for name, value in held.items()}
-    found |= {f"width {name}": value for name, value in width.items()}
+
+
+def _named_laws(
+    law: Law,
+    seen: Observations,
+    errors: RunErrors,
+    observed: FloatArray,
+    true: dict[str, float],
+    stated: bool,
+) -> dict[str, object]:
+    found: dict[str, object] = {}
     if law.known is not None:
-        held = _named(law.known, seen, errors, observed, true, cell.stated)
+        held = _named(law.known, seen, errors, observed, true, stated)
         found |= {f"known {name}": value for name, value in held.items()}
     for name in NAMED:
-        held = _named(SALT_LAWS[name], seen, errors, observed, true, cell.stated)
+        held = _named(SALT_LAWS[name], seen, errors, observed, true, stated)
         for quantity in ("rate_constant", "charge_product"):
             found[f"{name} {quantity}"] = held[quantity]
     return found
+
+
+def recount(studies: int) -> None:
+    """Count the named laws' intervals of scatter beside shared errors once more."""
+    rows, made = read(), {cell.number: cell for cell in cells(CONDITIONS_FROM)}
+    for row in rows:
+        cell = made.get(int(row["cell"]))
+        if cell is None or cell.stated or not cell.shared or int(row["studies"]) != studies:
+            continue
+        known = true_values(cell.charges)
+        fresh = _named_laws(LAWS[cell.law], *simulated(cell, studies), known, cell.stated)
+        row |= {key: str(_short(value)) for key, value in fresh.items()}
+        print(f"cell {cell.number}: {cell.law}", flush=True)
+    with RESULTS.open("w", newline="", encoding="utf-8") as stream:
+        writer = csv.DictWriter(stream, COLUMNS, lineterminator="\n", restval="0")
+        writer.writeheader()
+        writer.writerows(rows)
+
+
+def true_ln_k(truth: Truth, charges: float, T: FloatArray, I: FloatArray) -> FloatArray:
+    """ln k of a truth without error."""
+    return np.asarray(_eyring(T) + np.log(10) * truth(T, I, charges))
 
 
 def _eyring(T: FloatArray) -> FloatArray:
@@ -209,7 +292,8 @@ def _eyring(T: FloatArray) -> FloatArray:
     return np.asarray(eyring - ENTHALPY / GAS_CONSTANT / T)
 
 
-def _true_values(charges: int) -> dict[str, float]:
+def true_values(charges: int) -> dict[str, float]:
+    """The four quantities of a truth at T_ref and I → 0."""
     return {
         "activation_energy": ENTHALPY + GAS_CONSTANT * T_REF,
         "activation_entropy": ENTROPY,
@@ -222,7 +306,7 @@ def _true_slopes(
     truth: Truth, charges: float, T: FloatArray, I: FloatArray
 ) -> tuple[FloatArray, FloatArray]:
     def ln_k(T: FloatArray, I: FloatArray) -> FloatArray:
-        return np.asarray(_eyring(T) + np.log(10) * truth(T, I, charges))
+        return true_ln_k(truth, charges, T, I)
 
     h, e = 1e-3, 1e-5 * I
     return (
@@ -231,7 +315,7 @@ def _true_slopes(
     )
 
 
-def _rows(surface: Surface) -> tuple[list[str], FloatArray, FloatArray]:
+def quantity_rows(surface: Surface) -> tuple[list[str], FloatArray, FloatArray]:
     """The four quantities as affine functions of the parameters at T_ref and I → 0."""
     made = activation_rows(surface, T_REF)
     names, rows, offsets = [], [], []
@@ -266,7 +350,7 @@ def _open(
         nu = seen.runs - 3
         scales = np.geomspace(0.05, 3 * (2000.0 ** (1 / nu)) if nu > 1 else 1e3, 28)
     solver = open_solver(seen, surface, grid, errors, scales)
-    names, rows, offsets = _rows(surface)
+    names, rows, offsets = quantity_rows(surface)
     variances = np.einsum("qp,cspr,qr->csq", rows, solver.covariances, rows)
     deviations = np.sqrt(variances).reshape(-1, len(names))
     inside = np.zeros(len(names))
@@ -303,7 +387,7 @@ def _named(
 ) -> dict[str, float]:
     surface = Surface(temperature_law("eyring"), law, T_REF, seen.order)
     design = surface.ln_k(seen.T, seen.ionic_strength)
-    names, rows, offsets = _rows(surface)
+    names, rows, offsets = quantity_rows(surface)
     if seen.runs <= len(surface.parameters):
         return dict.fromkeys(QUANTITIES, math.nan)
     fit = solve(design.rows, observed[0] - design.offset, errors.u, shared=errors.shared)
@@ -327,12 +411,12 @@ def _named(
         inner = np.linalg.inv(np.eye(J.shape[1]) + J.T @ J)
         chi = np.sum(residual**2, axis=1) - np.einsum("mi,ij,mj->m", pulled, inner, pulled)
         scatter = chi[:, None] / nu * own
-        sigma = scale_nodes(float(nu), nu)
-        weight = sigma**-nu * np.exp(-0.5 * nu / sigma**2)
-        chance = np.zeros_like(places)
-        for share, scale in zip(weight / weight.sum(), sigma, strict=True):
-            spread = np.sqrt(scale**2 * scatter + shared)
-            chance += share * Mixture(one, places[None], spread[None]).cdf(goal)
+        chance = np.concatenate(
+            [
+                scatter_beside_known(places[part], scatter[part], shared, nu).cdf(goal)
+                for part in np.array_split(np.arange(len(places)), 8)
+            ]
+        )
     inside = np.mean((chance >= 0.025) & (chance <= 0.975), axis=0)
     return dict.fromkeys(QUANTITIES, math.nan) | dict(zip(names, inside.tolist(), strict=True))
 
@@ -346,6 +430,8 @@ COLUMNS = (
     "u",
     "u from",
     "shared",
+    "u(T)",
+    "u(I)",
     "studies",
     "covered",
     *(f"open {name}" for name in QUANTITIES),
@@ -358,7 +444,8 @@ COLUMNS = (
 def run(count: int, studies: int, workers: int) -> None:
     """Evaluate the cells that are not yet in the results."""
     done = {int(row["cell"]) for row in read()} if RESULTS.exists() else set()
-    left = [cell for cell in cells(count) if cell.number not in done]
+    wanted = cells(min(count, CONDITIONS_FROM)) + cells_with_condition_errors()
+    left = [cell for cell in wanted if cell.number not in done]
     fresh = not RESULTS.exists()
     with RESULTS.open("a", newline="", encoding="utf-8") as stream:
         writer = csv.DictWriter(stream, COLUMNS, lineterminator="\n")
@@ -422,13 +509,15 @@ def table() -> str:
 def main() -> None:
     """Read the call."""
     parser = argparse.ArgumentParser(description=__doc__)
-    parser.add_argument("what", choices=("run", "table"))
+    parser.add_argument("what", choices=("run", "recount", "table"))
     parser.add_argument("--cells", type=int, default=360)
     parser.add_argument("--studies", type=int, default=4000)
     parser.add_argument("--workers", type=int, default=2)
     options = parser.parse_args()
     if options.what == "run":
         run(options.cells, options.studies, options.workers)
+    elif options.what == "recount":
+        recount(options.studies)
     print(table())
 
 

@@ -102,13 +102,16 @@ def test_the_fit_is_generalised_least_squares_with_the_dense_covariance() -> Non
         "activation_gibbs_energy",
     ],
 )
-@pytest.mark.parametrize("kind", ["named", "open", "open, charges given", "open, scatter"])
+@pytest.mark.parametrize(
+    "kind", ["named", "named, scatter", "open", "open, charges given", "open, scatter"]
+)
 def test_contributions_add_up_to_the_variance(kind: str, name: str) -> None:
     seen = replace(
         study(*SHARED), u_T=frozen(np.full(16, 0.1)), u_I=frozen(0.01 * np.ones(16) * 0.01)
     )
     fits: dict[str, Callable[[], Found]] = {
         "named": lambda: fit_surface(seen, salt_law="guntelberg", scatter="given"),
+        "named, scatter": lambda: fit_surface(seen, salt_law="guntelberg", scatter="scatter"),
         "open": lambda: fit_open(seen, scatter="given"),
         "open, charges given": lambda: fit_open(seen, scatter="given", charge_product=2),
         "open, scatter": lambda: fit_open(seen, scatter="scatter"),
@@ -119,7 +122,7 @@ def test_contributions_add_up_to_the_variance(kind: str, name: str) -> None:
             budget(found, name)
         return
     parts = budget(found, name)
-    assert parts.total == pytest.approx(u_of(found, name) ** 2, rel=1e-8)
+    assert parts.total == pytest.approx(u_of(found, name) ** 2, rel=1e-10)
     assert sum(parts.shares.values()) == pytest.approx(1, abs=1e-12)
     assert {"repeatability of k", "absorptivity", "probe offset"} <= set(parts.variances)
     assert parts.uncertainty("absorptivity") >= 0
@@ -240,16 +243,14 @@ def test_scatter_beside_shared_errors_scales_only_the_independent_part() -> None
     shared = replace(plain, shared=(SharedError("absorptivity", "factor", 0.03),))
     one = fit_surface(plain, salt_law="guntelberg")
     other = fit_surface(shared, salt_law="guntelberg")
-    # Integrated over the size of the scatter, u is that of Student's t: √(ν/(ν - 2)) more.
-    wider = np.sqrt(13 / 11)
     u_E = u_of(one, "activation_energy")
-    assert u_of(other, "activation_energy") == pytest.approx(wider * u_E, rel=0.02)
+    assert u_of(other, "activation_energy") == pytest.approx(u_E, rel=1e-6)
     k = float(one.parameters["rate_constant"].value)
-    expected = np.hypot(wider * u_of(one, "rate_constant"), 0.03 * k)
-    assert u_of(other, "rate_constant") == pytest.approx(expected, rel=0.02)
+    expected = np.hypot(u_of(one, "rate_constant"), 0.03 * k)
+    assert u_of(other, "rate_constant") == pytest.approx(expected, rel=1e-6)
     # What the scatter tells has Student's t; what is known besides has none.
     narrow, t = other.parameters["activation_energy"], one.parameters["activation_energy"]
-    assert narrow.interval(0.95) == pytest.approx(t.interval(0.95), abs=0.03 * u_E)
+    assert narrow.interval(0.95) == pytest.approx(t.interval(0.95), abs=1e-4 * u_E)
     low, high = (np.log(float(end)) for end in other.parameters["rate_constant"].interval(0.95))
     middle = np.log(k)
     assert high - middle == pytest.approx(middle - low, rel=0.02)

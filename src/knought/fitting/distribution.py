@@ -15,6 +15,7 @@ import numpy as np
 from knought.arrays import FloatArray, IndexArray, frozen
 from knought.laws.surface import Rows
 from knought.numerics.quantiles import Mixture
+from knought.numerics.scatter_beside_known import scatter_beside_known
 
 __all__ = ["ParameterDistribution"]
 
@@ -37,6 +38,9 @@ class ParameterDistribution:
         Infinite for normal components.
     cell : (c,) ndarray of int
         Which cell of a stacked salt law each component belongs to; zeros for a named law.
+    known : (p, p) ndarray, optional
+        The part of the one component's covariance that has no degrees of freedom because the size
+        of its errors is known; the rest is from the scatter and has `degrees_of_freedom`.
     """
 
     names: tuple[str, ...]
@@ -45,6 +49,7 @@ class ParameterDistribution:
     covariances: FloatArray
     degrees_of_freedom: float = math.inf
     cell: IndexArray | None = None
+    known: FloatArray | None = None
 
     def of(self, rows: Rows) -> Mixture:
         """Return the distribution of affine functions of the parameters.
@@ -63,8 +68,14 @@ class ParameterDistribution:
         offset, matrix = self._by_component(rows)
         locations = offset + np.einsum("...np,...p->...n", matrix, self.means)
         half = np.einsum("...np,...pq->...nq", matrix, self.covariances)
-        variances = np.einsum("...np,...np->...n", half, matrix)
-        scales = np.sqrt(np.maximum(variances, 0))
+        variances = np.maximum(np.einsum("...np,...np->...n", half, matrix), 0)
+        if self.known is not None:
+            known = np.einsum("np,pq,nq->n", matrix, self.known, matrix)
+            known = np.clip(known, 0, variances[0])
+            return scatter_beside_known(
+                locations[0], variances[0] - known, known, int(self.degrees_of_freedom)
+            )
+        scales = np.sqrt(variances)
         return Mixture(self.weights, locations, scales, self.degrees_of_freedom)
 
     def joint(self, rows: Rows) -> tuple[FloatArray, FloatArray]:

@@ -16,17 +16,22 @@ import numpy as np
 
 from knought.arrays import frozen
 from knought.errors import InputError
-from knought.fitting.distribution import ParameterDistribution
 from knought.fitting.fit import resolve
 from knought.fitting.observations import Observations, observe
 from knought.fitting.scatter import judge_scatter
-from knought.fitting.surface_fit import SurfaceFit, fit_surface
+from knought.fitting.surface_fit import (
+    SurfaceFit,
+    fit_surface,
+    headline_distribution,
+    scatter_scale,
+)
 from knought.numerics.least_squares import LinearFit, solve
 
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
 
     from knought.arrays import FloatArray
+    from knought.fitting.run_errors import RunErrors
     from knought.fitting.scatter import ScatterChoice
     from knought.laws.salt import SaltLaw
     from knought.laws.surface import Rows
@@ -88,29 +93,29 @@ def fit_in_k(
         ion_size=ion_size,
         scatter=scatter,
     )
-    k = np.exp(seen.ln_k)
+    # Errors of T and I count as they did there: along the slopes of the fit to ln k.
+    errors = start.errors
+    k = np.exp(seen.ln_k + errors.shift)
     # Equal absolute weights need a size near that of k, so that nothing under- or overflows.
-    u = seen.u * k if seen.u_given else np.full(seen.runs, k.max()) * seen.u
-    rows = start.surface.ln_k(seen.T, seen.ionic_strength)
-    solution = _gauss_newton(_Problem(rows, k, u, start.errors.shared), start.solution.parameters)
+    size = k if seen.u_given else np.full(seen.runs, k.max())
+    rows = start.surface.ln_k(errors.T, errors.I)
+
+    def solved(errors: RunErrors) -> LinearFit:
+        problem = _Problem(rows, k, errors.u * size, errors.shared)
+        return _gauss_newton(problem, start.solution.parameters)
+
+    solution = solved(errors)
+    scale, scaled = scatter_scale(solution, errors, solved)
     judged = judge_scatter(
         solution.chi_square, solution.degrees_of_freedom, stated=seen.u_given, choice=scatter
     )
-    scale = judged.factor
+    judged = replace(judged, shared_scale=scale if errors.shared_sources else None)
     return replace(
         start,
         solution=solution,
-        scatter_solution=replace(
-            solution,
-            covariance=frozen(solution.covariance * judged.birge_ratio**2),
-            gain=frozen(solution.gain * judged.birge_ratio),
-        ),
-        distribution=ParameterDistribution(
-            names=start.distribution.names,
-            weights=np.ones(1),
-            means=solution.parameters[None],
-            covariances=solution.covariance[None] * scale**2,
-            degrees_of_freedom=judged.headline_degrees_of_freedom,
+        scatter_solution=scaled,
+        distribution=headline_distribution(
+            start.surface, solution, scaled, judged, bool(errors.shared_sources)
         ),
         scatter=judged,
     )

@@ -15,7 +15,7 @@ from knought.fitting.distribution import ParameterDistribution
 from knought.fitting.found import Found
 from knought.fitting.observations import Observations, observe
 from knought.fitting.run_errors import settle
-from knought.fitting.scatter import judge_scatter, scale_nodes
+from knought.fitting.scatter import judge_scatter
 from knought.laws.salt import salt_law as named_salt_law
 from knought.laws.surface import Surface
 from knought.laws.temperature import temperature_law as named_temperature_law
@@ -37,7 +37,15 @@ if TYPE_CHECKING:
     from knought.laws.salt import SaltLaw
     from knought.measurement.table import RateTable
 
-__all__ = ["DEFAULT_TEMPERATURE_LAW", "ManySurfaceFits", "SurfaceFit", "fit_many", "fit_surface"]
+__all__ = [
+    "DEFAULT_TEMPERATURE_LAW",
+    "ManySurfaceFits",
+    "SurfaceFit",
+    "fit_many",
+    "fit_surface",
+    "headline_distribution",
+    "scatter_scale",
+]
 
 DEFAULT_TEMPERATURE_LAW = "eyring"
 DEFAULT_REFERENCE_TEMPERATURE = 298.15
@@ -185,7 +193,9 @@ def fit_surface(
     return SurfaceFit(
         observations=seen,
         surface=surface,
-        distribution=_distribution(surface, solution, scaled, judged, bool(errors.shared_sources)),
+        distribution=headline_distribution(
+            surface, solution, scaled, judged, bool(errors.shared_sources)
+        ),
         scatter=judged,
         errors=errors,
         caveats=(
@@ -199,7 +209,7 @@ def fit_surface(
     )
 
 
-def _distribution(
+def headline_distribution(
     surface: Surface,
     solution: LinearFit,
     scaled: LinearFit | None,
@@ -208,31 +218,19 @@ def _distribution(
 ) -> ParameterDistribution:
     """Return the distribution of the parameters behind the headline ±.
 
-    Where the scatter gives u and errors are shared besides, the size of the scatter is integrated
-    over: only what it tells has its degrees of freedom, and an effective number of them (JCGM 100,
-    G.4) holds too little for few.
+    Where the scatter gives u and errors are shared besides, only what the scatter tells has its
+    degrees of freedom; an effective number of them (JCGM 100, G.4) holds too little for few.
     """
     chosen = scaled if judged.from_scatter and scaled is not None else solution
-    if not (judged.from_scatter and shares_errors):
-        return ParameterDistribution(
-            names=surface.parameters,
-            weights=np.ones(1),
-            means=chosen.parameters[None],
-            covariances=chosen.covariance[None],
-            degrees_of_freedom=judged.headline_degrees_of_freedom,
-        )
-    nu = judged.degrees_of_freedom
-    # In units of the scale found, ν/σ² has the χ² distribution on ν degrees of freedom.
-    sigma = scale_nodes(float(nu), nu)
-    log_weight = -nu * np.log(sigma) - 0.5 * nu / sigma**2
-    weight = np.exp(log_weight - log_weight.max())
-    runs = len(chosen.residuals)
-    own, common = chosen.gain[:, :runs], chosen.gain[:, runs:]
+    mixed = judged.from_scatter and shares_errors
+    common = chosen.gain[:, len(chosen.residuals) :]
     return ParameterDistribution(
         names=surface.parameters,
-        weights=frozen(weight / weight.sum()),
-        means=np.broadcast_to(chosen.parameters, (len(sigma), len(chosen.parameters))),
-        covariances=sigma[:, None, None] ** 2 * (own @ own.T) + common @ common.T,
+        weights=np.ones(1),
+        means=chosen.parameters[None],
+        covariances=chosen.covariance[None],
+        degrees_of_freedom=judged.headline_degrees_of_freedom,
+        known=frozen(common @ common.T) if mixed else None,
     )
 
 

@@ -59,19 +59,23 @@ class Mixture:
 
     Parameters
     ----------
-    weights : (c,) ndarray
-        Weights of the components, positive, adding up to one.
+    weights : (c,) or (c, ...) ndarray
+        Weights of the components, positive, adding up to one; with further axes where each result
+        weighs them differently.
     locations, scales : (c, ...) ndarray
         Location and scale of each component for each result. A scale may be zero: that component
         is then certain.
     degrees_of_freedom : float or (...) ndarray
         Of the Student t components of each result; infinite (the default) makes them normal.
+    standard_uncertainty : (...) ndarray, optional
+        What stands for the standard deviation, where that is not the standard uncertainty.
     """
 
     weights: FloatArray
     locations: FloatArray
     scales: FloatArray
     degrees_of_freedom: FloatArray | float = math.inf
+    standard_uncertainty: FloatArray | None = None
     _shape: tuple[int, ...] = field(init=False, repr=False)
 
     def __post_init__(self) -> None:
@@ -85,13 +89,20 @@ class Mixture:
 
     def first(self) -> Mixture:
         """Return the first of several results alone, zero-dimensional."""
-        nu = self.degrees_of_freedom
+        nu, u = self.degrees_of_freedom, self.standard_uncertainty
         return Mixture(
-            self.weights,
+            self.weights if self.weights.ndim == 1 else self.weights[:, 0],
             self.locations[:, 0],
             self.scales[:, 0],
             float(np.ravel(nu)[0]) if np.ndim(nu) else nu,
+            None if u is None else u[0],
         )
+
+    def _average(self, of_components: FloatArray) -> FloatArray:
+        """Average over the components, ``(c, ...)`` to ``(...)``."""
+        if self.weights.ndim == 1:
+            return np.asarray(np.tensordot(self.weights, of_components, axes=1))
+        return np.asarray(np.sum(self.weights * of_components, axis=0))
 
     @property
     def _normal(self) -> bool:
@@ -100,7 +111,7 @@ class Mixture:
     @property
     def mean(self) -> FloatArray:
         """Mean of each result, shape ``(...)``."""
-        return np.asarray(np.tensordot(self.weights, self.locations, axes=1))
+        return self._average(self.locations)
 
     @property
     def standard_deviation(self) -> FloatArray:
@@ -109,14 +120,16 @@ class Mixture:
         For Student t components the scale itself stands for the standard uncertainty, as in the
         GUM (5.1.3, G.3); their longer tails are in the interval.
         """
-        within = np.tensordot(self.weights, self.scales**2, axes=1)
-        between = np.tensordot(self.weights, (self.locations - self.mean) ** 2, axes=1)
+        if self.standard_uncertainty is not None:
+            return np.asarray(self.standard_uncertainty)
+        within = self._average(self.scales**2)
+        between = self._average((self.locations - self.mean) ** 2)
         return np.asarray(np.sqrt(within + between))
 
     def cdf(self, x: FloatArray | float) -> FloatArray:
         """Return the probability of a result at most `x`, shape ``(...)``."""
         standard = self._standardised(x)
-        return np.asarray(np.tensordot(self.weights, self._component_cdf(standard), axes=1))
+        return self._average(self._component_cdf(standard))
 
     def pdf(self, x: FloatArray | float) -> FloatArray:
         """Return the probability density at `x`, shape ``(...)``."""
@@ -125,7 +138,7 @@ class Mixture:
             density = np.exp(-0.5 * standard**2) / math.sqrt(2 * math.pi)
         else:
             density = _student_density(standard, self.degrees_of_freedom)
-        return np.asarray(np.tensordot(self.weights, density / self.scales, axes=1))
+        return self._average(density / self.scales)
 
     def quantile(self, probability: float) -> FloatArray:
         """Return the value below which `probability` of the mixture lies, shape ``(...)``.
@@ -146,7 +159,7 @@ class Mixture:
         step = _quantile_steps(probability, self.degrees_of_freedom)
         ends = self.locations + step * self.scales
         low, high = ends.min(axis=0), ends.max(axis=0)
-        if self.weights.size == 1:
+        if len(self.weights) == 1:
             return np.asarray(low)
         x = np.clip(self.mean + step * self.standard_deviation, low, high)
         goal = _RELATIVE_TOLERANCE * np.maximum(self.standard_deviation, 1e-300)
