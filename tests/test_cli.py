@@ -4,10 +4,13 @@ from __future__ import annotations
 
 import io
 import json
+import re
+from itertools import product
 from typing import TYPE_CHECKING
 
 import pytest
 
+import knought
 from knought.cli import main
 from tests.published import (
     DITHIONATE_K,
@@ -233,3 +236,31 @@ def test_monte_carlo_stands_beside_the_closed_form(
     said = capsys.readouterr().out
     assert "Monte Carlo, 20000 draws, seed 7" in said
     assert said.count(" yes") >= 6
+
+
+def test_predict_says_k_as_python_does_and_marks_what_lies_outside(
+    tmp_path: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    table = written(tmp_path, LIKE_CHARGES)
+    asked = ("--temperatures", "25, 50 °C", "--ionic-strengths", "0.05, 0.3 mol/L")
+    assert run("predict", table, *asked, "--format", "ascii") == 0
+    said = capsys.readouterr().out
+    rows = [line.split() for line in said.splitlines() if re.match(r"\d+\.\d+ +\d", line)]
+    found = knought.assess(knought.read_rates(table))
+    for row, (T, I) in zip(rows, product((298.15, 323.15), (0.05, 0.3)), strict=True):
+        k = found.headline.rate_constant(T, I)
+        assert [float(each) for each in row[:2]] == [T, I]
+        assert float(row[2]) == pytest.approx(float(k.value), rel=0.01)
+        assert float(row[3]) == pytest.approx(float(k.standard_uncertainty), rel=0.05)
+        outside = [each.code.rpartition("-")[2] for each in k.caveats]
+        assert ("measured T" in " ".join(row)) == ("temperature" in outside)
+        assert ("measured I" in " ".join(row)) == ("strength" in outside)
+    assert "follow local codes and licensed practice" in said.replace("\n", " ")
+
+
+@pytest.mark.parametrize("conditions", ["25", "0 to 90 °C by 0.01", "200 °C"])
+def test_predict_refuses_conditions_that_cannot_be(
+    tmp_path: Path, conditions: str, capsys: pytest.CaptureFixture[str]
+) -> None:
+    assert run("predict", written(tmp_path, LIKE_CHARGES), "--temperatures", conditions) == 2
+    assert "knought:" in capsys.readouterr().err
