@@ -6,7 +6,7 @@ from fractions import Fraction
 
 import numpy as np
 import pytest
-from hypothesis import given, settings
+from hypothesis import assume, given, settings
 from hypothesis import strategies as st
 
 from knought.chemistry.constants import AVOGADRO
@@ -180,6 +180,8 @@ _POWER = st.integers(-3, 3).filter(bool) | st.sampled_from([Fraction(1, 2), Frac
 def test_the_canonical_text_of_a_unit_is_read_as_the_same_unit(
     factors: list[tuple[str, Fraction]], power: int
 ) -> None:
+    # A molecule is 1.7e-24 mol: powers of several leave what a unit may measure.
+    assume(sum(abs(exponent) for symbol, exponent in factors if "molecule" in symbol) <= 3)
     text = " ".join(f"{symbol}^({exponent})" for symbol, exponent in factors)
     unit = parse_unit(f"10^{power} {text}")
     again = parse_unit(unit.text)
