@@ -6,7 +6,7 @@ import math
 
 import numpy as np
 import pytest
-from hypothesis import given, settings
+from hypothesis import example, given, settings
 from hypothesis import strategies as st
 
 from knought.chemistry.activity import DaviesForm, LimitingForm
@@ -120,6 +120,7 @@ _SUBSTANCES = ("NaCl", "Na2SO4", "MgSO4", "HClO4", "CH3COOH", "K2HPO4", "NaOH", 
 
 
 @settings(max_examples=25, deadline=None)
+@example({"NaOH": 0.0, "MgSO4": 0.0, "HClO4": 0.0}, 275.0)  # acid and base leave nothing
 @given(
     st.dictionaries(st.sampled_from(_SUBSTANCES), st.floats(-9.0, 0.0), min_size=1, max_size=5),
     st.floats(275.0, 360.0),

@@ -201,10 +201,13 @@ class _System:
         """Return the worst relative residual of a conserved total, and that of charge."""
         order = tuple(np.argsort(-c, kind="stable").tolist())
         basis, dependent, coupling, _ = self._basis(order, np.zeros(len(self.nu)))
-        change = c - self.start
-        lost = change[basis] + coupling.T @ change[dependent]
+        # Total by total: of strong acid and base that neutralise each other, next to nothing is
+        # left, and c - start would round at the size of what was mixed.
+        totals = self.start[basis] + coupling.T @ self.start[dependent]
+        lost = c[basis] + coupling.T @ c[dependent] - totals
         there = c[basis] + np.abs(coupling).T @ c[dependent]
-        charge = abs(float(self.charges @ change)) / max(float(np.abs(self.charges) @ c), 1e-300)
+        most = max(float(np.abs(self.charges) @ c), 1e-300)
+        charge = abs(float(self.charges @ (c - self.start))) / most
         return float(np.max(np.abs(lost) / there)), charge
 
 
