@@ -1,10 +1,12 @@
 """Propagation of distributions by Monte Carlo (JCGM 101): the reference for every other ±.
 
 Each draw takes the errors of the runs, the errors they share (each from its own distribution), and,
-under the open law, a cell of its grid with its weight and β from its prior; the estimate is linear
-in all of them (its ``gain``), so a block of draws is one matrix product. Drawing goes on for a
-fixed number, or adaptively (7.9) until standard uncertainties and interval ends are stable to two
-significant digits of u. Blocks are seeded one by one, so that the same seed gives the same draws.
+under the open law, a cell of its grid with its weight and β from its prior. Where temperatures and
+ionic strengths are exact, the estimate is linear in all of them (its ``gain``) and a block of draws
+is one matrix product; where they have errors, each draw is refitted at the conditions drawn
+(:mod:`knought.fitting.condition_draws`). Drawing goes on for a fixed number, or adaptively (7.9)
+until standard uncertainties and interval ends are stable to two significant digits of u. Blocks are
+seeded one by one, so that the same seed gives the same draws.
 """
 
 from __future__ import annotations
@@ -16,6 +18,7 @@ import numpy as np
 
 from knought.arrays import FloatArray, frozen
 from knought.errors import InputError
+from knought.fitting.condition_draws import condition_sampler, has_condition_errors
 from knought.fitting.open_fit import OpenFit
 from knought.fitting.surface_fit import SurfaceFit
 from knought.laws.activation import activation_rows
@@ -32,6 +35,7 @@ if TYPE_CHECKING:
 __all__ = ["Drawn", "MonteCarlo", "monte_carlo"]
 
 _BLOCK = 10_000
+_FEWEST_BLOCKS = 10
 
 #: Adaptive drawing stops at this many draws at the latest.
 _MOST_DRAWS = 5_000_000
@@ -105,12 +109,34 @@ class MonteCarlo:
         Whether adaptive drawing met its tolerance; True for a fixed number.
     parameters
         Quantity name to its draws.
+    refitted
+        Whether each draw was refitted at temperatures and ionic strengths of its own.
+    scatter_beside_known
+        Whether a named law's scatter stands beside errors of known size.
     """
 
     seed: int
     draws: int
     converged: bool
     parameters: Mapping[str, Drawn]
+    refitted: bool = False
+    scatter_beside_known: bool = False
+
+    @property
+    def how(self) -> str:
+        """How the draws were made, as sentences."""
+        made = (
+            "Each draw was refitted at temperatures and ionic strengths drawn with their errors."
+            if self.refitted
+            else "Temperatures and ionic strengths have no errors here, so that the answer is "
+            "linear in every error and no draw was refitted."
+        )
+        if not self.scatter_beside_known:
+            return made
+        return (
+            f"{made} The size of the scatter is drawn as JCGM 101, 6.4.9, has it; beside errors of "
+            "known size its intervals are longer than those of the closed form, which hold 95 %."
+        )
 
 
 def monte_carlo(
@@ -140,24 +166,34 @@ def monte_carlo(
     Raises
     ------
     InputError
-        If fewer than two draws are asked for.
+        If fewer than two draws are asked for, or the fit is of neither kind.
     """
     if draws is not None and draws < 2:
         raise InputError(f"{draws} draws say nothing", "ask for 10 000 or more")
-    sampler = _sampler(found)
+    if not isinstance(found, OpenFit | SurfaceFit):
+        raise InputError("this fit has no Monte Carlo", "ask a fit of a named or the open law")
+    refitted = has_condition_errors(found.observations)
+    sampler = condition_sampler(found) if refitted else _linear_sampler(found)
     rows = activation_rows(found.surface, found.reference_temperature)
-    kept: list[FloatArray] = []
+    theta: list[FloatArray] = []
+    stability = _Stability()
     converged, done = draws is not None, 0
     for size, block in _blocks(draws):
-        kept.append(sampler(generator(seed, block), size))
+        theta.append(sampler(generator(seed, block), size))
         done += size
         if progress is not None:
             progress(done)
-        if draws is None and _stable(kept):
+        if draws is None and stability.reached_with(theta[-1]):
             converged = True
             break
-    theta = np.concatenate(kept)
-    return MonteCarlo(seed, done, converged, _drawn(found, theta, rows))
+    return MonteCarlo(
+        seed,
+        done,
+        converged,
+        _drawn(found, np.concatenate(theta), rows),
+        refitted=refitted,
+        scatter_beside_known=found.distribution.known is not None,
+    )
 
 
 def _blocks(draws: int | None) -> Iterator[tuple[int, int]]:
@@ -166,25 +202,19 @@ def _blocks(draws: int | None) -> Iterator[tuple[int, int]]:
         yield min(_BLOCK, total - start), block
 
 
-def _sampler(found: Found) -> Callable[[np.random.Generator, int], FloatArray]:
-    """Return a function that draws the linear parameters, shape ``(size, p)``.
-
-    Raises
-    ------
-    InputError
-        If the fit is of neither kind.
-    """
+def _linear_sampler(
+    found: OpenFit | SurfaceFit,
+) -> Callable[[np.random.Generator, int], FloatArray]:
+    """Return a function that draws the linear parameters, shape ``(size, p)``, through the gain."""
     n = found.observations.runs
     shared = found.observations.shared
     if isinstance(found, OpenFit):
         gains = found.solver.gains()
         gains = gains.reshape(-1, *gains.shape[-2:])[found.kept]
         means, weights = found.distribution.means, found.distribution.weights
-    elif isinstance(found, SurfaceFit):
+    else:
         gains = found.headline_solution.gain[None]
         means, weights = found.distribution.means[:1], np.ones(1)
-    else:
-        raise InputError("this fit has no Monte Carlo", "ask a fit of a named or the open law")
     nu = found.scatter.headline_degrees_of_freedom
     named_scatter = isinstance(found, SurfaceFit) and np.isfinite(nu)
 
@@ -208,20 +238,24 @@ def _sampler(found: Found) -> Callable[[np.random.Generator, int], FloatArray]:
     return draw
 
 
-def _stable(kept: list[FloatArray]) -> bool:
+class _Stability:
     """JCGM 101, 7.9.4: twice the standard deviation of block averages is below the tolerance."""
-    if len(kept) < 10:
-        return False
-    means = np.array([block.mean(axis=0) for block in kept])
-    spreads = np.array([block.std(axis=0, ddof=1) for block in kept])
-    ends = np.array([np.quantile(block, [0.025, 0.975], axis=0) for block in kept])
-    u = np.concatenate(kept[:5]).std(axis=0, ddof=1)
-    tolerance = 0.5 * 10.0 ** (np.floor(np.log10(np.maximum(u, 1e-300))) - 1)
-    count = len(kept)
-    checks = [means, spreads, ends[:, 0], ends[:, 1]]
-    return all(
-        bool(np.all(2 * each.std(axis=0, ddof=1) / np.sqrt(count) <= tolerance)) for each in checks
-    )
+
+    def __init__(self) -> None:
+        self._blocks: list[FloatArray] = []
+
+    def reached_with(self, block: FloatArray) -> bool:
+        """Add a block ``(size, p)`` of draws, and return whether they are stable now."""
+        spread = block.std(axis=0, ddof=1)
+        ends = np.quantile(block, [0.025, 0.975], axis=0)
+        self._blocks.append(np.stack([block.mean(axis=0), spread, *ends]))
+        count = len(self._blocks)
+        if count < _FEWEST_BLOCKS:
+            return False
+        found = np.array(self._blocks)
+        u = np.sqrt(np.mean(found[:, 1] ** 2, axis=0))
+        tolerance = 0.5 * 10.0 ** (np.floor(np.log10(np.maximum(u, 1e-300))) - 1)
+        return bool(np.all(2 * found.std(axis=0, ddof=1) / np.sqrt(count) <= tolerance))
 
 
 def _drawn(found: Found, theta: FloatArray, rows: Mapping[str, Rows]) -> dict[str, Drawn]:

@@ -41,7 +41,7 @@ if TYPE_CHECKING:
     from knought.measurement.table import RateTable
     from knought.numerics.least_squares import LinearFit
 
-__all__ = ["OpenFit", "fit_open", "open_solver"]
+__all__ = ["OpenFit", "fit_open", "interaction_prior", "open_solver"]
 
 #: Components that together weigh less than this are left out of the mixture.
 _NEGLIGIBLE_WEIGHT = 1e-10
@@ -246,7 +246,7 @@ def open_solver(
     """
     rows = surface.ln_k(errors.T, errors.I)
     design = np.broadcast_to(rows.rows, (grid.cells, *rows.rows.shape[-2:]))
-    prior_rows, prior_values = _interaction_prior(surface, grid.priors)
+    prior_rows, prior_values = interaction_prior(surface, grid.priors)
     return CellSolver(
         design,
         rows.offset - errors.shift,
@@ -259,7 +259,7 @@ def open_solver(
     )
 
 
-def _interaction_prior(surface: Surface, priors: Priors) -> tuple[FloatArray, FloatArray]:
+def interaction_prior(surface: Surface, priors: Priors) -> tuple[FloatArray, FloatArray]:
     """Return the prior of β as one row of observations of the parameters, if β is a parameter."""
     names = surface.parameters
     if "interaction_coefficient" not in names:
@@ -282,7 +282,7 @@ def _settled_errors(
     InputError
         If the runs leave a combination of parameters undetermined.
     """
-    prior_rows, prior_values = _interaction_prior(centre, priors)
+    prior_rows, prior_values = interaction_prior(centre, priors)
 
     def solved(errors: RunErrors) -> LinearFit:
         rows = centre.ln_k(errors.T, errors.I)

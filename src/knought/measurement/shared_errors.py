@@ -146,9 +146,23 @@ class SharedError:
             whole = np.ones_like(T)
         else:
             whole = I * slope_I
-        return np.asarray(self.u * whole * self._reach(len(T), batch))
+        return np.asarray(self.u * whole * self.reach(len(T), batch))
 
-    def _reach(self, runs: int, batch: tuple[str, ...] | None) -> FloatArray:
+    def reach(self, runs: int, batch: tuple[str, ...] | None) -> FloatArray:
+        """Return 1 for each run that has the error and 0 for the others, shape ``(n,)``.
+
+        Parameters
+        ----------
+        runs
+            How many.
+        batch
+            Batch of each run.
+
+        Raises
+        ------
+        InputError
+            If the error belongs to a batch that no run has.
+        """
         if self.batch is None:
             return np.ones(runs)
         member = np.array([each == self.batch for each in batch or ("",) * runs], dtype=float)

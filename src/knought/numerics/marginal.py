@@ -125,6 +125,11 @@ class CellSolver:
         """Covariance of the parameters in each cell and at each scale, ``(c, s, p, p)``."""
         return self._covariances
 
+    @property
+    def scales(self) -> FloatArray:
+        """Values of σ, shape ``(s,)``."""
+        return self._scales
+
     def gains(self) -> FloatArray:
         """Return what one standard deviation of each observation, shared error and prior does.
 

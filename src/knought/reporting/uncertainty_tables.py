@@ -175,6 +175,7 @@ def monte_carlo_table(found: MonteCarlo) -> Table:
         ),
         rows,
         (
+            found.how,
             "Ends agree: both ends of the closed form lie within half a unit of the first "
             "significant digit of u of those drawn (JCGM 101, 8.1).",
         ),
