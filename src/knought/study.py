@@ -17,7 +17,7 @@ from knought.study_file import read_study_file
 from knought.study_sections.upstream import Upstream
 
 if TYPE_CHECKING:
-    from collections.abc import Sequence
+    from collections.abc import Callable, Sequence
 
     from knought.discussion.next_runs import Plan
     from knought.fitting.assess import Assessment
@@ -72,8 +72,13 @@ class Study:
             )
         return target
 
-    def report(self) -> Report:
+    def report(self, progress: Callable[[str, int], None] | None = None) -> Report:
         """Read the table, assess it, and return the report.
+
+        Parameters
+        ----------
+        progress
+            Told of the checks what is counted (``"draws"``, ``"refits"``) and how many are done.
 
         Raises
         ------
@@ -105,6 +110,7 @@ class Study:
             self._inputs(),
             said.study.seed,
             _discussed(self, assessment),
+            said.checks.run(assessment.headline, seed=said.study.seed, progress=progress),
         )
 
     def _rates(self) -> RateTable:
@@ -208,7 +214,13 @@ def read_study(path: str | Path) -> Study:
     return Study(path, read_study_file(path))
 
 
-def run_study(path: str | Path, out: str | Path, *, overwrite: bool = False) -> Report:
+def run_study(
+    path: str | Path,
+    out: str | Path,
+    *,
+    overwrite: bool = False,
+    progress: Callable[[str, int], None] | None = None,
+) -> Report:
     """Run a study and write its output folder, whole or not at all.
 
     Parameters
@@ -219,6 +231,8 @@ def run_study(path: str | Path, out: str | Path, *, overwrite: bool = False) -> 
         The folder to make.
     overwrite
         Whether an existing folder may be replaced.
+    progress
+        As for :meth:`Study.report`.
 
     Returns
     -------
@@ -229,7 +243,7 @@ def run_study(path: str | Path, out: str | Path, *, overwrite: bool = False) -> 
     InputError
         If the study is wrong, or the folder exists and may not be replaced.
     """
-    report = read_study(path).report()
+    report = read_study(path).report(progress)
     write_report(report, out, overwrite=overwrite)
     return report
 

@@ -58,6 +58,12 @@ file = "rates.xlsx"                        # or .csv, .tsv; beside this file
 # u = "0.2 K"                              # standard uncertainty; "2 %" for the other kinds
 # batch = "A"
 
+# Find the ± of the headline once more; it takes seconds to minutes.
+# [checks]
+# monte_carlo = "adaptive"                 # JCGM 101 until two digits of u stand, or a number
+# bootstrap = 500                          # refits of runs drawn again
+# bootstrap_kind = "parametric"            # or "case"
+
 [priors]
 # What is known of the open salt law before the data; narrow them only if you know better.
 # ion_size = ["1 Å", "12 Å"]               # uniform between

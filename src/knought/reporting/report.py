@@ -29,6 +29,7 @@ if TYPE_CHECKING:
     from knought.discussion.next_runs import Plan
     from knought.fitting.assess import Assessment
     from knought.reporting.cells import Table
+    from knought.reporting.checked import Checked
     from knought.reporting.discussed import Discussed
     from knought.rounding import Layout
 
@@ -73,6 +74,8 @@ class Report:
         Seed of everything random, if anything was.
     discussed
         Pieces of the discussion, where the study asked for any.
+    checked
+        Monte Carlo and bootstrap of the headline, where the study asked for any.
     """
 
     assessment: Assessment
@@ -80,6 +83,7 @@ class Report:
     inputs: tuple[tuple[str, str], ...] = ()
     seed: int | None = None
     discussed: Discussed | None = None
+    checked: Checked | None = None
 
     @cached_property
     def introduction(self) -> tuple[str, ...]:
@@ -113,8 +117,9 @@ class Report:
             uncertainty_tables.influence_table(self.assessment),
             tables.runs_table(self.assessment),
         )
+        checked = () if self.checked is None else self.checked.tables
         discussed = () if self.discussed is None else self.discussed.tables
-        return (*(table for table in made if table is not None), *discussed)
+        return (*(table for table in made if table is not None), *checked, *discussed)
 
     @property
     def discussion(self) -> tuple[str, ...]:
@@ -151,6 +156,8 @@ class Report:
             about["inputs"] = self.inputs
         if self.discussed is not None:
             about["discussed"] = self.discussed.record()
+        if self.checked is not None:
+            about["checked"] = self.checked.record()
         return record_text(self.assessment, **about)
 
     def inline(self, picture: Picture) -> str:
