@@ -176,9 +176,16 @@ def test_shared_errors_of_a_study_file_reach_the_budget(folder: Path) -> None:
         'name = "absorptivity"',
         'kind = "factor"',
         'u = "3 %"',
+        "[[shared_errors]]",
+        'name = "thermometer"',
+        'kind = "temperature-offset"',
+        'u = "0.1 K"',
+        'distribution = "rectangular"',
+        "each_run = true",
     )
     found = read_study(path).report().assessment
-    assert {"probe offset", "absorptivity"} <= set(found.budget("rate_constant").variances)
+    sources = set(found.budget("rate_constant").variances)
+    assert {"probe offset", "absorptivity", "thermometer"} <= sources
     k = float(found.parameters["rate_constant"].value)
     assert found.budget("rate_constant").uncertainty("absorptivity") == pytest.approx(0.03 * k)
 

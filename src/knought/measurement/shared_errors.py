@@ -1,4 +1,4 @@
-"""Errors that several runs share, and what one of them does to every ln k.
+"""Named errors, those that several runs share and each run's own, and what they do to ln k.
 
 A probe that reads 0.2 K high moves every run the same way: treated as independent, such an error
 would seem to average out. Each shared error keeps its name, so that every result has a budget. What
@@ -11,7 +11,8 @@ which the fit supplies:
 | factor | relative, on k | u |
 | ionic-strength-factor | relative | u I ∂ln k/∂I |
 
-Molar absorptivity, path length and a stock's concentration are factors on k.
+Molar absorptivity, path length and a stock's concentration are factors on k. An error that each
+run has of its own (the reading of a thermometer, a pipette) adds J² to the variance of its ln k.
 """
 
 from __future__ import annotations
@@ -45,7 +46,7 @@ DISTRIBUTIONS = ("normal", "rectangular", "triangular", "t")
 
 @dataclass(frozen=True)
 class SharedError:
-    """An error common to all runs, or to those of a batch.
+    """An error common to all runs or to those of a batch, or one that each run has of its own.
 
     Parameters
     ----------
@@ -65,6 +66,8 @@ class SharedError:
         Of a ``"t"`` distribution, above 2.
     calibrated_at
         Temperature in K at which a gain does nothing.
+    each_run
+        Whether each run has an error like this of its own, instead of one that they share.
 
     Raises
     ------
@@ -79,6 +82,7 @@ class SharedError:
     distribution: Distribution = "normal"
     degrees_of_freedom: float | None = None
     calibrated_at: float = 298.15
+    each_run: bool = False
 
     def __post_init__(self) -> None:
         if not self.name.strip():
@@ -107,6 +111,11 @@ class SharedError:
             raise InputError(
                 f"the shared error {self.name!r} needs more than 2 degrees of freedom",
                 "a t distribution has no standard uncertainty otherwise",
+            )
+        if self.each_run and self.kind == "temperature-gain":
+            raise InputError(
+                f"{self.name!r} is a gain of temperature of each run",
+                "a gain belongs to a probe and is shared; each run has a temperature-offset",
             )
         if not 0 < self.calibrated_at < math.inf:
             raise InputError(
