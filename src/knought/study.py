@@ -111,6 +111,7 @@ class Study:
             said.study.seed,
             _discussed(self, assessment),
             said.checks.run(assessment.headline, seed=said.study.seed, progress=progress),
+            reduced,
         )
 
     def _rates(self) -> RateTable:

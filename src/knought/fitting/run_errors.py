@@ -110,7 +110,7 @@ def run_errors(
         sources.append(_STRENGTHS)
         variances.append((slope_I * seen.u_I) ** 2)
     for error in seen.own if seen.u_given else ():
-        effect = error.effect(seen.T, seen.ionic_strength, slope_T, slope_I, seen.batch)
+        effect = error.effect(seen.T, seen.ionic_strength, slope_T, slope_I, seen.batch, seen.run)
         sources.append(error.name)
         variances.append(effect**2)
         reached = (error.u * error.reach(n, seen.batch)) ** 2
@@ -119,7 +119,7 @@ def run_errors(
         elif error.kind == "ionic-strength-factor":
             square_I += reached * seen.ionic_strength**2
     effects = [
-        error.effect(seen.T, seen.ionic_strength, slope_T, slope_I, seen.batch)
+        error.effect(seen.T, seen.ionic_strength, slope_T, slope_I, seen.batch, seen.run)
         for error in seen.shared
     ]
     part = residual / np.sum(variances, axis=0)

@@ -44,6 +44,7 @@ def record(
     seed: int | None = None,
     discussed: Mapping[str, Any] | None = None,
     checked: Mapping[str, Any] | None = None,
+    reduction: Mapping[str, Any] | None = None,
 ) -> dict[str, Any]:
     """Return the record of an assessment as data that JSON can hold.
 
@@ -59,6 +60,8 @@ def record(
         What is kept of the discussion, by its keys.
     checked
         What is kept of Monte Carlo and bootstrap, by its keys.
+    reduction
+        How the rate constants came from traces.
     """
     from knought.version import __version__
 
@@ -111,6 +114,7 @@ def record(
         "understood": [str(line) for line in assessment.rates.account],
         "warnings": [_caveat_record(caveat) for caveat in assessment.caveats],
         **(checked or {}),
+        **({} if reduction is None else {"reduction": dict(reduction)}),
         **(discussed or {}),
     }
 

@@ -19,6 +19,7 @@ from knought.reporting.sentences import (
 from knought.reporting.style import DOUBLE_COLUMN, STYLE, blank_figure
 from knought.reporting.summary import summary
 from knought.reporting.svg import inline_svg, plain_svg
+from knought.reporting.upstream_tables import reduction_record, reduction_table
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Mapping
@@ -28,6 +29,7 @@ if TYPE_CHECKING:
     from knought.discussion.compare import Comparison
     from knought.discussion.next_runs import Plan
     from knought.fitting.assess import Assessment
+    from knought.measurement.reduction import Reduction
     from knought.reporting.cells import Table
     from knought.reporting.checked import Checked
     from knought.reporting.discussed import Discussed
@@ -76,6 +78,8 @@ class Report:
         Pieces of the discussion, where the study asked for any.
     checked
         Monte Carlo and bootstrap of the headline, where the study asked for any.
+    reduction
+        How the rate constants came from traces or slopes, where they did.
     """
 
     assessment: Assessment
@@ -84,6 +88,7 @@ class Report:
     seed: int | None = None
     discussed: Discussed | None = None
     checked: Checked | None = None
+    reduction: Reduction | None = None
 
     @cached_property
     def introduction(self) -> tuple[str, ...]:
@@ -119,7 +124,13 @@ class Report:
         )
         checked = () if self.checked is None else self.checked.tables
         discussed = () if self.discussed is None else self.discussed.tables
-        return (*(table for table in made if table is not None), *checked, *discussed)
+        reduced = () if self.reduction is None else (reduction_table(self.reduction),)
+        return (*(table for table in made if table is not None), *reduced, *checked, *discussed)
+
+    @property
+    def upstream(self) -> tuple[str, ...]:
+        """How rate constants came from traces, a line each; none where they were given."""
+        return () if self.reduction is None else self.reduction.notes
 
     @property
     def discussion(self) -> tuple[str, ...]:
@@ -131,6 +142,8 @@ class Report:
         """Every figure that the assessment supports, in the order of the report."""
         seen, found = self.assessment.observations, self.assessment.headline
         made = []
+        if self.reduction is not None and any(each.window for each in self.reduction.runs):
+            made.append(_traces_picture(self.reduction))
         if len(seen.temperature_levels) > 1:
             made.append(self._temperature_picture())
         if found.describes_salt and len(seen.ionic_strength_levels) > 1:
@@ -158,6 +171,8 @@ class Report:
             about["discussed"] = self.discussed.record()
         if self.checked is not None:
             about["checked"] = self.checked.record()
+        if self.reduction is not None:
+            about["reduction"] = reduction_record(self.reduction)
         return record_text(self.assessment, **about)
 
     def inline(self, picture: Picture) -> str:
@@ -254,6 +269,23 @@ class Report:
             "temperature.",
             lambda: _drawn(draw, height=2.5),
         )
+
+
+def _traces_picture(reduction: Reduction) -> Picture:
+    from knought.reporting.upstream_figures import trace_panels, traces_shown
+
+    shown, runs = traces_shown(reduction), len(reduction.runs)
+    which = f"{len(shown)} of {runs} traces, from the slowest to the fastest" * (len(shown) < runs)
+    first_order = reduction.method.kind == "first-order"
+    return Picture(
+        "traces",
+        "From traces to rate constants",
+        f"{which or 'Every trace'}. Points: absorbance; shaded: the window that was used; line: "
+        + ("the single exponential." if first_order else "the polynomial; dashed: slope at t = 0."),
+        lambda: _drawn(
+            lambda figure: trace_panels(reduction, figure), height=1.75 * -(-len(shown) // 3)
+        ),
+    )
 
 
 def _plan_picture(plan: Plan) -> Picture:
