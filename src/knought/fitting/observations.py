@@ -53,6 +53,8 @@ class Observations:
         Named errors that each run has of its own, beside u, u_T and u_I.
     run
         Labels of the runs, for messages.
+    rates
+        The table that the runs come from, for messages; None where there is none.
     """
 
     ln_k: FloatArray
@@ -68,6 +70,7 @@ class Observations:
     shared: tuple[SharedError, ...] = ()
     run: tuple[str, ...] | None = None
     own: tuple[SharedError, ...] = ()
+    rates: RateTable | None = None
 
     @property
     def runs(self) -> int:
@@ -138,6 +141,7 @@ def observe(rates: RateTable, shared_errors: Sequence[SharedError] = ()) -> Obse
         shared=tuple(error for error in shared_errors if not error.each_run),
         run=used.run,
         own=tuple(error for error in shared_errors if error.each_run),
+        rates=used,
     )
 
 
