@@ -14,7 +14,7 @@ import knought as kn
 from knought.arrays import FloatArray, frozen
 from knought.fitting.bootstrap import bootstrap
 from knought.fitting.diagnostics import curvature, diagnose, leverage, salt_test
-from knought.fitting.influence import influence
+from knought.fitting.influence import influence, refit, subset
 from knought.fitting.monte_carlo import monte_carlo
 from knought.fitting.open_fit import fit_open
 from knought.fitting.profile import profile_ion_size
@@ -317,8 +317,8 @@ def test_too_few_draws_or_runs_are_no_bootstrap() -> None:
         bootstrap(few, 30, kind="case", seed=3)
 
 
-def test_the_profile_of_the_ion_size_is_that_of_lmfit() -> None:
-    """lmfit.conf_interval on the same problem, with u as stated."""
+def test_the_profile_of_the_ion_size_ends_where_chi_square_has_risen_enough() -> None:
+    """The minimum is lmfit's; at the ends χ² is 1.96² above it."""
     import lmfit
 
     studies = simulate(extended(5), 2, STRENGTHS, studies=1, seed=8, u=0.01).observations
@@ -341,6 +341,21 @@ def test_the_profile_of_the_ion_size_is_that_of_lmfit() -> None:
         assert away - best == pytest.approx(1.959964**2, rel=1e-4)
     result = lmfit.minimize(residuals, start, scale_covar=False)
     assert result.params["size"].value == pytest.approx(found.value * 1e10, rel=1e-3)
+
+
+def test_linear_and_profile_intervals_agree_where_the_runs_are_precise() -> None:
+    """Ends of å ± 1.96 u and of the profile; other runs are refitted with an å of their own."""
+    seen = simulate(extended(5), 2, STRENGTHS, studies=1, seed=8, u=1e-3).observations
+    k = np.exp(seen.ln_k)
+    rates = kn.RateTable.from_arrays(seen.T, k, seen.I, 1e-3 * k, unit="L mol^-1 s^-1")
+    found = kn.fit_ion_size(rates, scatter="given")
+    size = found.parameters["ion_size"]
+    u = float(size.standard_uncertainty)
+    profile = profile_ion_size(rates)
+    assert size.interval(0.95) == pytest.approx((profile.low, profile.high), abs=0.05 * u)
+    fewer = subset(found.observations, np.arange(0, seen.runs, 2))
+    again, alone = refit(found, fewer), kn.fit_ion_size(fewer, scatter="given")
+    assert float(again.parameters["ion_size"].value) == float(alone.parameters["ion_size"].value)
 
 
 def _extended(size: float) -> SaltLaw:

@@ -1,8 +1,8 @@
 """Bootstrap: the scatter of the answer under runs drawn again.
 
-Parametric: new ln k from the fitted surface with the errors of the runs. Case: runs drawn with
-replacement, which trusts no error model but needs many runs (Efron and Tibshirani 1993, chapters 6
-and 9). Both refit the same laws with the same choices.
+Parametric: new ln k from the fitted surface with the errors of the runs and those that they share.
+Case: runs drawn with replacement, which trusts no error model but needs many runs (Efron and
+Tibshirani 1993, chapters 6 and 9). Both refit the same laws with the same choices.
 """
 
 from __future__ import annotations
@@ -15,6 +15,7 @@ import numpy as np
 from knought.arrays import FloatArray, frozen
 from knought.errors import InputError
 from knought.fitting.influence import refit, subset
+from knought.measurement.shared_errors import unit_draws
 from knought.numerics.seeds import DEFAULT_SEED, generator
 
 if TYPE_CHECKING:
@@ -120,5 +121,6 @@ def _again(found: Found, kind: Literal["parametric", "case"], random: np.random.
     if kind == "case":
         return refit(found, subset(seen, random.integers(0, seen.runs, seen.runs)))
     ln_k = found.predicted_ln_k + found.effective_u * random.standard_normal(seen.runs)
-    ln_k = ln_k + found.errors.shared @ random.standard_normal(found.errors.shared.shape[1])
+    for error, effect in zip(seen.shared, found.errors.shared.T, strict=True):
+        ln_k = ln_k + effect * unit_draws(error, random, 1)
     return refit(found, replace(seen, ln_k=frozen(ln_k)))

@@ -9,6 +9,7 @@ import numpy as np
 
 from knought.arrays import frozen
 from knought.errors import InputError
+from knought.fitting.ion_size import fit_ion_size
 from knought.fitting.open_fit import OpenFit, fit_open
 from knought.fitting.surface_fit import fit_surface
 
@@ -165,6 +166,14 @@ def refit(found: Found, seen: Observations) -> Found:
             standard_concentration=found.surface.standard_concentration,
             charge_product=found.charge_product_given,
             priors=found.grid.priors,
+            scatter=choice,
+        )
+    if "ion_size" in found.surface.parameters:
+        # The law of such a fit is linear about its own å; other runs have another.
+        return fit_ion_size(
+            seen,
+            temperature_law=found.temperature_law,
+            reference_temperature=found.reference_temperature,
             scatter=choice,
         )
     return fit_surface(

@@ -17,14 +17,13 @@ from knought.chemistry.constants import LN10
 from knought.chemistry.debye_huckel import debye_huckel
 from knought.errors import Caveat, InputError
 from knought.fitting.fit import resolve
-from knought.fitting.observations import observe
+from knought.fitting.observations import Observations, observe
 from knought.fitting.surface_fit import SurfaceFit, fit_surface
 from knought.laws.salt import SaltLaw
 from knought.laws.salt import salt_law as named_salt_law
 
 if TYPE_CHECKING:
     from knought.arrays import FloatArray
-    from knought.fitting.observations import Observations
     from knought.fitting.scatter import ScatterChoice
     from knought.measurement.table import RateTable
 
@@ -89,7 +88,7 @@ class _LinearisedExtendedLaw(SaltLaw):
 
 
 def fit_ion_size(
-    rates: RateTable,
+    rates: RateTable | Observations,
     *,
     temperature_law: str | None = None,
     reference_temperature: float | None = None,
@@ -100,7 +99,7 @@ def fit_ion_size(
     Parameters
     ----------
     rates
-        The table, with at least three ionic strengths.
+        The table, or what :func:`observe` made of it, with at least three ionic strengths.
     temperature_law, reference_temperature, scatter
         As for :func:`knought.fit`.
 
@@ -114,7 +113,7 @@ def fit_ion_size(
     InputError
         If there are too few ionic strengths or runs, or the optimum cannot be found.
     """
-    seen = observe(rates)
+    seen = rates if isinstance(rates, Observations) else observe(rates)
     choices = resolve(
         seen,
         temperature_law=temperature_law,
