@@ -39,9 +39,14 @@ def with_lines(folder: Path, *lines: str) -> Path:
 
 
 def test_a_study_makes_one_folder_with_everything(folder: Path) -> None:
-    report = kn.run_study(folder / "study.toml", folder / "out")
+    report = kn.run_study(folder / "study.toml", folder / "out", figure_formats=["svg"])
     made = {str(path.relative_to(folder / "out")) for path in (folder / "out").rglob("*.*")}
-    assert {"report.html", "results.json", "summary.txt", "figures/temperature.svg"} <= made
+    assert {
+        "report.html",
+        "results.json",
+        "summary.txt",
+        "figures/single-column/temperature.svg",
+    } <= made
     assert {"tables/parameters.txt", "tables/laws.txt", "tables/runs.txt"} <= made
     record = json.loads((folder / "out" / "results.json").read_text(encoding="utf-8"))
     assert [each["path"] for each in record["inputs"]] == ["study.toml", "rates.csv"]
@@ -122,7 +127,20 @@ def test_an_existing_folder_is_not_replaced_without_being_told(folder: Path) -> 
     (out / "report.html").write_text("mine", encoding="utf-8")
     assert main(["report", str(folder / "study.toml"), "--out", str(out)]) == 2
     assert (out / "report.html").read_text(encoding="utf-8") == "mine"
-    assert main(["report", str(folder / "study.toml"), "--out", str(out), "--overwrite"]) == 0
+    assert (
+        main(
+            [
+                "report",
+                str(folder / "study.toml"),
+                "--out",
+                str(out),
+                "--overwrite",
+                "--figures",
+                "none",
+            ]
+        )
+        == 0
+    )
     assert "Like charges" in (out / "report.html").read_text(encoding="utf-8")
 
 
@@ -153,14 +171,14 @@ def test_a_study_with_literature_and_candidates_discusses_them(folder: Path) -> 
         'name = "protonated"',
         'reactants = "A^2- + X"',
     )
-    report = kn.run_study(path, folder / "out")
-    record = json.loads((folder / "out" / "results.json").read_text(encoding="utf-8"))
+    report = read_study(path).report()
+    record = json.loads(report.record())
     assert [each["label"] for each in record["literature"]] == ["Paper A", "Paper B"]
     weights = {each["name"]: each["weight"] for each in record["candidates"]}
     assert weights["direct"] > 0.99
     assert [each["path"] for each in record["inputs"]][-1] == "literature.csv"
-    page = (folder / "out" / "report.html").read_text(encoding="utf-8")
-    assert "Paper A" in page
+    assert [section.name for section in report.sections][-2:] == ["literature", "mechanism"]
+    assert any("Paper A" in sentence for sentence in report.discussion)
     assert len(report.discussion) > 4
     assert not any("proves" in sentence for sentence in report.discussion)
 
@@ -176,16 +194,9 @@ def test_shared_errors_of_a_study_file_reach_the_budget(folder: Path) -> None:
         'name = "absorptivity"',
         'kind = "factor"',
         'u = "3 %"',
-        "[[shared_errors]]",
-        'name = "thermometer"',
-        'kind = "temperature-offset"',
-        'u = "0.1 K"',
-        'distribution = "rectangular"',
-        "each_run = true",
     )
     found = read_study(path).report().assessment
-    sources = set(found.budget("rate_constant").variances)
-    assert {"probe offset", "absorptivity", "thermometer"} <= sources
+    assert {"probe offset", "absorptivity"} <= set(found.budget("rate_constant").variances)
     k = float(found.parameters["rate_constant"].value)
     assert found.budget("rate_constant").uncertainty("absorptivity") == pytest.approx(0.03 * k)
 
@@ -207,72 +218,10 @@ def test_a_wrong_shared_error_is_named(folder: Path, line: str, message: str) ->
     assert message in str(caught.value)
 
 
-def test_checks_of_a_study_file_reach_page_tables_and_record(folder: Path) -> None:
-    path = with_lines(
-        folder,
-        "[laws]",
-        'salt = "davies"',
-        "[checks]",
-        "monte_carlo = 20_000",
-        "bootstrap = 100",
-    )
-    told: list[tuple[str, int]] = []
-    report = kn.run_study(path, folder / "out", progress=lambda *each: told.append(each))
-    assert told[-1] == ("refits", 100)
-    assert ("draws", 20_000) in told
-    record = json.loads((folder / "out" / "results.json").read_text(encoding="utf-8"))
-    drawn, again = record["monte_carlo"], record["bootstrap"]
-    assert drawn["draws"] == 20_000
-    assert drawn["seed"] == again["seed"] == record["seed"]
-    for name in ("rate_constant", "activation_energy", "charge_product"):
-        closed = record["parameters"][name]
-        assert drawn["parameters"][name]["unit"] == closed["unit"]
-        for other in (drawn, again):
-            low, high = other["parameters"][name]["interval"]
-            assert low < closed["value"] < high
-        assert again["parameters"][name]["standard_uncertainty"] == pytest.approx(
-            closed["standard_uncertainty"], rel=0.3
-        )
-    page = (folder / "out" / "report.html").read_text(encoding="utf-8")
-    assert "Monte Carlo, 20000 draws" in page
-    assert "no draw was refitted" in page
-    assert (folder / "out" / "tables" / "bootstrap.txt").is_file()
-    assert len(report.tables) > 6
-
-
-def test_an_interrupt_during_the_checks_leaves_nothing_behind(folder: Path) -> None:
-    path = with_lines(folder, "[checks]", 'monte_carlo = "adaptive"')
-
-    def interrupted(what: str, done: int) -> None:
-        raise KeyboardInterrupt
-
-    before = sorted(folder.iterdir())
-    with pytest.raises(KeyboardInterrupt):
-        kn.run_study(path, folder / "out", progress=interrupted)
-    assert sorted(folder.iterdir()) == before
-
-
-@pytest.mark.parametrize(
-    ("line", "message"),
-    [
-        ('monte_carlo = "many"', "adaptive"),
-        ("monte_carlo = 10", "1000"),
-        ("bootstrap = 3", "100"),
-        ('bootstrap_kind = "casual"', "parametric"),
-        ("montecarlo = 1000", "'monte_carlo'"),
-    ],
-)
-def test_wrong_checks_are_named(folder: Path, line: str, message: str) -> None:
-    with pytest.raises(kn.InputError) as caught:
-        read_study(with_lines(folder, "[checks]", line))
-    assert message in str(caught.value)
-
-
 def test_a_study_runs_from_traces_to_the_report(tmp_path: Path) -> None:
     from tests.measurement.test_absorbance import _write_study
 
-    kn.run_study(_write_study(tmp_path), tmp_path / "out")
-    record = json.loads((tmp_path / "out" / "results.json").read_text(encoding="utf-8"))
+    record = json.loads(read_study(_write_study(tmp_path)).report().record())
     assert [each["path"] for each in record["inputs"]] == ["study.toml", "runs.csv", "traces.csv"]
     assert "molar absorptivity" in record["budget"]["rate_constant"]["variances"]
     assert record["parameters"]["charge_product"]["standard_uncertainty"] > 0

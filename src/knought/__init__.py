@@ -49,6 +49,7 @@ if TYPE_CHECKING:
     from knought.measurement.reading import read_rates
     from knought.measurement.shared_errors import SharedError
     from knought.measurement.table import RateTable
+    from knought.reporting import figures
     from knought.reporting.report import Report
     from knought.study import run_study
 
@@ -80,6 +81,7 @@ __all__ = [
     "debye_huckel",
     "electrostatic_part",
     "encounter_limit",
+    "figures",
     "first_order",
     "fit",
     "fit_in_k",
@@ -148,6 +150,10 @@ _HOMES = {
 }
 
 
+#: Modules that are reached as attributes.
+_MODULES = {"figures": "reporting.figures"}
+
+
 def __getattr__(name: str) -> object:
     """Load a public name when it is first used (PEP 562).
 
@@ -156,11 +162,14 @@ def __getattr__(name: str) -> object:
     AttributeError
         If there is no such name.
     """
-    if name not in _HOMES:
+    if name not in _HOMES and name not in _MODULES:
         raise AttributeError(f"module 'knought' has no attribute {name!r}")
     from importlib import import_module
 
-    found: object = getattr(import_module(f"knought.{_HOMES[name]}"), name)
+    if name in _MODULES:
+        found: object = import_module(f"knought.{_MODULES[name]}")
+    else:
+        found = getattr(import_module(f"knought.{_HOMES[name]}"), name)
     globals()[name] = found
     return found
 

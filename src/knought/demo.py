@@ -19,9 +19,11 @@ from knought.reporting.cells import (
     unit_cell,
     words,
 )
+from knought.reporting.figure_files import FIGURE_FORMATS
 from knought.study import read_study, write_report
 
 if TYPE_CHECKING:
+    from collections.abc import Sequence
     from importlib.resources.abc import Traversable
     from pathlib import Path
 
@@ -47,7 +49,13 @@ _COMPARED = (
 )
 
 
-def run_demo(out: Path, *, overwrite: bool = False, layout: Layout = "text") -> str:
+def run_demo(
+    out: Path,
+    *,
+    overwrite: bool = False,
+    layout: Layout = "text",
+    figure_formats: Sequence[str] = FIGURE_FORMATS,
+) -> str:
     """Run every invented study into `out` and return what was found beside what is true.
 
     Parameters
@@ -58,6 +66,8 @@ def run_demo(out: Path, *, overwrite: bool = False, layout: Layout = "text") -> 
         Whether an existing folder may be replaced.
     layout
         ``"text"`` or ``"ascii"``.
+    figure_formats
+        Formats of the figure files; see :func:`knought.study.write_report`.
 
     Raises
     ------
@@ -69,7 +79,7 @@ def run_demo(out: Path, *, overwrite: bool = False, layout: Layout = "text") -> 
         for name in STUDIES:
             _copy(name, folder / name)
             report = read_study(folder / name / "study.toml").report()
-            write_report(report, folder / name / "report")
+            write_report(report, folder / name / "report", figure_formats=figure_formats)
             truth = json.loads((folder / name / "truth.json").read_text(encoding="utf-8"))
             blocks.append("\n".join([report.title, *plain_lines(_beside(report, truth), layout)]))
     where = [f"{out / name / 'report' / 'report.html'}" for name in STUDIES]

@@ -30,6 +30,7 @@ __all__ = [
     "atomic_write_bytes",
     "atomic_write_text",
     "os_problem",
+    "refuse_existing",
     "safe_name",
     "sha256_of",
     "whole_folder",
@@ -175,7 +176,7 @@ def whole_folder(path: str | Path, *, overwrite: bool = False) -> Iterator[Path]
     """
     path = Path(path)
     name = path.name or str(path)
-    _refuse_existing(path, overwrite)
+    refuse_existing(path, overwrite=overwrite)
     target = path.resolve()
     partial = target.with_name(f".{target.name[:100]}.{secrets.token_hex(4)}.part")
     try:
@@ -195,7 +196,14 @@ def whole_folder(path: str | Path, *, overwrite: bool = False) -> Iterator[Path]
         shutil.rmtree(partial, ignore_errors=True)
 
 
-def _refuse_existing(path: Path, overwrite: bool) -> None:
+def refuse_existing(path: Path, *, overwrite: bool) -> None:
+    """Refuse a folder that is there and may not be replaced; before any work goes into it.
+
+    Raises
+    ------
+    InputError
+        If there is one, or a file of that name.
+    """
     if not os.path.lexists(path):
         return
     if not path.is_dir():

@@ -7,17 +7,18 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 from knought.errors import Caveat, InputError, Problem
-from knought.files import sha256_of, whole_folder
+from knought.files import refuse_existing, sha256_of, whole_folder
 from knought.fitting.assess import assess
 from knought.measurement.reading import read_rates
 from knought.reporting.cells import plain_lines
+from knought.reporting.figure_files import FIGURE_FORMATS
 from knought.reporting.page import page
 from knought.reporting.report import Report
 from knought.study_file import read_study_file
 from knought.study_sections.upstream import Upstream
 
 if TYPE_CHECKING:
-    from collections.abc import Callable, Sequence
+    from collections.abc import Sequence
 
     from knought.discussion.next_runs import Plan
     from knought.fitting.assess import Assessment
@@ -72,13 +73,8 @@ class Study:
             )
         return target
 
-    def report(self, progress: Callable[[str, int], None] | None = None) -> Report:
+    def report(self) -> Report:
         """Read the table, assess it, and return the report.
-
-        Parameters
-        ----------
-        progress
-            Told of the checks what is counted (``"draws"``, ``"refits"``) and how many are done.
 
         Raises
         ------
@@ -110,8 +106,6 @@ class Study:
             self._inputs(),
             said.study.seed,
             _discussed(self, assessment),
-            said.checks.run(assessment.headline, seed=said.study.seed, progress=progress),
-            reduced,
         )
 
     def _rates(self) -> RateTable:
@@ -220,7 +214,7 @@ def run_study(
     out: str | Path,
     *,
     overwrite: bool = False,
-    progress: Callable[[str, int], None] | None = None,
+    figure_formats: Sequence[str] = FIGURE_FORMATS,
 ) -> Report:
     """Run a study and write its output folder, whole or not at all.
 
@@ -232,8 +226,8 @@ def run_study(
         The folder to make.
     overwrite
         Whether an existing folder may be replaced.
-    progress
-        As for :meth:`Study.report`.
+    figure_formats
+        Formats of the figure files, some of ``"svg"``, ``"pdf"`` and ``"png"``.
 
     Returns
     -------
@@ -244,12 +238,19 @@ def run_study(
     InputError
         If the study is wrong, or the folder exists and may not be replaced.
     """
-    report = read_study(path).report(progress)
-    write_report(report, out, overwrite=overwrite)
+    refuse_existing(Path(out), overwrite=overwrite)
+    report = read_study(path).report()
+    write_report(report, out, overwrite=overwrite, figure_formats=figure_formats)
     return report
 
 
-def write_report(report: Report, out: str | Path, *, overwrite: bool = False) -> None:
+def write_report(
+    report: Report,
+    out: str | Path,
+    *,
+    overwrite: bool = False,
+    figure_formats: Sequence[str] = FIGURE_FORMATS,
+) -> None:
     """Write page, record, summary, tables and figures of a report into a folder.
 
     Parameters
@@ -260,12 +261,16 @@ def write_report(report: Report, out: str | Path, *, overwrite: bool = False) ->
         The folder to make.
     overwrite
         Whether an existing folder may be replaced.
+    figure_formats
+        Formats of the figure files, some of ``"svg"``, ``"pdf"`` and ``"png"``.
 
     Raises
     ------
     InputError
-        If the folder exists and may not be replaced, or cannot be written.
+        If the folder exists and may not be replaced, or cannot be written, or a format of figures
+        is unknown.
     """
+    refuse_existing(Path(out), overwrite=overwrite)
     # Everything is made before anything is written.
     files = {
         "report.html": page(report),
@@ -274,8 +279,7 @@ def write_report(report: Report, out: str | Path, *, overwrite: bool = False) ->
     }
     for table in report.tables:
         files[f"tables/{table.name}.txt"] = "\n".join([table.title, *plain_lines(table)]) + "\n"
-    for picture in report.pictures:
-        files[f"figures/{picture.name}.svg"] = report.svg(picture)
+    figures = dict(report.figure_files(figure_formats))
     if report.discussed is not None and report.discussed.plan is not None:
         files["next-runs.csv"] = report.discussed.plan.csv()
     with whole_folder(Path(out), overwrite=overwrite) as folder:
@@ -283,3 +287,7 @@ def write_report(report: Report, out: str | Path, *, overwrite: bool = False) ->
             target = folder / name
             target.parent.mkdir(exist_ok=True)
             target.write_text(text, encoding="utf-8", newline="\n")
+        for name, content in figures.items():
+            target = folder / "figures" / name
+            target.parent.mkdir(parents=True, exist_ok=True)
+            target.write_bytes(content)

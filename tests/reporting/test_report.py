@@ -15,11 +15,11 @@ from matplotlib.axes import Axes
 import knought as kn
 from knought.reporting import figures, tables
 from knought.reporting.cells import plain_lines
-from knought.reporting.page import page
+from knought.reporting.figure_files import figure_bytes, laid_out
+from knought.reporting.page import page, written_page
 from knought.reporting.record import record
 from knought.reporting.style import blank_figure, sequential
 from knought.reporting.summary import summary, to_ascii
-from knought.reporting.svg import plain_svg
 from tests.fitting.test_assess import table
 
 if TYPE_CHECKING:
@@ -67,8 +67,8 @@ def structure(text: str) -> Structure:
 def test_the_page_stands_alone(html: str) -> None:
     found = structure(html)
     assert found.outward == []
-    assert "script" not in found.tags
-    assert found.tags.count("svg") == 4
+    assert found.tags.count("script") == 1
+    assert found.tags.count("svg") == 2 * 7
     assert "@import" not in html
     assert "http" not in re.sub(r'xmlns(:\w+)?="[^"]*"', "", html).replace(
         "https://", "http://"
@@ -82,19 +82,42 @@ def test_no_two_elements_of_the_page_share_an_id(html: str) -> None:
 
 def test_every_point_of_every_figure_says_what_it_is(html: str, assessment: kn.Assessment) -> None:
     titles = re.findall(r"<title>(run [^<]*)</title>", html)
-    # Two main figures with every run once, and three panels of residuals.
-    assert len(titles) == 18 * 5
+    # Three main figures with every run once, and three panels of residuals; each wide and narrow.
+    assert len(titles) == 18 * 6 * 2
     rates = assessment.rates
     assert rates.I is not None
     first = f"run 1, T = {rates.T[0]:.2f} K, I = {rates.I[0]:.4g} mol/L, k = "
-    assert sum(title.startswith(first) for title in titles) == 5
+    of_first = [title for title in titles if title.startswith(first)]
+    assert len(of_first) == 12
+    residual = float(assessment.headline.standardised_residuals[0])
+    ending = f"residual = {residual:+.1f} u".replace("-", "−")
+    assert all(title.endswith(ending) for title in of_first)
+
+
+def undrawn(report: kn.Report) -> str:
+    """Return the page without its drawings, which take most of the time."""
+    return written_page(report, dict.fromkeys((each.name for each in report.pictures), "<svg/>"))
 
 
 def test_text_of_the_user_is_escaped() -> None:
     rates = table(run=[HOSTILE] + [str(i) for i in range(17)], salt=[HOSTILE] * 18)
-    text = page(kn.Report(kn.assess(rates), HOSTILE))
-    assert "<script>" not in text
+    report = kn.Report(kn.assess(rates), HOSTILE)
+    text = undrawn(report)
+    assert HOSTILE not in text
+    assert text.count("<script>") == 1
     assert "&lt;script&gt;" in text
+    drawing = report.inline(report.pictures[-1])
+    assert "<script>" not in drawing
+    assert "run &lt;script&gt;" in drawing
+
+
+def test_nothing_on_the_page_asks_the_network(html: str) -> None:
+    policy = re.search(r'Content-Security-Policy" content="([^"]*)"', html)
+    assert policy is not None
+    assert policy[1].startswith("default-src &#39;none&#39;;")
+    # Style attributes would be refused by that policy.
+    assert not re.search(r"<[^>]* style=", html)
+    assert not re.search(r'(?:src|href)="(?!#|data:)', html)
 
 
 def test_numbers_of_page_summary_and_record_are_the_same(
@@ -156,13 +179,18 @@ def test_figures_draw_on_the_axes_they_are_given(assessment: kn.Assessment) -> N
         lambda ax: figures.temperature_dependence(assessment, ax),
         lambda ax: figures.salt_effect(assessment, ax),
         lambda ax: figures.residuals_against(assessment, "order", ax),
+        lambda ax: figures.rate_constant_map(assessment, ax),
+        lambda ax: figures.charge_product_by_law(assessment, ax),
+        lambda ax: figures.enthalpy_entropy_region(assessment, ax),
+        lambda ax: figures.enthalpy_gibbs_region(assessment, ax),
+        lambda ax: figures.budget_bars(assessment, ax),
     ]
     for draw in drawings:
         ax = blank_figure().add_subplot()
         assert draw(ax) is ax
         assert isinstance(ax, Axes)
         assert ax.get_xlabel()
-        assert ax.get_ylabel()
+        assert ax.get_ylabel() or ax.get_yticklabels()
 
 
 def test_the_temperature_figure_shows_points_lines_and_celsius(
@@ -176,7 +204,7 @@ def test_the_temperature_figure_shows_points_lines_and_celsius(
     rates = assessment.rates
     assert np.asarray(points[0].get_xdata()) == pytest.approx([1000 / rates.T[0]])
     assert np.asarray(points[0].get_ydata()) == pytest.approx([np.log(rates.k[0])])
-    dashed = next(line for line in ax.lines if line.get_label() == "→ 0")
+    dashed = next(line for line in ax.lines if line.get_gid() == "limit")
     x, y = np.asarray(dashed.get_xdata(), float), np.asarray(dashed.get_ydata(), float)
     rising = np.argsort(x)
     at_ref = np.interp(1000 / 298.15, x[rising], y[rising])
@@ -205,8 +233,8 @@ def test_colours_are_ordered_in_grey() -> None:
 
 def test_svg_files_are_the_same_for_the_same_study(assessment: kn.Assessment) -> None:
     picture = kn.Report(assessment, "x").pictures[-1]
-    text = plain_svg(picture.draw(), picture.name)
-    assert text == plain_svg(picture.draw(), picture.name)
+    text = figure_bytes(laid_out(picture.draw()), "svg", picture.name)
+    assert text == figure_bytes(laid_out(picture.draw()), "svg", picture.name)
     assert fromstring(text).tag.endswith("svg")
 
 
@@ -223,9 +251,10 @@ def test_one_temperature_and_no_salt_have_fewer_figures() -> None:
     alone = kn.assess(kn.RateTable.from_arrays([288.15, 298.15, 308.15], [1.0, 2.1, 4.0]))
     assert [picture.name for picture in kn.Report(alone, "x").pictures] == [
         "temperature",
+        "activation",
         "residuals",
     ]
-    assert page(kn.Report(alone, "x")).count("<svg") == 2
+    assert undrawn(kn.Report(alone, "x")).count("<svg") == 3
     isothermal = kn.assess(
         kn.RateTable.from_arrays(
             [298.15] * 4, [1.0, 1.2, 1.4, 1.6], [0.01, 0.02, 0.05, 0.1], unit="L mol^-1 s^-1"
@@ -233,8 +262,9 @@ def test_one_temperature_and_no_salt_have_fewer_figures() -> None:
     )
     assert [picture.name for picture in kn.Report(isothermal, "x").pictures] == [
         "salt",
-        "residuals",
+        "charge-product",
         "budget",
+        "residuals",
     ]
     assert "E_a" not in summary(isothermal, "ascii")
 

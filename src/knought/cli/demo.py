@@ -5,7 +5,7 @@ from __future__ import annotations
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from knought.cli.console import add_format, layout_of, say
+from knought.cli.console import add_figures, add_format, figure_formats, layout_of, say
 
 if TYPE_CHECKING:
     import argparse
@@ -24,6 +24,7 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
     parser.add_argument(
         "--overwrite", action="store_true", help="replace the folder if it is there"
     )
+    add_figures(parser)
     add_format(parser)
 
 
@@ -32,4 +33,10 @@ def run(options: argparse.Namespace) -> None:
     from knought.demo import run_demo
 
     layout = layout_of(options)
-    say(run_demo(Path(options.out), overwrite=options.overwrite, layout=layout), layout)
+    said = run_demo(
+        Path(options.out),
+        overwrite=options.overwrite,
+        layout=layout,
+        figure_formats=figure_formats(options),
+    )
+    say(said, layout)

@@ -5,7 +5,7 @@ from __future__ import annotations
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from knought.cli.console import add_format, layout_of, progress_bars, say
+from knought.cli.console import add_figures, add_format, figure_formats, layout_of, say
 
 if TYPE_CHECKING:
     import argparse
@@ -24,6 +24,7 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
         "--overwrite", action="store_true", help="replace the folder if it is there"
     )
     parser.add_argument("--open", action="store_true", help="open the page in a browser")
+    add_figures(parser)
     add_format(parser)
 
 
@@ -32,10 +33,12 @@ def run(options: argparse.Namespace) -> None:
     from knought.study import run_study
 
     layout = layout_of(options)
-    with progress_bars() as progress:
-        report = run_study(
-            options.study, options.out, overwrite=options.overwrite, progress=progress
-        )
+    report = run_study(
+        options.study,
+        options.out,
+        overwrite=options.overwrite,
+        figure_formats=figure_formats(options),
+    )
     say(report.summary(layout), layout)
     target = Path(options.out) / "report.html"
     say(f"\nreport: {target}", layout)

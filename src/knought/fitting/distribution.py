@@ -89,6 +89,33 @@ class ParameterDistribution:
         away = locations - mean
         return mean, within + np.einsum("c,cn,cm->nm", self.weights, away, away)
 
+    def draws(self, rows: Rows, size: int, random: np.random.Generator) -> FloatArray:
+        """Return random values ``(size, n)`` of affine functions of the parameters.
+
+        Parameters
+        ----------
+        rows
+            As for :meth:`of`.
+        size
+            How many.
+        random
+            The generator, which the caller has seeded.
+        """
+        chosen = random.choice(len(self.weights), size, p=self.weights / self.weights.sum())
+        known = np.zeros_like(self.covariances[0]) if self.known is None else self.known
+        normal = random.standard_normal((size, len(self.names)))
+        if math.isfinite(self.degrees_of_freedom):
+            nu = self.degrees_of_freedom
+            normal *= np.sqrt(nu / random.chisquare(nu, size))[:, None]
+        theta = self.means[chosen]
+        theta = theta + np.einsum("cpq,cq->cp", _roots(self.covariances - known)[chosen], normal)
+        if self.known is not None:
+            theta = theta + random.standard_normal(theta.shape) @ _roots(known).T
+        offset, matrix = self._by_component(rows)
+        offset = offset[chosen] if offset.ndim == 2 else offset
+        matrix = matrix[chosen] if matrix.ndim == 3 else matrix
+        return np.asarray(offset + np.einsum("...np,...p->...n", matrix, theta))
+
     @property
     def mean(self) -> FloatArray:
         """Mean of the parameters, shape ``(p,)``."""
@@ -115,3 +142,9 @@ class ParameterDistribution:
         offset = rows.offset[cell] if rows.offset.ndim == 2 else rows.offset
         matrix = rows.rows[cell] if rows.rows.ndim == 3 else rows.rows
         return offset, matrix
+
+
+def _roots(covariances: FloatArray) -> FloatArray:
+    """Return roots of covariances, also of singular ones."""
+    value, vector = np.linalg.eigh(covariances)
+    return np.asarray(vector * np.sqrt(np.maximum(value, 0))[..., None, :])

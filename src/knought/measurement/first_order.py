@@ -117,8 +117,6 @@ class FirstOrder:
         √(RSS/ν), in the unit of the signal.
     points
         Points used.
-    window
-        First and last time used.
     degrees_of_freedom
         Of the Student t distributions.
     half_lives
@@ -141,7 +139,6 @@ class FirstOrder:
     u_final_level: float
     residual_deviation: float
     points: int
-    window: tuple[float, float]
     degrees_of_freedom: int
     half_lives: float
     correlation_share: float
@@ -167,7 +164,6 @@ def first_orders(
     *,
     final: float | None = None,
     dead_time: float | None = None,
-    window: float | None = None,
     drift: bool = False,
 ) -> FirstOrders:
     """Return k of m records on the same times.
@@ -182,8 +178,6 @@ def first_orders(
         A level that is known: at t = 0, or at the end. At most one.
     dead_time
         Points before it are left out.
-    window
-        Points after it are left out.
     drift
         Whether to fit a linear drift of the instrument as well.
 
@@ -193,7 +187,7 @@ def first_orders(
         If times or signals cannot be, both levels are given, too few points are left, or a trace
         does not bend.
     """
-    t, y = checked_trace(time, signals, dead_time, window)
+    t, y = checked_trace(time, signals, dead_time)
     if initial is not None and final is not None:
         raise InputError(
             "both levels of a first-order trace are given",
@@ -259,7 +253,6 @@ def first_order(
     *,
     final: float | None = None,
     dead_time: float | None = None,
-    window: float | None = None,
     drift: bool = False,
 ) -> FirstOrder:
     """Return the first-order rate constant of a trace; no starting value is needed.
@@ -276,8 +269,6 @@ def first_order(
         The level at the end, where it is known instead.
     dead_time
         Points before it are left out.
-    window
-        Points after it are left out.
     drift
         Whether to fit a linear drift of the instrument as well.
 
@@ -292,10 +283,8 @@ def first_order(
         does not bend.
     """
     signal = np.asarray(signal, dtype=float)
-    found = first_orders(
-        time, signal[None], initial, final=final, dead_time=dead_time, window=window, drift=drift
-    )
-    t, y = checked_trace(time, signal[None], dead_time, window)
+    found = first_orders(time, signal[None], initial, final=final, dead_time=dead_time, drift=drift)
+    t, y = checked_trace(time, signal[None], dead_time)
     k, levels = float(found.rate_constants[0]), found.levels[0]
     model = SingleExponential(initial, final, drift)
     residual = residuals(model, t, model.data(y), np.array([k]))[0]
@@ -328,7 +317,6 @@ def first_order(
         u_final_level=ends[3],
         residual_deviation=float(found.residual_deviation[0]),
         points=len(t),
-        window=(float(t[0]), float(t[-1])),
         degrees_of_freedom=found.degrees_of_freedom,
         half_lives=float(half_lives),
         correlation_share=float(found.correlation_share[0]),

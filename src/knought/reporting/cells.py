@@ -6,7 +6,7 @@ files for other programs all come from the same table.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
 from knought.rounding import Rounded, heading, rounded, unit_text
@@ -49,10 +49,13 @@ class Cell:
         The full number in the column's unit, or the text.
     texts
         What is read, by layout; layouts not named fall back to ``"text"``.
+    uncertainty
+        The full standard uncertainty, in the column's unit, where the cell shows value ± u.
     """
 
     raw: float | str | None
     texts: tuple[tuple[Layout, str], ...]
+    uncertainty: float | None = None
 
     def written(self, layout: Layout = "text") -> str:
         """Return what is read in `layout`."""
@@ -182,7 +185,8 @@ def pair_cell(estimate: Estimate | None) -> Cell:
         return words("–")
     value, u = float(estimate.value), float(estimate.standard_uncertainty)
     digits = estimate.quantity.rounded(value, None if estimate.given else u)
-    return _cell(estimate.quantity.shown(value), digits, pair=True)
+    shown = _cell(estimate.quantity.shown(value), digits, pair=True)
+    return shown if estimate.given else replace(shown, uncertainty=estimate.quantity.shown(u))
 
 
 def interval_cell(estimate: Estimate, coverage: float = 0.95) -> Cell:

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 from dataclasses import dataclass
+from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
 from knought.discussion.literature_sentences import comparison_sentences
@@ -18,7 +19,9 @@ from knought.reporting.mechanism_tables import (
     candidates_table,
     distances_table,
 )
+from knought.reporting.pictures import forest_pictures, plan_pictures
 from knought.reporting.plan_tables import expectation_table, planned_runs_table, power_table
+from knought.reporting.sections import Section
 
 if TYPE_CHECKING:
     from knought.discussion.background import Background
@@ -26,6 +29,7 @@ if TYPE_CHECKING:
     from knought.discussion.mechanism import Weighing
     from knought.discussion.next_runs import Plan
     from knought.reporting.cells import Table
+    from knought.reporting.pictures import Picture
 
 __all__ = ["Discussed"]
 
@@ -51,42 +55,32 @@ class Discussed:
     background: Background | None = None
     plan: Plan | None = None
 
+    @cached_property
+    def sections(self) -> tuple[Section, ...]:
+        """The pieces that were asked for, in the order of the report."""
+        made = []
+        if self.comparison is not None:
+            made.append(_literature_section(self.comparison))
+        if self.weighing is not None:
+            made.append(_candidates_section(self.weighing, self.background))
+        if self.plan is not None:
+            made.append(_plan_section(self.plan))
+        return tuple(made)
+
     @property
     def sentences(self) -> tuple[str, ...]:
         """Sentences for the discussion, each with its number."""
-        found: list[str] = []
-        if self.comparison is not None:
-            found += comparison_sentences(self.comparison)
-        if self.weighing is not None:
-            found += weighing_sentences(self.weighing)
-        if self.background is not None:
-            found += background_sentences(self.background)
-        if self.plan is not None:
-            found += self.plan.assumptions
-            found += [caution.message for caution in self.plan.cautions]
-        return tuple(found)
+        return tuple(each for section in self.sections for each in section.sentences)
+
+    @property
+    def pictures(self) -> tuple[Picture, ...]:
+        """Figures of the discussion."""
+        return tuple(each for section in self.sections for each in section.pictures)
 
     @property
     def tables(self) -> tuple[Table, ...]:
         """Tables of the discussion."""
-        found: list[Table | None] = []
-        if self.comparison is not None:
-            found += [
-                literature_table(self.comparison),
-                explanations_table(self.comparison),
-                consensus_table(self.comparison),
-            ]
-        if self.weighing is not None:
-            found += [candidates_table(self.weighing), distances_table(self.weighing)]
-        if self.background is not None:
-            found += background_tables(self.background)
-        if self.plan is not None:
-            found += [
-                planned_runs_table(self.plan),
-                expectation_table(self.plan),
-                power_table(self.plan),
-            ]
-        return tuple(table for table in found if table is not None)
+        return tuple(each for section in self.sections for each in section.tables)
 
     def record(self) -> dict[str, Any]:
         """Return what the record keeps."""
@@ -118,6 +112,47 @@ class Discussed:
                 for each in self.weighing.candidates
             ]
         return kept
+
+
+def _literature_section(comparison: Comparison) -> Section:
+    made = (
+        literature_table(comparison),
+        explanations_table(comparison),
+        consensus_table(comparison),
+    )
+    return Section(
+        "literature",
+        "Literature at matched conditions",
+        tuple(comparison_sentences(comparison)),
+        forest_pictures(comparison),
+        tuple(table for table in made if table is not None),
+    )
+
+
+def _candidates_section(weighing: Weighing, beside: Background | None) -> Section:
+    sentences = [*weighing_sentences(weighing)]
+    made = [candidates_table(weighing), distances_table(weighing)]
+    if beside is not None:
+        sentences += background_sentences(beside)
+        made += background_tables(beside)
+    return Section(
+        "mechanism",
+        "Candidate mechanisms",
+        tuple(sentences),
+        (),
+        tuple(table for table in made if table is not None),
+    )
+
+
+def _plan_section(plan: Plan) -> Section:
+    made = (planned_runs_table(plan), expectation_table(plan), power_table(plan))
+    return Section(
+        "next-runs",
+        "The next runs",
+        (*plan.assumptions, *(caution.message for caution in plan.cautions)),
+        plan_pictures(plan),
+        tuple(table for table in made if table is not None),
+    )
 
 
 def _finite(value: float) -> float | None:

@@ -10,8 +10,8 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from knought.reporting.style import INK, MUTED, marker, sequential
-from knought.rounding import unit_text
+from knought.chemistry.quantities import quantity
+from knought.reporting.style import INK, MUTED, axis_label, marker, plain_text, sequential
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
@@ -34,6 +34,9 @@ COMPENSATION_CAPTION = (
 )
 
 _NORMAL_95 = 1.959963984540054
+
+#: Rate constants within this factor are drawn on a linear axis, whose ticks are easier to read.
+_LINEAR_RANGE = 4.0
 
 #: Area of the heaviest marker, in points².
 _LARGEST = 60.0
@@ -62,7 +65,7 @@ def forest(carried: CarriedConsensus, ax: Axes) -> Axes:
     weights = iter(carried.consensus.weights if carried.consensus is not None else ())
     for i, each in enumerate(carried.carried):
         place = -float(i)
-        labels.append(each.literature.source)
+        labels.append(plain_text(each.literature.source))
         middle = _shown(carried, each.value)
         if not math.isfinite(each.standard_uncertainty):
             ax.plot([middle], [place], marker="o", mfc="white", mec=INK, ls="none")
@@ -89,10 +92,10 @@ def forest(carried: CarriedConsensus, ax: Axes) -> Axes:
         places.append(-float(len(carried.carried)) - 0.4)
     ax.set_yticks(places, labels)
     ax.set_ylim(places[-1] - 0.8, 0.8)
-    if carried.logarithmic:
+    left, right = ax.get_xlim()
+    if carried.logarithmic and right > _LINEAR_RANGE * max(left, 0.0):
         ax.set_xscale("log")
-    unit = unit_text(what.shown_unit, "latex")
-    ax.set_xlabel(f"${what.symbol.latex}$" + (f" / (${unit}$)" if unit else ""))
+    ax.set_xlabel(axis_label(what))
     ax.grid(axis="x", color=MUTED, lw=0.3, alpha=0.5)
     return ax
 
@@ -124,15 +127,15 @@ def compensation_plot(found: Compensation, ax: Axes) -> Axes:
             mec=INK,
             mew=0.4,
             ls="none",
-            label=each.label,
+            label=plain_text(each.label),
         )
     S = np.array([each.entropy for each in found.points])
     H = np.array([each.enthalpy for each in found.points]) / 1e3
     span = np.array([S.min(), S.max()])
     line = H.mean() + found.harmonic_mean_temperature * (span - S.mean()) / 1e3
     ax.plot(span, line, color=MUTED, ls=(0, (4, 2)), lw=0.9)
-    ax.set_xlabel(r"$\Delta S^\ddagger$ / (J$\,$K$^{-1}\,$mol$^{-1}$)")
-    ax.set_ylabel(r"$\Delta H^\ddagger$ / (kJ$\,$mol$^{-1}$)")
+    ax.set_xlabel(axis_label(quantity("activation_entropy")))
+    ax.set_ylabel(axis_label(quantity("activation_enthalpy")))
     ax.legend(loc="best")
     return ax
 
@@ -162,12 +165,10 @@ def gibbs_plot(found: Compensation, ax: Axes) -> Axes:
             fmt=marker(i),
             color=colours[i],
             elinewidth=0.7,
-            label=each.label,
+            label=plain_text(each.label),
         )
-    ax.set_xlabel(
-        rf"$\Delta G^\ddagger$ at {found.harmonic_mean_temperature:.0f}$\,$K / (kJ$\,$mol$^{{-1}}$)"
-    )
-    ax.set_ylabel(r"$\Delta H^\ddagger$ / (kJ$\,$mol$^{-1}$)")
+    ax.set_xlabel(rf"$\Delta G^\ddagger$ at {found.harmonic_mean_temperature:.0f} K / (kJ mol⁻¹)")
+    ax.set_ylabel(axis_label(quantity("activation_enthalpy")))
     ax.legend(loc="best")
     return ax
 

@@ -1,15 +1,38 @@
-"""The page: one self-contained HTML file, no script, no network, made from a :class:`Report`."""
+"""The page: one self-contained HTML file made from a :class:`Report`.
+
+It asks nothing of the network and can be read without its script, which only labels the runs that
+are pointed at and copies tables.
+"""
 
 from __future__ import annotations
 
+import base64
+import hashlib
+import math
 from typing import TYPE_CHECKING
 
+from knought.reporting.cells import interval_cell
+from knought.reporting.style import DOUBLE_COLUMN, SINGLE_COLUMN
+
 if TYPE_CHECKING:
-    from knought.reporting.cells import Column
+    from collections.abc import Mapping
+
+    from jinja2 import Environment
+
+    from knought.fitting.assess import Assessment
+    from knought.reporting.cells import Cell, Column
+    from knought.reporting.pictures import Picture
     from knought.reporting.report import Report
     from knought.rounding import Layout
 
-__all__ = ["page"]
+__all__ = ["page", "written_page"]
+
+
+#: The results that the page begins with.
+_FIRST = ("rate_constant", "activation_energy", "activation_entropy", "charge_product")
+
+#: Text cells longer than this are folded.
+_LONG = 40
 
 
 def page(report: Report) -> str:
@@ -25,6 +48,19 @@ def page(report: Report) -> str:
     str
         A whole HTML document; everything that came from the user is escaped.
     """
+    return written_page(report, {each.name: _drawing(report, each) for each in report.pictures})
+
+
+def written_page(report: Report, drawn: Mapping[str, str]) -> str:
+    """Return the page with the drawings given.
+
+    Parameters
+    ----------
+    report
+        The report.
+    drawn
+        Markup of every picture by its name.
+    """
     from jinja2 import Environment, PackageLoader, StrictUndefined
     from markupsafe import Markup
 
@@ -37,22 +73,92 @@ def page(report: Report) -> str:
         trim_blocks=True,
         lstrip_blocks=True,
     )
-    drawn = [
-        # Our own markup, in which matplotlib and the titles' writer have escaped all text.
-        (picture, Markup(report.inline(picture)))
-        for picture in report.pictures
-    ]
+    # Our own files and drawings, in which matplotlib and the titles' writer have escaped all text.
+    style, script = (Markup(_own_file(environment, name)) for name in ("report.css", "report.js"))
     return environment.get_template("report.html.j2").render(
         report=report,
+        policy=_policy(style, script),
+        style=style,
+        script=script,
         caveats=report.assessment.caveats,
-        headline=report.tables[0],
-        other_tables=report.tables[1:],
-        pictures=drawn,
+        answers=_answers(report.assessment),
+        answer_tables=report.answer_tables,
+        sections=report.sections,
+        drawn={name: Markup(drawing) for name, drawing in drawn.items()},
         methods=_methods(report),
         version=__version__,
         html=_html,
         heading=_heading,
+        attributes=_attributes,
     )
+
+
+def _own_file(environment: Environment, name: str) -> str:
+    """Return a style sheet or script as it stands beside the template.
+
+    Raises
+    ------
+    FileNotFoundError
+        If the package was installed without it.
+    """
+    if environment.loader is None:
+        raise FileNotFoundError(name)
+    return environment.loader.get_source(environment, name)[0]
+
+
+def _policy(style: str, script: str) -> str:
+    """Return a policy that allows this style, this script, and nothing from anywhere."""
+    hashes = [
+        base64.b64encode(hashlib.sha256(text.encode("utf-8")).digest()).decode("ascii")
+        for text in (style, script)
+    ]
+    return (
+        f"default-src 'none'; style-src 'sha256-{hashes[0]}'; script-src 'sha256-{hashes[1]}'; "
+        "img-src data:; base-uri 'none'; form-action 'none'"
+    )
+
+
+def _drawing(report: Report, picture: Picture) -> str:
+    """Return a picture for wide and for narrow screens; the style sheet shows one of them."""
+    return "\n".join(
+        report.inline(picture, width).replace("<svg ", f'<svg class="{name}" ', 1)
+        for name, width in (("wide", DOUBLE_COLUMN), ("narrow", SINGLE_COLUMN))
+    )
+
+
+def _answers(assessment: Assessment) -> list[tuple[str, str, str]]:
+    """Return words, value with u, and interval of the results that the page begins with."""
+    from markupsafe import Markup
+
+    found: list[tuple[str, str, str]] = []
+    for name in _FIRST:
+        estimate = assessment.parameters.get(name)
+        if estimate is None:
+            continue
+        interval = "given"
+        if not estimate.given:
+            ends = Markup(interval_cell(estimate).written("html"))
+            interval = Markup("95 %: {}").format(ends)
+        # Signs, digits and units are the registry's own.
+        value = Markup(f"{estimate.quantity.symbol.html} = {estimate.written('html')}")
+        found.append((estimate.quantity.words, value, interval))
+    return found
+
+
+def _attributes(cell: Cell, tag: str, *, numeric: bool) -> str:
+    """Return class and full numbers of a cell, for the style sheet and for copying."""
+    from markupsafe import Markup
+
+    made = ' scope="row"' if tag == "th" else ""
+    if numeric:
+        made += ' class="number"'
+    elif len(cell.written()) > _LONG:
+        made += ' class="long"'
+    if isinstance(cell.raw, float) and math.isfinite(cell.raw):
+        made += f' data-value="{cell.raw!r}"'
+    if cell.uncertainty is not None and math.isfinite(cell.uncertainty):
+        made += f' data-u="{cell.uncertainty!r}"'
+    return Markup(made)
 
 
 def _html(texts: tuple[tuple[Layout, str], ...]) -> str:

@@ -10,7 +10,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from knought.chemistry.quantities import quantity
-from knought.reporting.style import INK, MUTED, padded
+from knought.reporting.style import INK, IONIC_STRENGTH_LABEL, MUTED, padded, unit_in_brackets
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
@@ -73,7 +73,7 @@ def information_map(plan: Plan, ax: Axes) -> Axes:
         ax.set_xticks([])
     else:
         ax.set_xticks(range(len(I)), [f"{value:.3g}" for value in I])
-        ax.set_xlabel("$I$ / (mol$\\,$L$^{-1}$)")
+        ax.set_xlabel(IONIC_STRENGTH_LABEL)
     bar = ax.figure.colorbar(mesh, ax=ax)
     bar.set_label("one run more lowers $u$ by / %")
     return ax
@@ -117,15 +117,7 @@ def u_against_runs(curve: RunsCurve, name: str, ax: Axes, *, wanted: float | Non
     ax.set_ylim(0, 1.1 * max(float(u.max()), shown(wanted or 0.0)))
     ax.set_xlabel("number of runs")
     symbol = what.symbol.latex
-    unit = " / %" if relative else _unit(what.shown_unit)
+    written = "%" if relative else unit_in_brackets(what.shown_unit)
+    unit = f" / {written}" if written else ""
     ax.set_ylabel(f"expected $u({symbol})${unit}")
     return ax
-
-
-def _unit(unit: str) -> str:
-    from knought.rounding import unit_text
-
-    if unit == "1":
-        return ""
-    written = unit_text(unit, "latex")
-    return rf" / $({written})$" if " " in unit else rf" / ${written}$"

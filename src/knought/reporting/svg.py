@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import io
 import re
 from collections import Counter
 from typing import TYPE_CHECKING
@@ -11,76 +10,82 @@ if TYPE_CHECKING:
     from collections.abc import Mapping
     from xml.etree.ElementTree import Element
 
-    from matplotlib.figure import Figure
-
-__all__ = ["inline_svg", "plain_svg"]
+__all__ = ["inline_svg"]
 
 _SVG = "http://www.w3.org/2000/svg"
 _XLINK = "http://www.w3.org/1999/xlink"
 
+#: Radius in points within which a mark answers to the pointer.
+_REACH = "5.5"
+
 _REFERENCE = re.compile(r"url\(#([^)]+)\)")
 
 
-def plain_svg(figure: Figure, salt: str) -> str:
-    """Return a figure as an SVG file that is the same for the same figure.
-
-    Parameters
-    ----------
-    figure
-        The figure.
-    salt
-        Goes into the ids, so that they do not depend on chance.
-    """
-    import matplotlib as mpl
-
-    from knought.reporting.style import STYLE
-
-    buffer = io.StringIO()
-    with mpl.rc_context({**STYLE, "svg.hashsalt": salt}):
-        figure.savefig(buffer, format="svg", metadata={"Date": None, "Creator": None})
-    return buffer.getvalue()
-
-
 def inline_svg(svg: str, salt: str, alternative: str, titles: Mapping[str, str]) -> str:
-    """Return an SVG file as an ``<svg>`` element for a page.
+    """Return an SVG file as an ``<svg>`` element for a page that allows no style in its markup.
 
     Parameters
     ----------
     svg
-        The text of the file, as :func:`plain_svg` makes it.
+        The text of the file, as matplotlib writes it.
     salt
         Prefix of every id, so that figures on one page do not share any.
     alternative
         What the figure shows, for those who cannot see it.
     titles
-        What each group of that gid is; shown by browsers when pointed at.
+        What each group of that gid is: its text alternative, and shown when pointed at.
     """
     from defusedxml.ElementTree import fromstring
 
     root: Element = fromstring(svg)
-    for element in list(root):
-        if element.tag == f"{{{_SVG}}}metadata":
-            root.remove(element)
-    _title_groups(root, titles)
+    _without_style(root)
+    found = _title_groups(root, titles)
     _salt_ids(root, salt)
     root.attrib.pop("width", None)
     root.attrib.pop("height", None)
-    root.set("role", "img")
+    # An image hides what is inside; points that can be reached must not be hidden.
+    root.set("role", "group" if found else "img")
     root.set("aria-label", alternative)
     return _written(root)
 
 
-def _title_groups(root: Element, titles: Mapping[str, str]) -> None:
-    from xml.etree.ElementTree import SubElement
+def _without_style(root: Element) -> None:
+    """Turn every style into attributes, which a content security policy does not forbid."""
+    for parent in list(root.iter()):
+        for child in list(parent):
+            if child.tag in {f"{{{_SVG}}}style", f"{{{_SVG}}}metadata"}:
+                parent.remove(child)
+    for element in root.iter():
+        for declaration in element.attrib.pop("style", "").split(";"):
+            name, _, value = declaration.partition(":")
+            if value.strip():
+                element.set(name.strip(), value.strip())
+    # What matplotlib's style sheet says of every element; both are inherited.
+    root.set("stroke-linejoin", "round")
+    root.set("stroke-linecap", "butt")
 
+
+def _title_groups(root: Element, titles: Mapping[str, str]) -> int:
+    """Give each titled group its text and a field that is easier to point at; count them."""
+    from xml.etree.ElementTree import Element, SubElement
+
+    found = 0
     for group in root.iter(f"{{{_SVG}}}g"):
         text = titles.get(group.get("id", ""))
-        if text is not None:
-            title = SubElement(group, f"{{{_SVG}}}title")
-            title.text = text
-            # A title must be the first child to be read by every browser.
-            group.remove(title)
-            group.insert(0, title)
+        if text is None:
+            continue
+        found += 1
+        title = Element(f"{{{_SVG}}}title")
+        title.text = text
+        # A title must be the first child to be read by every browser.
+        group.insert(0, title)
+        group.set("class", "point")
+        group.set("role", "img")
+        group.set("aria-label", text)
+        for mark in list(group.iter(f"{{{_SVG}}}use"))[:1]:
+            place = {"cx": mark.get("x", "0"), "cy": mark.get("y", "0"), "r": _REACH}
+            SubElement(group, f"{{{_SVG}}}circle", {**place, "fill": "none", "class": "reach"})
+    return found
 
 
 def _salt_ids(root: Element, salt: str) -> None:

@@ -101,16 +101,9 @@ def meaning_of_uncertainty(found: Found) -> str:
     coverage = "Intervals hold 95 %, equal tails"
     if isinstance(found, OpenFit):
         coverage += ", integrated over the open salt law"
-    elif found.distribution.known is not None:
-        coverage += (
-            f", the scatter known to {found.scatter.degrees_of_freedom} degrees of freedom beside "
-            "shared errors of known size"
-        )
     elif found.scatter.from_scatter:
         coverage += f", Student t with {found.scatter.degrees_of_freedom} degrees of freedom"
-    return f"u is a standard uncertainty, {found.includes}. {found.excludes} {coverage}.".replace(
-        "  ", " "
-    )
+    return f"u is a standard uncertainty, {found.includes}. {coverage}."
 
 
 def _parameter_columns() -> tuple[Column, ...]:
@@ -325,6 +318,7 @@ def runs_table(assessment: Assessment) -> Table:
         shown = Cell(
             float(rates.k[i]),
             tuple((layout, digits.pair(layout)) for layout in ("text", "ascii", "html", "latex")),
+            u,
         )
         if rates.used[i]:
             outcome = [
@@ -350,7 +344,7 @@ def runs_table(assessment: Assessment) -> Table:
             number_column("ln k residual"),
             number_column("studentised"),
             number_column("leverage"),
-            text_column(""),
+            text_column("remark"),
         ),
         tuple(rows),
         ("Studentised: the residual over its own standard deviation, u √(1 − leverage).",),

@@ -6,7 +6,7 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from knought.reporting.style import INK, sequential
+from knought.reporting.style import INK, legend_beside, plain_text, sequential
 from knought.reporting.uncertainty_tables import BUDGETED
 
 if TYPE_CHECKING:
@@ -19,7 +19,7 @@ __all__ = ["budget_bars"]
 #: Shares smaller than this are not labelled inside their bar.
 _LABELLED = 0.08
 
-_HATCHES = ("", "////", "....", "xxxx", "\\\\\\\\", "||||", "oo", "++")
+_HATCHES = ("", "///", "..", "xx", "\\\\\\", "|||", "--", "++")
 
 
 def budget_bars(assessment: Assessment, ax: Axes) -> Axes:
@@ -56,7 +56,7 @@ def budget_bars(assessment: Assessment, ax: Axes) -> Axes:
             edgecolor="white",
             linewidth=0.6,
             hatch=_HATCHES[j % len(_HATCHES)],
-            label=source,
+            label=plain_text(source, 28),
         )
         for place, start, share in zip(places, left, shares, strict=True):
             if share >= _LABELLED:
@@ -75,7 +75,6 @@ def budget_bars(assessment: Assessment, ax: Axes) -> Axes:
     ax.set_xticks(np.linspace(0, 1, 6), [f"{share:.0%}" for share in np.linspace(0, 1, 6)])
     ax.set_xlabel("share of the variance")
     ax.tick_params(axis="y", length=0)
-    ax.legend(
-        loc="lower center", bbox_to_anchor=(0.5, 1.0), ncols=3, handlelength=1.6, columnspacing=1.4
-    )
+    handles, _ = ax.get_legend_handles_labels()
+    legend_beside(ax, handles)
     return ax

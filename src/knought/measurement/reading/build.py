@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from dataclasses import replace
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -132,11 +131,7 @@ def built(
         reason=labels.get("reason", ()),
         note=labels.get("note", ()),
         concentrations={species: found.values[kept] for species, found in amounts.items()},
-        source=replace(
-            source,
-            headers={role: found.column.column.address for role, found in measured.items()},
-        ),
-        rows=values.rows[kept],
+        source=source,
         account=tuple(draft.account),
     )
 
