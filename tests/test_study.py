@@ -194,9 +194,16 @@ def test_shared_errors_of_a_study_file_reach_the_budget(folder: Path) -> None:
         'name = "absorptivity"',
         'kind = "factor"',
         'u = "3 %"',
+        "[[shared_errors]]",
+        'name = "thermometer"',
+        'kind = "temperature-offset"',
+        'u = "0.1 K"',
+        'distribution = "rectangular"',
+        "each_run = true",
     )
     found = read_study(path).report().assessment
-    assert {"probe offset", "absorptivity"} <= set(found.budget("rate_constant").variances)
+    sources = set(found.budget("rate_constant").variances)
+    assert {"probe offset", "absorptivity", "thermometer"} <= sources
     k = float(found.parameters["rate_constant"].value)
     assert found.budget("rate_constant").uncertainty("absorptivity") == pytest.approx(0.03 * k)
 
@@ -215,6 +222,67 @@ def test_a_wrong_shared_error_is_named(folder: Path, line: str, message: str) ->
     lines = [each for each in lines if not each.startswith(f"{key} ")] + [line]
     with pytest.raises(kn.InputError) as caught:
         read_study(with_lines(folder, *lines))
+    assert message in str(caught.value)
+
+
+def test_checks_of_a_study_file_reach_page_tables_and_record(folder: Path) -> None:
+    path = with_lines(
+        folder,
+        "[laws]",
+        'salt = "davies"',
+        "[checks]",
+        "monte_carlo = 20_000",
+        "bootstrap = 100",
+    )
+    told: list[tuple[str, int]] = []
+    report = kn.run_study(path, folder / "out", progress=lambda *each: told.append(each))
+    assert told[-1] == ("refits", 100)
+    assert ("draws", 20_000) in told
+    record = json.loads((folder / "out" / "results.json").read_text(encoding="utf-8"))
+    drawn, again = record["monte_carlo"], record["bootstrap"]
+    assert drawn["draws"] == 20_000
+    assert drawn["seed"] == again["seed"] == record["seed"]
+    for name in ("rate_constant", "activation_energy", "charge_product"):
+        closed = record["parameters"][name]
+        assert drawn["parameters"][name]["unit"] == closed["unit"]
+        for other in (drawn, again):
+            low, high = other["parameters"][name]["interval"]
+            assert low < closed["value"] < high
+        assert again["parameters"][name]["standard_uncertainty"] == pytest.approx(
+            closed["standard_uncertainty"], rel=0.3
+        )
+    page = (folder / "out" / "report.html").read_text(encoding="utf-8")
+    assert "Monte Carlo, 20000 draws" in page
+    assert "no draw was refitted" in page
+    assert (folder / "out" / "tables" / "bootstrap.txt").is_file()
+    assert len(report.tables) > 6
+
+
+def test_an_interrupt_during_the_checks_leaves_nothing_behind(folder: Path) -> None:
+    path = with_lines(folder, "[checks]", 'monte_carlo = "adaptive"')
+
+    def interrupted(what: str, done: int) -> None:
+        raise KeyboardInterrupt
+
+    before = sorted(folder.iterdir())
+    with pytest.raises(KeyboardInterrupt):
+        kn.run_study(path, folder / "out", progress=interrupted)
+    assert sorted(folder.iterdir()) == before
+
+
+@pytest.mark.parametrize(
+    ("line", "message"),
+    [
+        ('monte_carlo = "many"', "adaptive"),
+        ("monte_carlo = 10", "1000"),
+        ("bootstrap = 3", "100"),
+        ('bootstrap_kind = "casual"', "parametric"),
+        ("montecarlo = 1000", "'monte_carlo'"),
+    ],
+)
+def test_wrong_checks_are_named(folder: Path, line: str, message: str) -> None:
+    with pytest.raises(kn.InputError) as caught:
+        read_study(with_lines(folder, "[checks]", line))
     assert message in str(caught.value)
 
 

@@ -18,7 +18,7 @@ from knought.study_file import read_study_file
 from knought.study_sections.upstream import Upstream
 
 if TYPE_CHECKING:
-    from collections.abc import Sequence
+    from collections.abc import Callable, Sequence
 
     from knought.discussion.next_runs import Plan
     from knought.fitting.assess import Assessment
@@ -73,8 +73,13 @@ class Study:
             )
         return target
 
-    def report(self) -> Report:
+    def report(self, progress: Callable[[str, int], None] | None = None) -> Report:
         """Read the table, assess it, and return the report.
+
+        Parameters
+        ----------
+        progress
+            Told of the checks what is counted (``"draws"``, ``"refits"``) and how many are done.
 
         Raises
         ------
@@ -106,6 +111,8 @@ class Study:
             self._inputs(),
             said.study.seed,
             _discussed(self, assessment),
+            said.checks.run(assessment.headline, seed=said.study.seed, progress=progress),
+            reduced,
         )
 
     def _rates(self) -> RateTable:
@@ -215,6 +222,7 @@ def run_study(
     *,
     overwrite: bool = False,
     figure_formats: Sequence[str] = FIGURE_FORMATS,
+    progress: Callable[[str, int], None] | None = None,
 ) -> Report:
     """Run a study and write its output folder, whole or not at all.
 
@@ -228,6 +236,8 @@ def run_study(
         Whether an existing folder may be replaced.
     figure_formats
         Formats of the figure files, some of ``"svg"``, ``"pdf"`` and ``"png"``.
+    progress
+        As for :meth:`Study.report`.
 
     Returns
     -------
@@ -239,7 +249,7 @@ def run_study(
         If the study is wrong, or the folder exists and may not be replaced.
     """
     refuse_existing(Path(out), overwrite=overwrite)
-    report = read_study(path).report()
+    report = read_study(path).report(progress)
     write_report(report, out, overwrite=overwrite, figure_formats=figure_formats)
     return report
 

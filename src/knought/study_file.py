@@ -15,6 +15,7 @@ from pydantic import BaseModel, ValidationError, model_validator
 
 from knought.errors import InputError, Problem
 from knought.study_sections.base import Section
+from knought.study_sections.checks import ChecksSection
 from knought.study_sections.core import (
     LawsSection,
     PriorsSection,
@@ -48,6 +49,7 @@ class StudyFile(Section):
     laws: LawsSection = LawsSection()
     priors: PriorsSection = PriorsSection()
     shared_errors: tuple[SharedErrorSection, ...] = ()
+    checks: ChecksSection = ChecksSection()
     literature: LiteratureSection | None = None
     candidates: tuple[CandidateSection, ...] = ()
     plan: PlanSection | None = None

@@ -56,7 +56,15 @@ file = "rates.xlsx"                        # or .csv, .tsv; beside this file
 # name = "probe offset"
 # kind = "temperature-offset"
 # u = "0.2 K"                              # standard uncertainty; "2 %" for the other kinds
+# distribution = "rectangular"             # normal, rectangular, triangular, t; for Monte Carlo
 # batch = "A"
+# each_run = true                          # each run has one of its own, instead of one for all
+
+# Find the ± of the headline once more; it takes seconds to minutes.
+# [checks]
+# monte_carlo = "adaptive"                 # JCGM 101 until two digits of u stand, or a number
+# bootstrap = 500                          # refits of runs drawn again
+# bootstrap_kind = "parametric"            # or "case"
 
 [priors]
 # What is known of the open salt law before the data; narrow them only if you know better.

@@ -8,6 +8,32 @@ __all__ = ["REFUSED_CELLS"]
 
 REFUSED_CELLS = (
     Refused(
+        "all-at-once.csv",
+        b"run,T/K,I/(mol/L),k/s^-1,u(k)/s^-1,n\n"
+        b"a,298.15,-0.1,abc,0.1,2\nb,-3,0.1,2.0,0,x\nc,308.15,oops,-1,,2\n",
+        (
+            "8 problems:\n  "
+            'all-at-once.csv, row 2, column k/s^-1: is not a number (read: "abc"). Write numbers '
+            "as 2.41 or 2.41e-3; leave the cell blank for none.\n  "
+            "all-at-once.csv, row 2, column I/(mol/L): gives an ionic strength below zero (read: "
+            '"-0.1"). Check the sign.\n  '
+            'all-at-once.csv, row 3, column n: is not a number (read: "x"). Write numbers as 2.41 '
+            "or 2.41e-3; leave the cell blank for none.\n  "
+            'all-at-once.csv, row 3, column T/K: is at or below 0 K (read: "-3"). Check the '
+            "temperature and its unit.\n  "
+            "all-at-once.csv, row 3, column u(k)/s^-1: the uncertainty is not above zero (read: "
+            '"0"). No measurement is exact; leave the whole column blank if the uncertainty is '
+            "unknown.\n  "
+            'all-at-once.csv, row 4, column I/(mol/L): is not a number (read: "oops"). Write '
+            "numbers as 2.41 or 2.41e-3; leave the cell blank for none.\n  "
+            "all-at-once.csv, row 4, column k/s^-1: gives a rate constant that is not above zero "
+            '(read: "-1"). A rate constant is positive; leave the run out (use: no, with a '
+            "reason) if it failed.\n  "
+            "all-at-once.csv, row 4, column u(k)/s^-1: the uncertainty is blank here and given in "
+            "other rows. Give it in every row, or leave the whole column blank if it is unknown."
+        ),
+    ),
+    Refused(
         "two-marks.csv",
         b"T/K;k/s^-1\n298,15;0.5\n308,15;0.7\n",
         (

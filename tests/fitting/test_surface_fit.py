@@ -17,6 +17,8 @@ from knought.fitting.surface_fit import SurfaceFit
 from tests.simulation import davies, extended, guntelberg, simulate
 
 if TYPE_CHECKING:
+    from pathlib import Path
+
     from knought.arrays import FloatArray
 
 STRENGTHS = np.array([0.005, 0.01, 0.02, 0.05, 0.1, 0.2])
@@ -425,3 +427,20 @@ def test_runs_that_are_not_in_liquid_water_are_named() -> None:
     with pytest.raises(kn.InputError, match=r"run hot was measured at 398\.15 K"):
         kn.fit(rates, salt_law="davies")
     assert kn.fit(rates, salt_law="linear").salt_law == "linear"
+
+
+def test_runs_that_are_not_in_liquid_water_are_named_by_their_cells(tmp_path: Path) -> None:
+    """The run that is left out shifts no row: rows are those of the spreadsheet."""
+    path = tmp_path / "hot.csv"
+    path.write_text(
+        "run,t/°C,I/(mol/L),k/s^-1,use,reason\na,25,0.1,1,no,spilt\nb,120,0.1,2.0,,\n"
+        "# a comment\nc,-35,0.2,3,,\nd,35,0.2,3,,\n",
+        encoding="utf-8",
+    )
+    with pytest.raises(kn.InputError) as refused:
+        kn.assess(kn.read_rates(path))
+    assert [(each.file, each.row, each.column) for each in refused.value.problems] == [
+        ("hot.csv", 3, "t/°C"),
+        ("hot.csv", 5, "t/°C"),
+    ]
+    assert "run b was measured at 393.15 K" in refused.value.problems[0].what

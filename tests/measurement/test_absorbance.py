@@ -201,6 +201,7 @@ def test_a_study_file_runs_from_traces_to_a_table_that_fits(tmp_path: Path) -> N
         "path length",
         "stock of KI",
         "K of I2 + I- = I3^-",
+        "ΔH of I2 + I- = I3^-",
     ]
     assert len(found.account) >= len(_CONDITIONS) + 1
     fit = kn.fit(found.rates, salt_law="guntelberg", shared_errors=found.shared_errors)
@@ -222,7 +223,7 @@ def test_the_commands_write_a_table_that_is_read_back(
     study, parser = _write_study(tmp_path), argparse.ArgumentParser()
     reduce.add_arguments(parser)
     reduce.run(parser.parse_args([str(study), "--out", str(tmp_path / "out")]))
-    assert "[[shared_errors]]" in capsys.readouterr().out
+    assert "the errors that runs share: molar absorptivity" in capsys.readouterr().out
     assert len(kn.read_rates(tmp_path / "out" / "rates.csv")) == len(_CONDITIONS)
 
     parser, columns = argparse.ArgumentParser(), tmp_path / "medium.csv"

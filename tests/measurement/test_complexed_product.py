@@ -45,7 +45,6 @@ def test_the_formula_for_one_complex_is_the_textbook_s(
 
 def test_what_u_of_k_does_is_the_numerical_derivative() -> None:
     found = _triiodide(free=900.0).effective({"I-": 0.005}, 308.15)
-    u = TRIIODIDE.u_ln_K(308.15)
     ends = []
     for sign in (1, -1):
         moved = Equilibrium(
@@ -58,7 +57,25 @@ def test_what_u_of_k_does_is_the_numerical_derivative() -> None:
         product = ComplexedProduct("I2", (moved,), {"I3^-": EPSILON, "I2": 900.0})
         ends.append(math.log(product.effective({"I-": 0.005}, 308.15).value))
     slope = (ends[0] - ends[1]) / 2e-5
-    assert found.by_constant["I2 + I- = I3^-"] == pytest.approx(slope * u, rel=1e-6)
+    effects = {name: slope * u for name, u in TRIIODIDE.effects_on_ln_K(308.15).items()}
+    assert found.by_constant == pytest.approx(effects, rel=1e-6)
+    assert math.hypot(*effects.values()) == pytest.approx(
+        abs(slope) * TRIIODIDE.u_ln_K(308.15), rel=1e-12
+    )
+
+
+def test_an_error_of_the_enthalpy_changes_its_sign_at_the_reference_temperature() -> None:
+    name = "ΔH of I2 + I- = I3^-"
+    cold, warm = (TRIIODIDE.effects_on_ln_K(T)[name] for T in (288.15, 308.15))
+    assert cold < 0 < warm
+    assert TRIIODIDE.effects_on_ln_K(298.15)[name] == 0
+
+
+def test_more_ligand_matters_as_the_bound_share_says() -> None:
+    low, high = (_triiodide(free=900.0).effective({"I-": c}, 308.15) for c in (0.00499, 0.00501))
+    middle = _triiodide(free=900.0).effective({"I-": 0.005}, 308.15)
+    slope = math.log(high.value / low.value) / math.log(0.00501 / 0.00499)
+    assert middle.by_ligand["I^-"] == pytest.approx(slope, rel=1e-5)
 
 
 def test_a_warmer_solution_binds_less() -> None:

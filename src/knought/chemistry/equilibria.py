@@ -135,8 +135,17 @@ class Equilibrium:
 
     def u_ln_K(self, T: float) -> float:
         """Return the standard uncertainty of ln K at `T` (K), from u(lg K) and u(ΔH)."""
+        return math.hypot(*self.effects_on_ln_K(T).values())
+
+    def effects_on_ln_K(self, T: float) -> dict[str, float]:
+        """Return what one standard uncertainty of K and of ΔH does to ln K at `T`, by source."""
         away = (1 / self.reference_temperature - 1 / T) / GAS_CONSTANT
-        return math.hypot(LN10 * self.u_lg_K, self.u_enthalpy * away)
+        effects = {
+            f"K of {self.reaction}": LN10 * self.u_lg_K,
+            f"ΔH of {self.reaction}": self.u_enthalpy * away,
+        }
+        sizes = (self.u_lg_K, self.u_enthalpy)
+        return {name: each for (name, each), u in zip(effects.items(), sizes, strict=True) if u}
 
 
 def _stoichiometry(reaction: str) -> dict[Species, int]:

@@ -51,6 +51,8 @@ class MediumSeries:
         What one standard uncertainty of each source does to each I, mol/L.
     own : (n,) ndarray
         Standard uncertainty of each I of its own (volumes), mol/L.
+    recipes
+        The recipes that the media were made from.
     """
 
     media: tuple[Medium, ...]
@@ -58,6 +60,7 @@ class MediumSeries:
     sources: tuple[str, ...]
     shared: FloatArray
     own: FloatArray
+    recipes: tuple[Recipe, ...] = ()
 
     @property
     def covariance(self) -> FloatArray:
@@ -116,9 +119,15 @@ def prepare_series(
         [_by_stock(recipe, at, equilibria, form, name) * u for recipe, at in runs]
         for name, u in stocks.items()
     ]
-    uncertain = [i for i, each in enumerate(equilibria) if each.u_lg_K]
+    uncertain = [
+        (i, name, part)
+        for i, each in enumerate(equilibria)
+        for name, part, u in (("K", "lg_K", each.u_lg_K), ("ΔH", "enthalpy", each.u_enthalpy))
+        if u
+    ]
     columns += [
-        [_by_constant(recipe, at, equilibria, form, i) for recipe, at in runs] for i in uncertain
+        [_by_constant(recipe, at, equilibria, form, i, part) for recipe, at in runs]
+        for i, _, part in uncertain
     ]
     own = [_own(recipe, at, equilibria, form) for recipe, at in runs]
     return MediumSeries(
@@ -126,10 +135,11 @@ def prepare_series(
         frozen([medium.ionic_strength for medium in media]),
         (
             *(f"stock {name}" for name in stocks),
-            *(f"K of {equilibria[i].reaction}" for i in uncertain),
+            *(f"{name} of {equilibria[i].reaction}" for i, name, _ in uncertain),
         ),
         frozen(np.array(columns).T if columns else np.zeros((len(runs), 0))),
         frozen(own),
+        tuple(recipes),
     )
 
 
@@ -156,12 +166,14 @@ def _by_constant(
     equilibria: Sequence[Equilibrium],
     form: ActivityForm | None,
     index: int,
+    part: str,
 ) -> float:
-    """Return what one standard uncertainty of a constant does to I, in mol/L."""
+    """Return what one standard uncertainty of a constant's part does to I, in mol/L."""
     one = equilibria[index]
+    value, u = float(getattr(one, part)), float(getattr(one, f"u_{part}"))
     ends = []
     for sign in (1, -1):
-        moved = replace(one, lg_K=one.lg_K + sign * one.u_lg_K)
+        moved = replace(one, **{part: value + sign * u})  # type: ignore[arg-type]
         changed = [*equilibria[:index], moved, *equilibria[index + 1 :]]
         ends.append(prepare(recipe, T, changed, form).ionic_strength)
     return (ends[0] - ends[1]) / 2

@@ -3,14 +3,16 @@
 from __future__ import annotations
 
 import sys
-from typing import TYPE_CHECKING
+from contextlib import contextmanager
+from typing import TYPE_CHECKING, Any
 
 if TYPE_CHECKING:
     import argparse
+    from collections.abc import Callable, Iterator
 
     from knought.rounding import Layout
 
-__all__ = ["add_figures", "add_format", "figure_formats", "layout_of", "say"]
+__all__ = ["add_figures", "add_format", "figure_formats", "layout_of", "progress_bars", "say"]
 
 
 def add_format(parser: argparse.ArgumentParser) -> None:
@@ -56,3 +58,26 @@ def say(text: str, layout: Layout = "text") -> None:
 
         text = to_ascii(text)
     print(text.rstrip("\n"))
+
+
+@contextmanager
+def progress_bars() -> Iterator[Callable[[str, int], None]]:
+    """Give a function that shows on a terminal how many of something are done.
+
+    One bar for each thing that is counted; all are gone at the end, also after an interrupt.
+    Nothing is shown where the output for messages is no terminal.
+    """
+    from tqdm import tqdm
+
+    bars: dict[str, tqdm[Any]] = {}
+
+    def progress(what: str, done: int) -> None:
+        if what not in bars:
+            bars[what] = tqdm(unit=f" {what}", disable=None, leave=False)
+        bars[what].update(done - bars[what].n)
+
+    try:
+        yield progress
+    finally:
+        for bar in bars.values():
+            bar.close()

@@ -9,7 +9,7 @@ from __future__ import annotations
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from knought.cli.console import add_format, layout_of, say
+from knought.cli.console import add_format, layout_of, progress_bars, say
 from knought.cli.tables import add_table, read_table
 
 if TYPE_CHECKING:
@@ -83,24 +83,18 @@ def run(options: argparse.Namespace) -> None:
 
 def _drawn(assessment: Assessment, options: argparse.Namespace, layout: Layout) -> str:
     """Draw, with a progress bar on the terminal, and arrange what was found."""
-    from tqdm import tqdm
-
     from knought.fitting.monte_carlo import monte_carlo
     from knought.numerics.seeds import DEFAULT_SEED
     from knought.reporting.cells import plain_lines
     from knought.reporting.uncertainty_tables import monte_carlo_table
 
     seed = DEFAULT_SEED if options.seed is None else options.seed
-    with tqdm(unit=" draws", disable=None, leave=False) as bar:
-
-        def progress(done: int) -> None:
-            bar.update(done - bar.n)
-
+    with progress_bars() as progress:
         drawn = monte_carlo(
             assessment.headline,
             options.monte_carlo or None,
             seed=seed,
-            progress=progress,
+            progress=lambda done: progress("draws", done),
         )
     table = monte_carlo_table(drawn)
     return "\n".join([table.title, *plain_lines(table, layout)])

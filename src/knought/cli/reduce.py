@@ -1,12 +1,13 @@
 """Reduce traces or slopes to a table of rate constants, ready for ``knought fit``.
 
 The sections [traces] and [medium] of the study file say what was recorded and what was in the
-solutions. Written beside each other: rates.csv with its schema, and reduction.txt, everything that
-was done and the shared errors as lines for the study file.
+solutions. Written beside each other: rates.csv with its schema; study.toml, which names the table
+and holds the errors that runs share (`knought report` takes it); reduction.txt, all that was done.
 """
 
 from __future__ import annotations
 
+import json
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -38,19 +39,28 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
 def run(options: argparse.Namespace) -> None:
     """Reduce, write, and say what was done."""
     from knought.files import whole_folder
-    from knought.measurement.writing import clean_csv
+    from knought.measurement.writing import clean_csv, table_schema
     from knought.study_sections.upstream import read_upstream
 
-    study = Path(options.study)
+    study, out = Path(options.study), Path(options.out)
     found = read_upstream(study).reduced(lambda name, _key: study.parent / name)
     text = "\n".join(_lines(found))
-    with whole_folder(Path(options.out), overwrite=options.overwrite) as folder:
-        files = {"rates.csv": clean_csv(found.rates), "reduction.txt": text + "\n"}
+    schema = json.dumps(table_schema(found.rates), indent=1, ensure_ascii=False) + "\n"
+    files = {
+        "rates.csv": clean_csv(found.rates),
+        "rates.schema.json": schema,
+        "study.toml": "\n".join(_study(found)) + "\n",
+        "reduction.txt": text + "\n",
+    }
+    with whole_folder(out, overwrite=options.overwrite) as folder:
         for name, content in files.items():
             (folder / name).write_text(content, encoding="utf-8", newline="\n")
     layout = layout_of(options)
     say(text, layout)
-    say(f"\nrates: {Path(options.out) / 'rates.csv'}", layout)
+    say(f"\nrates: {out / 'rates.csv'}", layout)
+    if found.shared_errors:
+        names = ", ".join(each.name for each in found.shared_errors)
+        say(f"study: {out / 'study.toml'}, with the errors that runs share: {names}", layout)
 
 
 def _lines(found: Reduction) -> list[str]:
@@ -59,14 +69,32 @@ def _lines(found: Reduction) -> list[str]:
         alike = [each for each in found.caveats if each.code == code]
         more = f" (and {len(alike) - 1} more runs likewise)" if len(alike) > 1 else ""
         lines.append(f"warning ({code}): {alike[0].message}{more}")
-    if found.shared_errors:
-        lines += ["", "Errors that the runs share; these lines belong into the study file:"]
+    return lines
+
+
+def _study(found: Reduction) -> list[str]:
+    """Return a study file for the table: `knought report` takes it as it is."""
+    lines = [
+        "# Written by knought reduce. A table alone does not hold the errors that runs share; this",
+        "# study does.",
+        "[rates]",
+        'file = "rates.csv"',
+    ]
     for each in found.shared_errors:
         lines += [
             "",
             "[[shared_errors]]",
-            f'name = "{each.name}"',
+            f"name = {_string(each.name)}",
             f'kind = "{each.kind}"',
-            f'u = "{100 * each.u:.3g} %"',
+            f'u = "{100 * each.u:.10g} %"',
         ]
+        for key, effects in (("on_ln_k", each.on_ln_k), ("on_ln_I", each.on_ln_I)):
+            if effects:
+                pairs = (f"{_string(run)} = {float(effect)!r}" for run, effect in effects.items())
+                lines.append(f"{key} = {{ {', '.join(pairs)} }}")
     return lines
+
+
+def _string(text: str) -> str:
+    """Return a TOML string; JSON's escapes are TOML's, too."""
+    return json.dumps(text, ensure_ascii=False).replace("\x7f", "\\u007f")

@@ -5,7 +5,14 @@ from __future__ import annotations
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from knought.cli.console import add_figures, add_format, figure_formats, layout_of, say
+from knought.cli.console import (
+    add_figures,
+    add_format,
+    figure_formats,
+    layout_of,
+    progress_bars,
+    say,
+)
 
 if TYPE_CHECKING:
     import argparse
@@ -33,12 +40,14 @@ def run(options: argparse.Namespace) -> None:
     from knought.study import run_study
 
     layout = layout_of(options)
-    report = run_study(
-        options.study,
-        options.out,
-        overwrite=options.overwrite,
-        figure_formats=figure_formats(options),
-    )
+    with progress_bars() as progress:
+        report = run_study(
+            options.study,
+            options.out,
+            overwrite=options.overwrite,
+            figure_formats=figure_formats(options),
+            progress=progress,
+        )
     say(report.summary(layout), layout)
     target = Path(options.out) / "report.html"
     say(f"\nreport: {target}", layout)

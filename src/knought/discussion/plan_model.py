@@ -161,7 +161,11 @@ class PlanModel:
         )
 
     def shared(
-        self, T: FloatArray, I: FloatArray, batch: tuple[str, ...] | None = None
+        self,
+        T: FloatArray,
+        I: FloatArray,
+        batch: tuple[str, ...] | None = None,
+        run: tuple[str, ...] | None = None,
     ) -> FloatArray:
         """Return what one u of each shared error does to ln k at conditions, ``(n, q)``.
 
@@ -171,10 +175,12 @@ class PlanModel:
             K and mol/L.
         batch
             Batch of each run. Runs to come are in none, so that an error of a batch spares them.
+        run
+            Label of each run; runs to come have none.
         """
         slope_T, slope_I = self.slopes(T, I)
         columns = [
-            each.effect(T, I, slope_T, slope_I, batch)
+            each.effect(T, I, slope_T, slope_I, batch, run)
             if each.batch is None or each.batch in (batch or ())
             else np.zeros(len(T))
             for each in self.shared_errors
@@ -186,7 +192,7 @@ class PlanModel:
         if self.found is None:
             return self.shared(T, I)
         seen = self.found.observations
-        made = self.shared(seen.T, seen.ionic_strength, seen.batch)
+        made = self.shared(seen.T, seen.ionic_strength, seen.batch, seen.run)
         return np.concatenate([made, self.shared(T, I)])
 
     def with_curvature(self, heat_capacity: float = 0.0) -> PlanModel | None:

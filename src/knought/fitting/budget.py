@@ -149,9 +149,9 @@ def _by_source(errors: RunErrors, squares: FloatArray, weights: FloatArray) -> d
     mean = weights @ squares
     n, s = errors.shared.shape
     part = errors.variances / errors.variances.sum(axis=0)
-    found = {
-        source: float(share @ mean[:n]) for source, share in zip(errors.sources, part, strict=True)
-    }
+    found: dict[str, float] = {}
+    for source, share in zip(errors.sources, part, strict=True):
+        found[source] = found.get(source, 0.0) + float(share @ mean[:n])
     for j, source in enumerate(errors.shared_sources):
         found[source] = found.get(source, 0.0) + float(mean[n + j])
     if mean.size > n + s:

@@ -71,7 +71,7 @@ def require_levels(seen: Observations, surface: Surface, *, charges_given: bool)
 
 
 def _require_water(seen: Observations, law: SaltLaw) -> None:
-    """Refuse runs outside 0-100 °C where a law needs water, each by its label.
+    """Refuse runs outside 0-100 °C where a law needs water, each by its cell or label.
 
     Raises
     ------
@@ -82,18 +82,19 @@ def _require_water(seen: Observations, law: SaltLaw) -> None:
         return
     outside = np.flatnonzero((seen.T < COLDEST - _SLACK) | (seen.T > HOTTEST + _SLACK))
     if len(outside):
-        labels = seen.run or tuple(str(i + 1) for i in range(seen.runs))
-        raise InputError(
-            [
-                Problem(
-                    f"run {labels[i]} was measured at {seen.T[i]:.2f} K, and the salt law "
-                    f"{law.name!r} needs liquid water (0-100 °C)",
-                    "check the temperature and its unit; or choose the salt law 'none'",
-                    column="T",
-                )
-                for i in outside
-            ]
-        )
+        raise InputError([_outside_water(seen, int(i), law) for i in outside])
+
+
+def _outside_water(seen: Observations, place: int, law: SaltLaw) -> Problem:
+    what = (
+        f"was measured at {seen.T[place]:.2f} K, and the salt law {law.name!r} needs liquid water "
+        "(0-100 °C)"
+    )
+    remedy = "check the temperature and its unit; or choose the salt law 'none'"
+    if seen.rates is not None:
+        return seen.rates.problem(place, "T", what, remedy)
+    label = seen.run[place] if seen.run else str(place + 1)
+    return Problem(f"run {label} {what}", remedy, column="T")
 
 
 def _require_salt_levels(seen: Observations, law: SaltLaw, *, charges_given: bool) -> None:

@@ -27,6 +27,7 @@ if TYPE_CHECKING:
     from knought.fitting.found import Found
     from knought.fitting.observations import Observations
     from knought.laws.surface import Surface
+    from knought.measurement.shared_errors import SharedError
 
 __all__ = ["condition_sampler", "has_condition_errors"]
 
@@ -63,19 +64,34 @@ def _draw_inputs(
         T += own * seen.u_T * random.standard_normal((size, n))
     if seen.has_abscissa_errors and seen.u_I is not None:
         I += own * seen.u_I * random.standard_normal((size, n))
+    for error in seen.own if seen.u_given else ():
+        each = unit_draws(error, random, size * n).reshape(size, n)
+        _add(error, own * error.u * error.reach(n, seen.batch) * each, ln_k, T, I, seen)
     for error in seen.shared:
         moved = (error.u * unit_draws(error, random, size))[:, None] * error.reach(n, seen.batch)
-        if error.kind == "temperature-offset":
-            T += moved
-        elif error.kind == "temperature-gain":
-            T += moved * (seen.T - error.calibrated_at)
-        elif error.kind == "ionic-strength-factor":
-            I += moved * seen.ionic_strength
-        else:
-            ln_k += moved
+        _add(error, moved, ln_k, T, I, seen)
     if found.surface.salt_law.needs_water:
         np.clip(T, COLDEST, HOTTEST, out=T)
     return _Inputs(ln_k, T, np.maximum(I, 0.0, out=I))
+
+
+def _add(
+    error: SharedError,
+    moved: FloatArray,
+    ln_k: FloatArray,
+    T: FloatArray,
+    I: FloatArray,
+    seen: Observations,
+) -> None:
+    """Add the draws `moved` (m, n) of an error, in its own unit, to what it moves, in place."""
+    if error.kind == "temperature-offset":
+        T += moved
+    elif error.kind == "temperature-gain":
+        T += moved * (seen.T - error.calibrated_at)
+    elif error.kind == "ionic-strength-factor":
+        I += moved * seen.ionic_strength
+    else:
+        ln_k += moved
 
 
 @dataclass(frozen=True, eq=False)

@@ -114,10 +114,29 @@ class Found:
         parts = [self.scatter.words]
         if self.observations.has_abscissa_errors:
             parts.append("with the stated errors of each run's temperature and ionic strength")
+        named = [error.name for error in self.observations.own]
+        if named and self.observations.u_given:
+            parts.append(f"with errors of each run ({', '.join(named)})")
         if self.errors.shared_sources:
             names = ", ".join(self.errors.shared_sources)
             parts.append(f"with errors that runs share ({names})")
         return ", ".join(parts)
+
+    @property
+    def excludes(self) -> str:
+        """What the standard uncertainties leave out because nothing is stated of it, a sentence."""
+        seen = self.observations
+        if any(error.kind != "factor" for error in seen.shared):
+            return ""
+        conditions = "temperature" if seen.I is None else "temperature and ionic strength"
+        if seen.has_abscissa_errors:
+            return f"Not included, as none are stated: errors of {conditions} that runs share."
+        if self.scatter.stated:
+            return f"Not included, as none are stated: errors of {conditions}."
+        return (
+            f"Random errors of {conditions} are in the scatter; not included, as none are stated: "
+            "those that runs share."
+        )
 
     @cached_property
     def parameters(self) -> Mapping[str, Estimate]:

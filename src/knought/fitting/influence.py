@@ -97,7 +97,8 @@ def influence(
 
 
 def _groups(seen: Observations) -> list[tuple[str, str, IndexArray]]:
-    groups = [("run", str(i + 1), np.array([i])) for i in range(seen.runs)]
+    names = seen.run or tuple(str(i + 1) for i in range(seen.runs))
+    groups = [("run", names[i], np.array([i])) for i in range(seen.runs)]
     for kind, values, levels, unit in (
         ("temperature", seen.T, seen.temperature_levels, "K"),
         ("ionic strength", seen.ionic_strength, seen.ionic_strength_levels, "mol/L"),
@@ -138,7 +139,14 @@ def subset(seen: Observations, kept: IndexArray) -> Observations:
         return frozen(np.asarray(values)[kept])
 
     names = ("ln_k", "u", "T", "I", "u_T", "u_I", "batch", "salt", "run")
-    return replace(seen, **{name: part(getattr(seen, name)) for name in names})  # type: ignore[arg-type]
+    rest = replace(seen, **{name: part(getattr(seen, name)) for name in names})  # type: ignore[arg-type]
+    # An error of a batch goes with the batch.
+    here = {None, *(rest.batch or ())}
+    return replace(
+        rest,
+        shared=tuple(error for error in seen.shared if error.batch in here),
+        own=tuple(error for error in seen.own if error.batch in here),
+    )
 
 
 def refit(found: Found, seen: Observations) -> Found:

@@ -216,10 +216,15 @@ def _linear_sampler(
         gains = found.headline_solution.gain[None]
         means, weights = found.distribution.means[:1], np.ones(1)
     nu = found.scatter.headline_degrees_of_freedom
+    mixed = found.observations.u_given and any(
+        error.distribution != "normal" for error in found.observations.own
+    )
     named_scatter = isinstance(found, SurfaceFit) and np.isfinite(nu)
 
     def draw(random: np.random.Generator, size: int) -> FloatArray:
         errors = random.standard_normal((size, gains.shape[-1]))
+        if mixed:
+            errors[:, :n] = _own_draws(found, random, size)
         for j, error in enumerate(shared):
             errors[:, n + j] = unit_draws(error, random, size)
         if named_scatter:
@@ -236,6 +241,17 @@ def _linear_sampler(
         return theta
 
     return draw
+
+
+def _own_draws(found: OpenFit | SurfaceFit, random: np.random.Generator, size: int) -> FloatArray:
+    """Draw each run's own errors in units of their joint u, each from its own distribution."""
+    seen, errors = found.observations, found.errors
+    share = np.sqrt(errors.variances / errors.variances.sum(axis=0))
+    plain = len(errors.sources) - len(seen.own)
+    drawn = np.einsum("sn,smn->mn", share[:plain], random.standard_normal((plain, size, seen.runs)))
+    for error, part in zip(seen.own, share[plain:], strict=True):
+        drawn += part * unit_draws(error, random, size * seen.runs).reshape(size, seen.runs)
+    return np.asarray(drawn)
 
 
 class _Stability:

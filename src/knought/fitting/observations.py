@@ -49,8 +49,12 @@ class Observations:
         Batch and salt of each run, where the table has them.
     shared
         Errors that several runs share.
+    own
+        Named errors that each run has of its own, beside u, u_T and u_I.
     run
         Labels of the runs, for messages.
+    rates
+        The table that the runs come from, for messages; None where there is none.
     """
 
     ln_k: FloatArray
@@ -65,6 +69,8 @@ class Observations:
     salt: tuple[str, ...] | None = None
     shared: tuple[SharedError, ...] = ()
     run: tuple[str, ...] | None = None
+    own: tuple[SharedError, ...] = ()
+    rates: RateTable | None = None
 
     @property
     def runs(self) -> int:
@@ -90,8 +96,9 @@ class Observations:
 
     @property
     def has_abscissa_errors(self) -> bool:
-        """Whether u(T) or u(I) are given and count: beside a stated u(k) only."""
-        return self.u_given and (self.u_T is not None or self.u_I is not None)
+        """Whether errors of each run's T or I are given and count: beside a stated u(k) only."""
+        named = any(error.kind != "factor" for error in self.own)
+        return self.u_given and (self.u_T is not None or self.u_I is not None or named)
 
 
 def observe(rates: RateTable, shared_errors: Sequence[SharedError] = ()) -> Observations:
@@ -104,7 +111,7 @@ def observe(rates: RateTable, shared_errors: Sequence[SharedError] = ()) -> Obse
     rates
         The table.
     shared_errors
-        Errors that several runs share.
+        Named errors, those that several runs share and those that each run has of its own.
 
     Raises
     ------
@@ -131,8 +138,10 @@ def observe(rates: RateTable, shared_errors: Sequence[SharedError] = ()) -> Obse
         order=used.order,
         batch=used.batch,
         salt=used.salt,
-        shared=tuple(shared_errors),
+        shared=tuple(error for error in shared_errors if not error.each_run),
         run=used.run,
+        own=tuple(error for error in shared_errors if error.each_run),
+        rates=used,
     )
 
 

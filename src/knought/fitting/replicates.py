@@ -14,12 +14,14 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
+from knought.numerics.least_squares import solve
 from knought.numerics.quantiles import chi_square_survival
 
 if TYPE_CHECKING:
-    from knought.arrays import FloatArray, IndexArray
+    from knought.arrays import IndexArray
     from knought.fitting.found import Found
     from knought.fitting.observations import Observations
+    from knought.fitting.run_errors import RunErrors
 
 __all__ = ["Replicates", "replicate_groups", "replicates"]
 
@@ -114,11 +116,13 @@ def replicates(found: Found) -> Replicates | None:
     groups = replicate_groups(seen)
     if not groups:
         return None
-    u, y = found.errors.u, seen.ln_k
-    pure = sum(_about_mean(y[g], u[g]) for g in groups)
+    errors = found.errors
+    u = errors.u
+    pure = _pure_error(seen, groups, errors)
     nu = sum(len(g) - 1 for g in groups)
-    # χ² of all runs about the fit is that of replicates about their means plus that of the means.
-    total = float(np.sum((found.residuals / u) ** 2))
+    # χ² of all runs about the fit is that of replicates about their means plus that of the means;
+    # both with the errors that runs share, so that a batch that is off does not look like misfit.
+    total = found.scatter.chi_square
     # The open law's β is known from its prior as much as from the runs.
     names = set(found.distribution.names)
     if found.salt_law == "open":
@@ -140,7 +144,10 @@ def replicates(found: Found) -> Replicates | None:
     )
 
 
-def _about_mean(y: FloatArray, u: FloatArray) -> float:
-    weight = u**-2.0
-    mean = float(weight @ y / weight.sum())
-    return float(weight @ (y - mean) ** 2)
+def _pure_error(seen: Observations, groups: list[IndexArray], errors: RunErrors) -> float:
+    """Return the generalised χ² of the runs about a mean of their own for every condition."""
+    lone = np.setdiff1d(np.arange(seen.runs), np.concatenate(groups))
+    means = np.zeros((seen.runs, len(groups) + len(lone)))
+    for j, members in enumerate([*groups, *lone]):
+        means[members, j] = 1.0
+    return solve(means, seen.ln_k + errors.shift, errors.u, shared=errors.shared).chi_square

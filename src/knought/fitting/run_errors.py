@@ -99,23 +99,32 @@ def run_errors(
     slope_T = np.zeros(n) if slope_T is None else slope_T
     slope_I = np.zeros(n) if slope_I is None else np.where(np.isfinite(slope_I), slope_I, 0.0)
     residual = np.zeros(n) if residual is None else residual
-    u_T, u_I = np.zeros(n), np.zeros(n)
     sources, variances = [REPEATABILITY], [seen.u**2]
+    square_T, square_I = np.zeros(n), np.zeros(n)
     if seen.u_given and seen.u_T is not None:
-        u_T = seen.u_T
+        square_T += seen.u_T**2
         sources.append(_TEMPERATURES)
-        variances.append((slope_T * u_T) ** 2)
+        variances.append((slope_T * seen.u_T) ** 2)
     if seen.u_given and seen.u_I is not None:
-        u_I = seen.u_I
+        square_I += seen.u_I**2
         sources.append(_STRENGTHS)
-        variances.append((slope_I * u_I) ** 2)
+        variances.append((slope_I * seen.u_I) ** 2)
+    for error in seen.own if seen.u_given else ():
+        effect = error.effect(seen.T, seen.ionic_strength, slope_T, slope_I, seen.batch, seen.run)
+        sources.append(error.name)
+        variances.append(effect**2)
+        reached = (error.u * error.reach(n, seen.batch)) ** 2
+        if error.kind == "temperature-offset":
+            square_T += reached
+        elif error.kind == "ionic-strength-factor":
+            square_I += reached * seen.ionic_strength**2
     effects = [
-        error.effect(seen.T, seen.ionic_strength, slope_T, slope_I, seen.batch)
+        error.effect(seen.T, seen.ionic_strength, slope_T, slope_I, seen.batch, seen.run)
         for error in seen.shared
     ]
     part = residual / np.sum(variances, axis=0)
-    in_T = slope_T * u_T**2 * part
-    in_I = np.maximum(slope_I * u_I**2 * part, -seen.ionic_strength)
+    in_T = slope_T * square_T * part
+    in_I = np.maximum(slope_I * square_I * part, -seen.ionic_strength)
     return RunErrors(
         tuple(sources),
         frozen(np.stack(variances)),

@@ -243,9 +243,10 @@ def _replicate_verdict(repeated: Replicates | None) -> list[Caveat]:
 def _outlier_verdict(headline: Found, diagnostics: Diagnostics) -> list[Caveat]:
     if not diagnostics.outliers:
         return []
+    seen = headline.observations
+    labels = seen.run or tuple(str(i + 1) for i in range(seen.runs))
     listed = ", ".join(
-        f"run {i + 1} of those used ({diagnostics.studentised[i]:+.1f} u at "
-        f"{headline.observations.T[i]:.2f} K)"
+        f"run {labels[i]} ({diagnostics.studentised[i]:+.1f} u at {seen.T[i]:.2f} K)"
         for i in diagnostics.outliers[:5]
     )
     return [

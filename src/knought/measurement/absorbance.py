@@ -36,7 +36,9 @@ class Rate:
     shares
         Share of the product in each of its forms; empty where it has one form.
     by_constant
-        What one standard uncertainty of each equilibrium constant does to ln(rate), by reaction.
+        What one standard uncertainty of each equilibrium constant and ΔH does to ln(rate), by name.
+    by_ligand
+        ∂ln(rate)/∂ln[ligand], by ligand.
     """
 
     value: float
@@ -44,6 +46,7 @@ class Rate:
     absorptivity: float
     shares: Mapping[str, float]
     by_constant: Mapping[str, float]
+    by_ligand: Mapping[str, float]
 
 
 @dataclass(frozen=True, eq=False)
@@ -92,6 +95,16 @@ class Optics:
         if not (0 <= self.u_absorptivity < 1 and 0 <= self.u_path_length < 1):
             raise InputError("a relative uncertainty cannot be", "2 % is 0.02")
 
+    def line(self) -> str:
+        """Say in a line how a slope becomes a rate."""
+        number = self.stoichiometric_number
+        over = "l ε" if number == 1 else f"ν l ε with ν = {number:g}"
+        what = f"ε = {self.absorptivity:g} L mol^-1 cm^-1" if self.absorptivity else ""
+        if self.product is not None:
+            forms = "; ".join(each.reaction for each in self.product.equilibria)
+            what = f"ε that of {self.product.product} in all its forms ({forms}), run by run"
+        return f"rate = slope / ({over}), l = {self.path_length:g} cm, {what}"
+
     def rate(
         self,
         slope: float,
@@ -119,6 +132,7 @@ class Optics:
         """
         shares: Mapping[str, float] = {}
         by_constant: Mapping[str, float] = {}
+        by_ligand: Mapping[str, float] = {}
         if self.product is None:
             epsilon = self.absorptivity or 0.0
         else:
@@ -126,9 +140,15 @@ class Optics:
             epsilon, shares = found.value, found.shares
             # A larger ε_eff means a smaller rate.
             by_constant = {name: -change for name, change in found.by_constant.items()}
+            by_ligand = {name: -change for name, change in found.by_ligand.items()}
         factor = 1.0 / (epsilon * self.path_length * self.stoichiometric_number)
         return Rate(
-            slope * factor, standard_uncertainty * abs(factor), epsilon, shares, by_constant
+            slope * factor,
+            standard_uncertainty * abs(factor),
+            epsilon,
+            shares,
+            by_constant,
+            by_ligand,
         )
 
     def shared_errors(self) -> tuple[SharedError, ...]:

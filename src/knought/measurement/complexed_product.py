@@ -44,12 +44,17 @@ class EffectiveAbsorptivity:
     shares
         Share of the product in each form, by formula; the free one among them.
     by_constant
-        What one standard uncertainty of each equilibrium constant does to ln ε_eff, by reaction.
+        What one standard uncertainty of each equilibrium constant and of each ΔH does to ln ε_eff,
+        by ``"K of ..."`` and ``"ΔH of ..."``. They are two sources: an error of ΔH changes its
+        sign at the constant's reference temperature.
+    by_ligand
+        ∂ln ε_eff/∂ln[ligand], by ligand.
     """
 
     value: float
     shares: Mapping[str, float]
     by_constant: Mapping[str, float]
+    by_ligand: Mapping[str, float]
 
 
 @dataclass(frozen=True, eq=False)
@@ -164,15 +169,19 @@ class ComplexedProduct:
             binding[self._bound(each)] = math.exp(strength)
         whole = sum(binding.values())
         value = sum(epsilon.get(s, 0.0) * b for s, b in binding.items()) / whole
-        by_constant = {}
+        by_constant: dict[str, float] = {}
+        by_ligand = {species.ascii: 0.0 for species in self.ligands}
         for each in self.equilibria:
             bound = self._bound(each)
             share = binding[bound] / whole
             # ∂ln ε_eff/∂ln K = x (ε - ε_eff)/ε_eff.
             slope = share * (epsilon.get(bound, 0.0) - value) / value
-            by_constant[each.reaction] = slope * each.u_ln_K(T)
+            by_constant |= {name: slope * u for name, u in each.effects_on_ln_K(T).items()}
+            for species, number in each.stoichiometry.items():
+                if number < 0 and species != product:
+                    by_ligand[species.ascii] -= number * slope
         shares = {s.ascii: b / whole for s, b in binding.items()}
-        return EffectiveAbsorptivity(value, shares, by_constant)
+        return EffectiveAbsorptivity(value, shares, by_constant, by_ligand)
 
     def excess_caveat(self, ligands: Mapping[str, float], product: float) -> tuple[Caveat, ...]:
         """Warn where a ligand is not in excess over the product that will have formed.

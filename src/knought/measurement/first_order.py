@@ -117,6 +117,8 @@ class FirstOrder:
         √(RSS/ν), in the unit of the signal.
     points
         Points used.
+    window
+        First and last time used.
     degrees_of_freedom
         Of the Student t distributions.
     half_lives
@@ -139,6 +141,7 @@ class FirstOrder:
     u_final_level: float
     residual_deviation: float
     points: int
+    window: tuple[float, float]
     degrees_of_freedom: int
     half_lives: float
     correlation_share: float
@@ -164,6 +167,7 @@ def first_orders(
     *,
     final: float | None = None,
     dead_time: float | None = None,
+    window: float | None = None,
     drift: bool = False,
 ) -> FirstOrders:
     """Return k of m records on the same times.
@@ -178,6 +182,8 @@ def first_orders(
         A level that is known: at t = 0, or at the end. At most one.
     dead_time
         Points before it are left out.
+    window
+        Points after it are left out.
     drift
         Whether to fit a linear drift of the instrument as well.
 
@@ -187,7 +193,7 @@ def first_orders(
         If times or signals cannot be, both levels are given, too few points are left, or a trace
         does not bend.
     """
-    t, y = checked_trace(time, signals, dead_time)
+    t, y = checked_trace(time, signals, dead_time, window)
     if initial is not None and final is not None:
         raise InputError(
             "both levels of a first-order trace are given",
@@ -253,6 +259,7 @@ def first_order(
     *,
     final: float | None = None,
     dead_time: float | None = None,
+    window: float | None = None,
     drift: bool = False,
 ) -> FirstOrder:
     """Return the first-order rate constant of a trace; no starting value is needed.
@@ -269,6 +276,8 @@ def first_order(
         The level at the end, where it is known instead.
     dead_time
         Points before it are left out.
+    window
+        Points after it are left out.
     drift
         Whether to fit a linear drift of the instrument as well.
 
@@ -283,8 +292,10 @@ def first_order(
         does not bend.
     """
     signal = np.asarray(signal, dtype=float)
-    found = first_orders(time, signal[None], initial, final=final, dead_time=dead_time, drift=drift)
-    t, y = checked_trace(time, signal[None], dead_time)
+    found = first_orders(
+        time, signal[None], initial, final=final, dead_time=dead_time, window=window, drift=drift
+    )
+    t, y = checked_trace(time, signal[None], dead_time, window)
     k, levels = float(found.rate_constants[0]), found.levels[0]
     model = SingleExponential(initial, final, drift)
     residual = residuals(model, t, model.data(y), np.array([k]))[0]
@@ -317,6 +328,7 @@ def first_order(
         u_final_level=ends[3],
         residual_deviation=float(found.residual_deviation[0]),
         points=len(t),
+        window=(float(t[0]), float(t[-1])),
         degrees_of_freedom=found.degrees_of_freedom,
         half_lives=float(half_lives),
         correlation_share=float(found.correlation_share[0]),

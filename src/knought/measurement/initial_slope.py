@@ -57,6 +57,8 @@ class InitialSlope:
         Of the Student t distributions.
     curvature
         Second derivative at t = 0.
+    level
+        Signal at t = 0 of the polynomial, with independent noise.
     conversion
         Share of the total change that falls into the window: of `total_change` where it was
         given, else estimated from how much the slope falls (exact for a first-order course).
@@ -75,6 +77,7 @@ class InitialSlope:
     points: int
     degrees_of_freedom: int
     curvature: float
+    level: float
     conversion: float
     correlation_share: float
     correlation_time: float
@@ -143,8 +146,8 @@ def initial_slope(
         int(found.degrees_of_freedom[0]),
     )
     conversion = 1.0 - float(found.end_ratio[0])
+    fitted = np.polynomial.Polynomial.fit(t, y[0], int(found.order[0]))
     if total_change:
-        fitted = np.polynomial.Polynomial.fit(t, y[0], int(found.order[0]))
         conversion = float(fitted(t[-1]) - fitted(0.0)) / total_change
     return InitialSlope(
         value=float(distribution.mean),
@@ -156,6 +159,7 @@ def initial_slope(
         points=int(found.points[0]),
         degrees_of_freedom=int(found.degrees_of_freedom[0]),
         curvature=float(found.curvature[0]),
+        level=float(fitted(0.0)),
         conversion=conversion,
         correlation_share=float(found.correlation_share[0]),
         correlation_time=float(found.correlation_time[0]),

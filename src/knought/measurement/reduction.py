@@ -11,70 +11,29 @@ Errors that runs share (ε, l, stocks, equilibrium constants) are kept out of u(
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 from fractions import Fraction
-from typing import TYPE_CHECKING, Literal
+from typing import TYPE_CHECKING
 
 import numpy as np
 
-from knought.chemistry.recipe_salts import dissociated
-from knought.chemistry.species import parse_species
 from knought.errors import Caveat, InputError, Problem
-from knought.measurement.first_order import first_order
-from knought.measurement.initial_slope import initial_slope
-from knought.measurement.reduction_errors import shared_errors_of
+from knought.measurement.reduction_amounts import Amount, amount_of
+from knought.measurement.reduction_errors import errors_of
+from knought.measurement.reduction_run import ReducedRun, reduce_run
 from knought.measurement.table import RateTable
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
 
-    from knought.arrays import FloatArray
-    from knought.chemistry.medium import Medium
+    from knought.arrays import BoolArray, FloatArray
     from knought.chemistry.medium_series import MediumSeries
-    from knought.measurement.absorbance import Optics
+    from knought.measurement.reduction_method import Method
     from knought.measurement.runs_reading import Runs
     from knought.measurement.shared_errors import SharedError
     from knought.measurement.traces import Trace
 
-__all__ = ["Kind", "Method", "Reduction", "reduce_traces"]
-
-Kind = Literal["first-order", "initial-slope", "slopes"]
-
-
-@dataclass(frozen=True, eq=False)
-class Method:
-    """How traces become rate constants.
-
-    Parameters
-    ----------
-    kind
-        ``"first-order"``, ``"initial-slope"`` or ``"slopes"``.
-    orders
-        Partial orders by substance. For ``"first-order"`` those of reactants in excess, by whose
-        concentration k_obs is divided.
-    initial
-        Known level at t = 0 of first-order traces.
-    dead_time, window
-        First and last time to use, s.
-    polynomial
-        Order of the polynomial for initial slopes.
-    drift
-        Whether first-order traces drift.
-    optics
-        What makes a slope a rate; needed for slopes.
-    stocks
-        Relative standard uncertainty of the concentration of each substance, by substance.
-    """
-
-    kind: Kind
-    orders: Mapping[str, Fraction] = field(default_factory=dict)
-    initial: float | None = None
-    dead_time: float = 0.0
-    window: float | None = None
-    polynomial: int | None = None
-    drift: bool = False
-    optics: Optics | None = None
-    stocks: Mapping[str, float] = field(default_factory=dict)
+__all__ = ["Reduction", "reduce_traces"]
 
 
 @dataclass(frozen=True, eq=False)
@@ -91,23 +50,27 @@ class Reduction:
         What was done, a line each.
     caveats
         What a reader must know, each with the run in front.
+    method
+        How it was done.
+    runs
+        What each run gave, in the order of the table.
+    traces
+        The traces, by run.
+    notes
+        Lines of the account that belong to no single run.
+    u_volume
+        Largest relative standard uncertainty of the volumes of the recipes.
     """
 
     rates: RateTable
     shared_errors: tuple[SharedError, ...]
     account: tuple[str, ...]
     caveats: tuple[Caveat, ...]
-
-
-@dataclass(frozen=True)
-class _Found:
-    """What one run gave."""
-
-    value: float
-    u: float
-    line: str
-    caveats: tuple[Caveat, ...] = ()
-    by_constant: Mapping[str, float] = field(default_factory=dict)
+    method: Method
+    runs: tuple[ReducedRun, ...]
+    traces: Mapping[str, Trace]
+    notes: tuple[str, ...]
+    u_volume: float = 0.0
 
 
 def reduce_traces(
@@ -127,7 +90,8 @@ def reduce_traces(
     method
         How.
     media
-        Media of the runs, in their order; they give the ionic strength where the runs do not.
+        Media of the runs, in their order; they give the ionic strength where the runs do not, and
+        concentrations of reactants without a column.
 
     Returns
     -------
@@ -139,15 +103,78 @@ def reduce_traces(
         If a trace, concentration or setting is missing, or a trace cannot be reduced; every run
         that cannot is told.
     """
-    _check(runs, traces, method)
-    divisor, order = _divisor(runs, method)
-    found: list[_Found] = []
-    problems: list[Problem] = []
+    amounts = _checked(runs, traces, method, media)
+    divisor, order = _divisor(len(runs.run), amounts, method)
     I = runs.I if runs.I is not None else (None if media is None else media.ionic_strength)
+    found = _all_runs(runs, traces, method, media, I)
+    errors = errors_of(runs, method, media, amounts, found)
+    words = runs.words
+    k = np.array([each.value for each in found]) / divisor
+    beside = np.hypot(errors.own, method.repeatability)
+    u_k = np.hypot(np.array([each.u for each in found]) / divisor, k * beside)
+    rates = RateTable(
+        k=k,
+        T=runs.T,
+        order=order,
+        I=I,
+        u_k=u_k,
+        u_I=errors.u_I,
+        run=runs.run,
+        salt=words.get("salt"),
+        batch=words.get("batch"),
+        used=_used(runs),
+        reason=words.get("reason", ()),
+        note=words.get("note", ()),
+        concentrations={
+            **runs.concentrations,
+            **{name: each.values for name, each in amounts.items()},
+        },
+    )
+    done = (*method.lines(order), *_medium_lines(runs, media))
+    notes = (*done, *errors.lines)
+    account = (
+        *done,
+        *(f"run {each.run}: {each.line}" for each in found),
+        *errors.lines,
+    )
+    caveats = tuple(
+        Caveat(each.code, f"Run {one.run}: {each.message}") for one in found for each in one.caveats
+    )
+    recipes = () if media is None else media.recipes
+    return Reduction(
+        rates,
+        errors.shared,
+        account,
+        caveats,
+        method,
+        tuple(found),
+        dict(traces),
+        notes,
+        max((recipe.u_volume for recipe in recipes), default=0.0),
+    )
+
+
+def _all_runs(
+    runs: Runs,
+    traces: Mapping[str, Trace],
+    method: Method,
+    media: MediumSeries | None,
+    I: FloatArray | None,
+) -> list[ReducedRun]:
+    """Reduce every run.
+
+    Raises
+    ------
+    InputError
+        Listing every run that cannot be.
+    """
+    found: list[ReducedRun] = []
+    problems: list[Problem] = []
     for i, run in enumerate(runs.run):
         medium = None if media is None else media.media[i]
         try:
-            found.append(_one(runs, i, traces.get(run), method, medium, I))
+            strength = 0.0 if I is None else float(I[i])
+            found.append(reduce_run(runs, i, traces.get(run), method, medium, strength))
         except InputError as error:
             problems += [
                 Problem(f"run {run}: {each.what}", each.remedy, read=each.read)
@@ -155,51 +182,45 @@ def reduce_traces(
             ]
     if problems:
         raise InputError(problems)
-    shared, u_I, lines = shared_errors_of(runs, method, media, [each.by_constant for each in found])
-    words = runs.words
-    rates = RateTable(
-        k=np.array([each.value for each in found]) / divisor,
-        T=runs.T,
-        order=order,
-        I=I,
-        u_k=np.array([each.u for each in found]) / divisor,
-        u_I=u_I,
-        run=runs.run,
-        salt=words.get("salt"),
-        batch=words.get("batch"),
-        used=np.array([text.lower() not in {"no", "n", "false", "0"} for text in words["use"]])
-        if "use" in words
-        else np.ones(len(runs.run), dtype=bool),
-        reason=words.get("reason", ()),
-        note=words.get("note", ()),
-        concentrations=runs.concentrations,
-    )
-    account = (
-        _method_line(method, order),
-        *(f"run {run}: {each.line}" for run, each in zip(runs.run, found, strict=True)),
-        *lines,
-    )
-    caveats = tuple(
-        Caveat(each.code, f"Run {run}: {each.message}")
-        for run, one in zip(runs.run, found, strict=True)
-        for each in one.caveats
-    )
-    return Reduction(rates, shared, account, caveats)
+    return found
 
 
-def _check(runs: Runs, traces: Mapping[str, Trace], method: Method) -> None:
-    """Refuse what lacks a trace, slope, optics or concentration.
+def _medium_lines(runs: Runs, media: MediumSeries | None) -> list[str]:
+    """Say where the ionic strength is from, where it is not from the table of runs."""
+    if media is None or runs.I is not None:
+        return []
+    laws = dict.fromkeys(medium.form.words for medium in media.media)
+    low, high = (float(end) for end in (media.ionic_strength.min(), media.ionic_strength.max()))
+    return [
+        f"I = ½ Σ c z² from the composition of each run, {low:.3g} to {high:.3g} mol/L, every ion "
+        f"counted; equilibria at the run's temperature with {', '.join(laws)}"
+    ]
+
+
+def _used(runs: Runs) -> BoolArray:
+    """Return which runs count."""
+    if "use" not in runs.words:
+        return np.ones(len(runs.run), dtype=bool)
+    return np.array([text.lower() not in {"no", "n", "false", "0"} for text in runs.words["use"]])
+
+
+def _checked(
+    runs: Runs, traces: Mapping[str, Trace], method: Method, media: MediumSeries | None
+) -> dict[str, Amount]:
+    """Return the concentrations of what the orders name; refuse what lacks anything.
 
     Raises
     ------
     InputError
-        Listing all of it.
+        Listing all of it: no trace, slope, optics or concentration.
     """
-    problems = [
-        Problem(f"there is no column c({name})", "orders name columns of the table of runs")
-        for name in method.orders
-        if name not in runs.concentrations
-    ]
+    amounts: dict[str, Amount] = {}
+    problems: list[Problem] = []
+    for name in method.orders:
+        try:
+            amounts[name] = amount_of(name, runs, media)
+        except InputError as error:
+            problems += error.problems
     if method.kind == "slopes":
         if runs.slopes is None or runs.u_slopes is None:
             problems.append(
@@ -220,127 +241,15 @@ def _check(runs: Runs, traces: Mapping[str, Trace], method: Method) -> None:
         )
     if problems:
         raise InputError(problems)
+    return amounts
 
 
-def _divisor(runs: Runs, method: Method) -> tuple[FloatArray, Fraction]:
+def _divisor(
+    runs: int, amounts: Mapping[str, Amount], method: Method
+) -> tuple[FloatArray, Fraction]:
     """Return Π cⁿ of each run, and the overall order."""
-    product = np.ones(len(runs.run))
+    product = np.ones(runs)
     for name, n in method.orders.items():
-        product = product * runs.concentrations[name] ** float(n)
+        product = product * amounts[name].values ** float(n)
     order = sum(method.orders.values(), Fraction(0))
     return product, order + 1 if method.kind == "first-order" else order
-
-
-def _one(
-    runs: Runs,
-    i: int,
-    trace: Trace | None,
-    method: Method,
-    medium: Medium | None,
-    I: FloatArray | None,
-) -> _Found:
-    """Reduce one run.
-
-    Raises
-    ------
-    InputError
-        If it has neither a trace nor a slope, or cannot be reduced.
-    """
-    if method.kind == "first-order" and trace is not None:
-        k = first_order(
-            trace.time,
-            trace.signal,
-            method.initial,
-            dead_time=method.dead_time,
-            drift=method.drift,
-        )
-        line = (
-            f"k_obs = {k.value:.5g} s^-1, u = {k.standard_uncertainty:.2g} (independent noise: "
-            f"{k.naive_uncertainty:.2g}), {k.points} points, {k.half_lives:.1f} half-lives, levels "
-            f"{k.initial_level:.4g} to {k.final_level:.4g}"
-        )
-        return _Found(k.value, k.standard_uncertainty, line, k.caveats)
-    if trace is not None and method.kind == "initial-slope":
-        slope = initial_slope(
-            trace.time,
-            trace.signal,
-            dead_time=method.dead_time,
-            window=method.window,
-            order=method.polynomial,
-        )
-        value, u, caveats = slope.value, slope.standard_uncertainty, slope.caveats
-        words = (
-            f"slope = {value:.5g} s^-1, u = {u:.2g} (independent noise: "
-            f"{slope.naive_uncertainty:.2g}), order {slope.order}, {slope.points} points to "
-            f"{slope.window[1]:.4g} s, conversion {100 * slope.conversion:.0f} %"
-        )
-    elif runs.slopes is not None and runs.u_slopes is not None:
-        value, u, caveats = float(runs.slopes[i]), float(runs.u_slopes[i]), ()
-        words = f"slope = {value:.5g} s^-1, u = {u:.2g}, as given"
-    else:
-        raise InputError("there is neither a trace nor a slope", "give one of them")
-    return _rate(runs, i, method, medium, I, (value, u, words, caveats))
-
-
-def _rate(
-    runs: Runs,
-    i: int,
-    method: Method,
-    medium: Medium | None,
-    I: FloatArray | None,
-    slope: tuple[float, float, str, tuple[Caveat, ...]],
-) -> _Found:
-    """Turn a slope into a rate.
-
-    Raises
-    ------
-    InputError
-        If optics or a ligand are missing.
-    """
-    value, u, words, caveats = slope
-    optics = method.optics
-    if optics is None:
-        raise InputError("optics are missing", "give [traces.optics]")
-    ligands = {}
-    if optics.product is not None:
-        for ligand in optics.product.ligands:
-            ligands[ligand.ascii] = _ligand(runs, i, medium, ligand.ascii)
-    rate = optics.rate(
-        value, u, T=float(runs.T[i]), I=0.0 if I is None else float(I[i]), ligands=ligands
-    )
-    bound = ", ".join(f"{100 * share:.1f} % {name}" for name, share in rate.shares.items())
-    line = f"{words}; rate = {rate.value:.5g} mol L^-1 s^-1" + (f" ({bound})" if bound else "")
-    return _Found(rate.value, rate.standard_uncertainty, line, caveats, rate.by_constant)
-
-
-def _ligand(runs: Runs, i: int, medium: Medium | None, formula: str) -> float:
-    """Return the free concentration of a ligand: of the medium, or of its own column.
-
-    Raises
-    ------
-    InputError
-        If neither knows it.
-    """
-    if medium is not None and medium[formula] > 0:
-        return medium[formula]
-    wanted = parse_species(formula)
-    for name, values in runs.concentrations.items():
-        parts = dissociated(name)
-        if wanted in parts:
-            return float(values[i]) * parts[wanted]
-    raise InputError(
-        f"the concentration of {formula}, which binds the product, is not known",
-        f"add a column with a substance that gives {formula}, or a medium",
-    )
-
-
-def _method_line(method: Method, order: Fraction) -> str:
-    orders = ", ".join(f"{n} in {name}" for name, n in method.orders.items())
-    window = f", dead time {method.dead_time:g} s" if method.dead_time else ""
-    roads = {
-        "first-order": "single exponential to each trace"
-        + (f"; k = k_obs over the reactants in excess ({orders})" if orders else ""),
-        "initial-slope": f"slope of each trace at t = 0; k = rate over the orders ({orders})",
-        "slopes": f"slopes as given; k = rate over the orders ({orders})",
-    }
-    return f"{roads[method.kind]}; overall order {order}{window}"

@@ -1,15 +1,16 @@
 """The table of runs beside traces: what each run was, before there is a k.
 
 Columns are those of a rate table without k (``run``, ``T/K`` or ``t/°C``, ``I/(mol/L)``,
-``c(KI)/(mmol/L)``, ``salt``, ``batch``, ``use``, ``reason``, ``note``), and two of its own:
-``trace`` (file of the run's own trace, beside the table) and, for slopes read off already,
-``slope/s^-1`` with ``u(slope)/s^-1``.
+``c(KI)/(mmol/L)``, ``salt``, ``batch``, ``use``, ``reason``, ``note``), and its own: ``trace``
+(file of the run's own trace, beside the table), for slopes read off already ``slope/s^-1`` with
+``u(slope)/s^-1``, and what was pipetted, ``V(salt stock)/mL`` for each stock that [medium] names,
+``V(water)/mL`` and ``V(total)/mL`` where a run was made up to a mark.
 """
 
 from __future__ import annotations
 
 import re
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -27,6 +28,7 @@ if TYPE_CHECKING:
 __all__ = ["Runs", "read_runs"]
 
 _OWN = re.compile(r"(?P<what>trace|file|slope|u\(slope\))\s*(?:/\s*(?P<unit>.+))?", re.IGNORECASE)
+_VOLUME = re.compile(r"V\((?P<stock>.+)\)\s*/\s*(?P<unit>.+)")
 _WORDS = ("run", "salt", "batch", "use", "reason", "note")
 _UNITS = {"T": "K", "I": "mol L^-1", "c": "mol L^-1"}
 
@@ -49,6 +51,8 @@ class Runs:
         ``salt``, ``batch``, ``use``, ``reason``, ``note`` and ``trace``, where they are there.
     slopes, u_slopes : (n,) ndarray or None
         s^-1.
+    volumes
+        L by stock, each ``(n,)``; ``water`` and ``total`` among them.
     """
 
     run: tuple[str, ...]
@@ -58,6 +62,7 @@ class Runs:
     words: Mapping[str, tuple[str, ...]]
     slopes: FloatArray | None = None
     u_slopes: FloatArray | None = None
+    volumes: Mapping[str, FloatArray] = field(default_factory=dict)
 
 
 def read_runs(path: str | Path, sheet: str | int | None = None) -> Runs:
@@ -79,10 +84,16 @@ def read_runs(path: str | Path, sheet: str | int | None = None) -> Runs:
     words: dict[str, tuple[str, ...]] = {}
     numbers: dict[str, FloatArray] = {}
     concentrations: dict[str, FloatArray] = {}
+    volumes: dict[str, FloatArray] = {}
     problems: list[Problem] = []
     for place, title in enumerate(cells.titles):
         texts = [row[place] if place < len(row) else "" for _, row in cells.rows]
         try:
+            pipetted = _VOLUME.fullmatch(title)
+            if pipetted:
+                factors = (parse_unit(pipetted["unit"]), parse_unit("L"), 1.0)
+                volumes[pipetted["stock"].strip()] = _numbers(cells, title, texts, factors)
+                continue
             kind, header = _kind(cells, title)
             if kind in {*_WORDS, "trace"}:
                 words[kind] = tuple(texts)
@@ -113,6 +124,7 @@ def read_runs(path: str | Path, sheet: str | int | None = None) -> Runs:
         words,
         numbers.get("slope"),
         numbers.get("u(slope)"),
+        volumes,
     )
 
 
@@ -140,8 +152,8 @@ def _kind(cells: Cells, title: str) -> tuple[str, Header | None]:
     raise InputError(
         Problem(
             "is no column of a table of runs",
-            "known are run, T/K, I/(mol/L), c(X)/(mol/L), salt, batch, use, reason, note, trace, "
-            "slope/s^-1",
+            "known are run, T/K, I/(mol/L), c(X)/(mol/L), V(stock)/mL, salt, batch, use, reason, "
+            "note, trace, slope/s^-1",
             read=title,
             file=cells.name,
         )

@@ -13,10 +13,10 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
-from knought.arrays import BoolArray, FloatArray, frozen
+from knought.arrays import BoolArray, FloatArray, IndexArray, frozen
 from knought.chemistry.quantities import rate_constant_unit
 from knought.chemistry.units import parse_unit, reaction_order, scaled
-from knought.errors import InputError
+from knought.errors import InputError, Problem
 from knought.measurement.table_checks import problems_of
 
 if TYPE_CHECKING:
@@ -43,11 +43,25 @@ class Source:
         Hash of its bytes.
     sheet
         Sheet of a workbook.
+    headers
+        Header of the column that each quantity was read from, by sign (``"T"``, ``"k"``, ``"I"``).
     """
 
     name: str
     sha256: str
     sheet: str | None = None
+    headers: Mapping[str, str] = field(default_factory=dict)
+
+    def problem(self, what: str, remedy: str, sign: str, row: int | None) -> Problem:
+        """Return a problem that names file, sheet, row and the column of a quantity."""
+        return Problem(
+            what,
+            remedy,
+            file=self.name,
+            sheet=self.sheet,
+            row=row,
+            column=self.headers.get(sign, sign),
+        )
 
 
 @dataclass(frozen=True, eq=False)
@@ -84,6 +98,8 @@ class RateTable:
         Concentrations in mol/L by species, each ``(n,)``.
     source
         Where the table was read from.
+    rows : (n,) array_like of int, optional
+        Row of the source that each run was read from, as a spreadsheet shows it.
     account
         What was understood on reading, a line each.
 
@@ -109,6 +125,7 @@ class RateTable:
     note: tuple[str, ...] = ()
     concentrations: Mapping[str, FloatArray] = field(default_factory=dict)
     source: Source | None = None
+    rows: IndexArray | None = None
     account: tuple[object, ...] = ()
 
     def __post_init__(self) -> None:
@@ -117,6 +134,10 @@ class RateTable:
             values = getattr(self, name)
             if values is not None:
                 object.__setattr__(self, name, frozen(values))
+        if self.rows is not None:
+            rows = np.array(self.rows, dtype=np.intp)
+            rows.setflags(write=False)
+            object.__setattr__(self, "rows", rows)
         used = np.ones(n, dtype=bool) if np.size(self.used) == 0 else np.array(self.used, bool)
         used.setflags(write=False)
         object.__setattr__(self, "used", used)
@@ -212,6 +233,24 @@ class RateTable:
         """Standard uncertainty of ln k, u(k)/k (GUM 5.1.2), ``(n,)``; None where it is unknown."""
         return None if self.u_k is None else frozen(self.u_k / self.k)
 
+    def problem(self, place: int, sign: str, what: str, remedy: str) -> Problem:
+        """Return what is wrong with a quantity of the run at `place`, with the cell it came from.
+
+        Parameters
+        ----------
+        place
+            Which run, from 0.
+        sign
+            Sign of the quantity, ``"T"``, ``"k"`` or ``"I"``.
+        what, remedy
+            As for :class:`~knought.errors.Problem`; the run's label is put before `what`.
+        """
+        words = f"run {self.run[place]} {what}"
+        if self.source is None:
+            return Problem(words, remedy, column=sign)
+        row = None if self.rows is None else int(self.rows[place])
+        return self.source.problem(words, remedy, sign, row)
+
     def used_only(self) -> RateTable:
         """Return the table with only the runs that count."""
         if bool(np.all(self.used)):
@@ -219,7 +258,7 @@ class RateTable:
         kept = np.flatnonzero(self.used)
         changes: dict[str, Any] = {
             name: None if getattr(self, name) is None else getattr(self, name)[kept]
-            for name in ("k", "T", "used", *_NUMBERS)
+            for name in ("k", "T", "used", "rows", *_NUMBERS)
         }
         for name in ("run", "reason", "note", *_WORDS):
             words = getattr(self, name)
@@ -230,7 +269,7 @@ class RateTable:
     def same_runs(self, other: RateTable) -> bool:
         """Whether both tables hold the same runs, number for number and word for word.
 
-        Source and account don't count.
+        Source, rows and account don't count.
         """
         mine, theirs = self._compared(), other._compared()
         return mine.keys() == theirs.keys() and all(
@@ -242,7 +281,7 @@ class RateTable:
         parts: dict[str, Any] = {
             each.name: getattr(self, each.name)
             for each in fields(self)
-            if each.name not in {"source", "account", "concentrations"}
+            if each.name not in {"source", "rows", "account", "concentrations"}
             and getattr(self, each.name) is not None
         }
         return parts | {f"c({name})": values for name, values in self.concentrations.items()}

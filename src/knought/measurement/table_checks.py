@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING, Any, Protocol
 
 import numpy as np
 
@@ -10,10 +10,9 @@ from knought.errors import Problem
 from knought.measurement.labels import is_plain_text
 
 if TYPE_CHECKING:
-    from collections.abc import Iterator
+    from collections.abc import Iterator, Mapping
 
-    from knought.arrays import FloatArray
-    from knought.measurement.table import RateTable
+    from knought.arrays import BoolArray, FloatArray
 
 __all__ = ["problems_of"]
 
@@ -34,7 +33,36 @@ _RULES = {
 }
 
 
-def problems_of(table: RateTable) -> list[Problem]:
+class Runs(Protocol):
+    """What of a table is looked at; see :class:`~knought.measurement.table.RateTable`."""
+
+    @property
+    def k(self) -> FloatArray:
+        """Rate constants."""
+        ...
+
+    @property
+    def run(self) -> tuple[str, ...]:
+        """Labels."""
+        ...
+
+    @property
+    def used(self) -> BoolArray:
+        """Which runs count."""
+        ...
+
+    @property
+    def reason(self) -> tuple[str, ...]:
+        """Why a run does not."""
+        ...
+
+    @property
+    def concentrations(self) -> Mapping[str, FloatArray]:
+        """By species."""
+        ...
+
+
+def problems_of(table: Runs) -> list[Problem]:
     """Return everything that is wrong with a table; values are looked at once lengths agree."""
     if np.ndim(table.k) != 1 or len(table.k) == 0:
         return [
@@ -43,7 +71,7 @@ def problems_of(table: RateTable) -> list[Problem]:
     return [*_lengths(table)] or [*_values(table), *_words(table)]
 
 
-def _lengths(table: RateTable) -> Iterator[Problem]:
+def _lengths(table: Runs) -> Iterator[Problem]:
     n = len(table.k)
     columns: dict[str, Any] = {
         name: getattr(table, name)
@@ -59,7 +87,7 @@ def _lengths(table: RateTable) -> Iterator[Problem]:
             yield Problem(f"has {len(values)} values for {n} runs", "give one a run", column=name)
 
 
-def _values(table: RateTable) -> Iterator[Problem]:
+def _values(table: Runs) -> Iterator[Problem]:
     for name, (zero_allowed, rule) in _RULES.items():
         yield from _outside(table, name, getattr(table, name), zero_allowed, rule)
     for species, values in table.concentrations.items():
@@ -69,7 +97,7 @@ def _values(table: RateTable) -> Iterator[Problem]:
 
 
 def _outside(
-    table: RateTable, name: str, values: FloatArray | None, zero_allowed: bool, rule: str
+    table: Runs, name: str, values: FloatArray | None, zero_allowed: bool, rule: str
 ) -> Iterator[Problem]:
     if values is None:
         return
@@ -78,7 +106,7 @@ def _outside(
         yield Problem(f"run {table.run[place]}: {name} is {values[place]:g}", rule, column=name)
 
 
-def _words(table: RateTable) -> Iterator[Problem]:
+def _words(table: Runs) -> Iterator[Problem]:
     for place in np.flatnonzero(~table.used)[:_MOST_PROBLEMS]:
         if not table.reason[place]:
             yield Problem(

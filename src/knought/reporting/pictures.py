@@ -25,8 +25,9 @@ if TYPE_CHECKING:
     from knought.discussion.compare import Comparison
     from knought.discussion.next_runs import Plan
     from knought.fitting.assess import Assessment
+    from knought.measurement.reduction import Reduction
 
-__all__ = ["Picture", "forest_pictures", "pictures_of", "plan_pictures"]
+__all__ = ["Picture", "forest_pictures", "pictures_of", "plan_pictures", "trace_pictures"]
 
 
 @dataclass(frozen=True)
@@ -235,6 +236,35 @@ def _residuals(assessment: Assessment) -> Picture:
         ),
         (0.3 + 1.75 * len(kinds), 2.5),
         has_runs=True,
+    )
+
+
+def trace_pictures(reduction: Reduction) -> tuple[Picture, ...]:
+    """Return some of the traces with what was read off them; none where slopes were given."""
+    from knought.reporting.upstream_figures import across, trace_panels, traces_shown
+
+    shown, runs = traces_shown(reduction), len(reduction.runs)
+    if not shown:
+        return ()
+    which = (
+        "Every trace"
+        if len(shown) == runs
+        else f"{len(shown)} of {runs} traces, from the slowest to the fastest"
+    )
+    line = (
+        "the single exponential"
+        if reduction.method.kind == "first-order"
+        else "the polynomial, dashed the slope at t = 0"
+    )
+    narrow, wide = (1.75 * -(-len(shown) // across(n)) for n in (SINGLE_COLUMN, DOUBLE_COLUMN))
+    return (
+        Picture(
+            "traces",
+            "From traces to rate constants",
+            f"{which}. Points: absorbance; shaded: the window that was used; line: {line}.",
+            lambda figure: trace_panels(reduction, figure),
+            (narrow, wide),
+        ),
     )
 
 

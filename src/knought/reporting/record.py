@@ -43,6 +43,8 @@ def record(
     inputs: Sequence[tuple[str, str]] = (),
     seed: int | None = None,
     discussed: Mapping[str, Any] | None = None,
+    checked: Mapping[str, Any] | None = None,
+    reduction: Mapping[str, Any] | None = None,
 ) -> dict[str, Any]:
     """Return the record of an assessment as data that JSON can hold.
 
@@ -56,6 +58,10 @@ def record(
         Seed of everything random.
     discussed
         What is kept of the discussion, by its keys.
+    checked
+        What is kept of Monte Carlo and bootstrap, by its keys.
+    reduction
+        How the rate constants came from traces.
     """
     from knought.version import __version__
 
@@ -107,6 +113,8 @@ def record(
         "runs": _runs_record(assessment),
         "understood": [str(line) for line in assessment.rates.account],
         "warnings": [_caveat_record(caveat) for caveat in assessment.caveats],
+        **(checked or {}),
+        **({} if reduction is None else {"reduction": dict(reduction)}),
         **(discussed or {}),
     }
 

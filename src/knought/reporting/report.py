@@ -16,7 +16,7 @@ from knought.reporting.figure_files import (
     figure_bytes,
     laid_out,
 )
-from knought.reporting.pictures import pictures_of
+from knought.reporting.pictures import pictures_of, trace_pictures
 from knought.reporting.record import record_text
 from knought.reporting.sections import ANSWER_TABLES, sections_of
 from knought.reporting.sentences import (
@@ -28,6 +28,7 @@ from knought.reporting.sentences import (
 from knought.reporting.style import DOUBLE_COLUMN
 from knought.reporting.summary import summary
 from knought.reporting.svg import inline_svg
+from knought.reporting.upstream_tables import reduction_record, reduction_table
 
 if TYPE_CHECKING:
     from collections.abc import Iterator, Mapping, Sequence
@@ -35,7 +36,9 @@ if TYPE_CHECKING:
     from matplotlib.figure import Figure
 
     from knought.fitting.assess import Assessment
+    from knought.measurement.reduction import Reduction
     from knought.reporting.cells import Table
+    from knought.reporting.checked import Checked
     from knought.reporting.discussed import Discussed
     from knought.reporting.pictures import Picture
     from knought.reporting.sections import Section
@@ -60,6 +63,10 @@ class Report:
         Seed of everything random, if anything was.
     discussed
         Pieces of the discussion, where the study asked for any.
+    checked
+        Monte Carlo and bootstrap of the headline, where the study asked for any.
+    reduction
+        How the rate constants came from traces or slopes, where they did.
     """
 
     assessment: Assessment
@@ -67,6 +74,8 @@ class Report:
     inputs: tuple[tuple[str, str], ...] = ()
     seed: int | None = None
     discussed: Discussed | None = None
+    checked: Checked | None = None
+    reduction: Reduction | None = None
 
     @cached_property
     def introduction(self) -> tuple[str, ...]:
@@ -100,8 +109,15 @@ class Report:
             uncertainty_tables.influence_table(self.assessment),
             tables.runs_table(self.assessment),
         )
+        checked = () if self.checked is None else self.checked.tables
         discussed = () if self.discussed is None else self.discussed.tables
-        return (*(table for table in made if table is not None), *discussed)
+        reduced = () if self.reduction is None else (reduction_table(self.reduction),)
+        return (*(table for table in made if table is not None), *reduced, *checked, *discussed)
+
+    @property
+    def upstream(self) -> tuple[str, ...]:
+        """How rate constants came from traces, a line each; none where they were given."""
+        return () if self.reduction is None else self.reduction.notes
 
     @property
     def answer_tables(self) -> tuple[Table, ...]:
@@ -121,8 +137,9 @@ class Report:
     @cached_property
     def pictures(self) -> tuple[Picture, ...]:
         """Every figure that the study supports, in the order of the report; none is drawn yet."""
+        traced = () if self.reduction is None else trace_pictures(self.reduction)
         discussed = () if self.discussed is None else self.discussed.pictures
-        return (*pictures_of(self.assessment), *discussed)
+        return (*traced, *pictures_of(self.assessment), *discussed)
 
     def summary(self, layout: Layout = "text") -> str:
         """Return the summary for the terminal."""
@@ -135,6 +152,10 @@ class Report:
             about["inputs"] = self.inputs
         if self.discussed is not None:
             about["discussed"] = self.discussed.record()
+        if self.checked is not None:
+            about["checked"] = self.checked.record()
+        if self.reduction is not None:
+            about["reduction"] = reduction_record(self.reduction)
         return record_text(self.assessment, **about)
 
     def inline(self, picture: Picture, width: float = DOUBLE_COLUMN) -> str:

@@ -101,9 +101,16 @@ def meaning_of_uncertainty(found: Found) -> str:
     coverage = "Intervals hold 95 %, equal tails"
     if isinstance(found, OpenFit):
         coverage += ", integrated over the open salt law"
+    elif found.distribution.known is not None:
+        coverage += (
+            f", the scatter known to {found.scatter.degrees_of_freedom} degrees of freedom beside "
+            "shared errors of known size"
+        )
     elif found.scatter.from_scatter:
         coverage += f", Student t with {found.scatter.degrees_of_freedom} degrees of freedom"
-    return f"u is a standard uncertainty, {found.includes}. {coverage}."
+    return f"u is a standard uncertainty, {found.includes}. {found.excludes} {coverage}.".replace(
+        "  ", " "
+    )
 
 
 def _parameter_columns() -> tuple[Column, ...]:

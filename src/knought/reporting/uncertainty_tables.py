@@ -21,11 +21,15 @@ from knought.reporting.cells import (
 from knought.rounding import unit_text
 
 if TYPE_CHECKING:
+    from knought.chemistry.quantities import Quantity
     from knought.fitting.assess import Assessment
+    from knought.fitting.bootstrap import Bootstrap
+    from knought.fitting.found import Found
     from knought.fitting.monte_carlo import Drawn, MonteCarlo
 
 __all__ = [
     "BUDGETED",
+    "bootstrap_table",
     "budget_table",
     "influence_table",
     "monte_carlo_table",
@@ -185,14 +189,63 @@ def monte_carlo_table(found: MonteCarlo) -> Table:
 def _drawn_row(drawn: Drawn) -> tuple[Cell, ...]:
     what, u = drawn.quantity, drawn.standard_uncertainty
     spans = (drawn.interval(), drawn.shortest_interval(), drawn.linear_interval)
-    texts = [
-        " to ".join(what.rounded(end, u).number() for end in (low, high)) for low, high in spans
-    ]
     return (
         words(what.symbol.text),
         number(float(f"{what.shown(u):.3g}")),
         number(float(f"{what.shown(drawn.linear_uncertainty):.3g}")),
-        *(words(text) for text in texts),
+        *(words(_span(what, span, u)) for span in spans),
         words(unit_text(what.shown_unit)),
         words("yes" if drawn.validates_linear() else "no"),
     )
+
+
+def bootstrap_table(again: Bootstrap, found: Found) -> Table:
+    """Return what refitting gives beside the closed form."""
+    done = len(next(iter(again.values.values())))
+    how = (
+        "New ln k were drawn about the fitted surface with the errors of the runs."
+        if again.kind == "parametric"
+        else "Runs were drawn with replacement; with few runs such intervals are too short."
+    )
+    if found.salt_law == "open":
+        how += (
+            " Under the open law refits tell how the answer scatters, not what the priors leave "
+            "open: å, c and β vary less than their u."
+        )
+    refused = (
+        f" {again.refused} draws could not carry the laws and are left out."
+        if again.refused
+        else ""
+    )
+    return Table(
+        "bootstrap",
+        f"Bootstrap ({again.kind}), {done} refits, seed {again.seed}",
+        (
+            text_column("quantity"),
+            number_column("u, refits"),
+            number_column("u, closed form"),
+            number_column("95 % interval, refits"),
+            number_column("closed form"),
+            text_column("unit"),
+        ),
+        tuple(_again_row(again, found, name) for name in again.values),
+        (how + refused,),
+    )
+
+
+def _again_row(again: Bootstrap, found: Found, name: str) -> tuple[Cell, ...]:
+    estimate = found.parameters[name]
+    what, u = estimate.quantity, again.standard_uncertainty(name)
+    low, high = estimate.interval(0.95)
+    spans = (again.interval(name), (float(low), float(high)))
+    return (
+        words(what.symbol.text),
+        number(float(f"{what.shown(u):.3g}")),
+        number(float(f"{what.shown(float(estimate.standard_uncertainty)):.3g}")),
+        *(words(_span(what, span, u)) for span in spans),
+        words(unit_text(what.shown_unit)),
+    )
+
+
+def _span(what: Quantity, span: tuple[float, float], u: float) -> str:
+    return " to ".join(what.rounded(end, u).number() for end in span)

@@ -80,15 +80,20 @@ def _relative(text: str) -> float:
 
 
 class SharedErrorSection(Section):
-    """``[[shared_errors]]``: an error that all runs, or those of a batch, share."""
+    """``[[shared_errors]]``: an error that runs share, or one like it that each run has."""
 
     name: str
-    kind: Literal["temperature-offset", "temperature-gain", "factor", "ionic-strength-factor"]
+    kind: Literal[
+        "temperature-offset", "temperature-gain", "factor", "ionic-strength-factor", "by-run"
+    ]
     u: str
     batch: str | None = None
     distribution: Literal["normal", "rectangular", "triangular", "t"] = "normal"
     degrees_of_freedom: float | None = None
     calibrated_at: Kelvin = 298.15
+    each_run: bool = False
+    on_ln_k: dict[str, float] = Field(default_factory=dict)
+    on_ln_I: dict[str, float] = Field(default_factory=dict)
 
     @model_validator(mode="after")
     def _check(self) -> SharedErrorSection:
@@ -111,4 +116,7 @@ class SharedErrorSection(Section):
             self.distribution,
             self.degrees_of_freedom,
             self.calibrated_at,
+            self.each_run,
+            self.on_ln_k,
+            self.on_ln_I,
         )

@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from typing import TYPE_CHECKING, Annotated, Literal
 
+import numpy as np
 from pydantic import BeforeValidator, Field
 
 from knought.chemistry.activity import (
@@ -108,7 +109,8 @@ class RecipeSection(Section):
 class MediumSection(Section):
     """``[medium]``: what is in the solutions, and the equilibria among it.
 
-    Without recipes each run holds the substances of its ``c(...)`` columns and `final`.
+    Recipes stand in the section itself, or as columns ``V(stock)/mL`` of the table of runs. Without
+    either each run holds the substances of its ``c(...)`` columns and `final`.
     """
 
     temperature: Kelvin = 298.15
@@ -120,6 +122,7 @@ class MediumSection(Section):
     stocks: tuple[StockSection, ...] = ()
     recipes: tuple[RecipeSection, ...] = ()
     final: dict[str, MolPerLitre] = Field(default_factory=dict)
+    total_volume: Litre | None = None
     u_volume: Relative = 0.0
 
     def form(self) -> ActivityForm:
@@ -147,6 +150,8 @@ class MediumSection(Section):
         """
         stocks = tuple(Stock(each.name, each.contents, each.u) for each in self.stocks)
         by_run = {each.run: each for each in self.recipes}
+        if runs is not None and runs.volumes:
+            return self._pipetted(runs, stocks)
         if runs is not None and not by_run:
             return tuple(
                 Recipe(
@@ -170,12 +175,41 @@ class MediumSection(Section):
                 volumes=by_run[run].volumes,
                 stocks=stocks,
                 water=by_run[run].water,
-                total_volume=by_run[run].total_volume,
+                total_volume=by_run[run].total_volume or self.total_volume,
                 final={**self.final, **by_run[run].final},
                 name=run,
                 u_volume=self.u_volume,
             )
             for run in labels
+        )
+
+    def _pipetted(self, runs: Runs, stocks: tuple[Stock, ...]) -> tuple[Recipe, ...]:
+        """Return a recipe for each run from the columns of volumes.
+
+        Raises
+        ------
+        InputError
+            If there are recipes besides, or one is wrong.
+        """
+        if self.recipes:
+            raise InputError(
+                "volumes stand in the table of runs and in [[medium.recipes]]",
+                "keep one of the two, so that they cannot disagree",
+            )
+        poured = {name: v for name, v in runs.volumes.items() if name not in {"water", "total"}}
+        zero = np.zeros(len(runs.run))
+        water, total = runs.volumes.get("water", zero), runs.volumes.get("total")
+        return tuple(
+            Recipe(
+                volumes={name: float(v[i]) for name, v in poured.items()},
+                stocks=stocks,
+                water=float(water[i]),
+                total_volume=self.total_volume if total is None else float(total[i]),
+                final=self.final,
+                name=run,
+                u_volume=self.u_volume,
+            )
+            for i, run in enumerate(runs.run)
         )
 
     def series(self, runs: Runs | None = None) -> MediumSeries:

@@ -13,7 +13,8 @@ from pydantic import BeforeValidator, ConfigDict, Field, ValidationError
 from knought.errors import InputError, Problem
 from knought.measurement.absorbance import Optics
 from knought.measurement.complexed_product import ComplexedProduct
-from knought.measurement.reduction import Kind, Method, Reduction, reduce_traces
+from knought.measurement.reduction import Reduction, reduce_traces
+from knought.measurement.reduction_method import Kind, Method
 from knought.measurement.runs_reading import read_runs
 from knought.measurement.traces import Trace
 from knought.measurement.traces_reading import read_traces
@@ -32,6 +33,7 @@ __all__ = ["TracesSection", "Upstream", "read_upstream"]
 Absorptivity = Annotated[float, BeforeValidator(in_unit("L mol^-1 cm^-1"))]
 Centimetre = Annotated[float, BeforeValidator(in_unit("cm"))]
 Second = Annotated[float, BeforeValidator(in_unit("s"))]
+PerSecond = Annotated[float, BeforeValidator(in_unit("s^-1"))]
 
 
 class OpticsSection(Section):
@@ -61,10 +63,15 @@ class TracesSection(Section):
     kind: Kind = "first-order"
     orders: dict[str, int | float | str] = Field(default_factory=dict)
     initial: float | None = None
+    final: float | None = None
+    total_change: float | None = None
+    blank_slope: PerSecond | None = None
+    u_blank_slope: PerSecond = 0.0
     dead_time: Second = 0.0
     window: Second | None = None
     polynomial: int | None = Field(default=None, ge=1, le=5)
     drift: bool = False
+    repeatability: Relative = 0.0
     stocks: dict[str, Relative] = Field(default_factory=dict)
     optics: OpticsSection | None = None
     product: ProductSection | None = None
@@ -87,10 +94,14 @@ class TracesSection(Section):
             self.kind,
             orders,
             self.initial,
+            self.final,
+            self.total_change,
+            None if self.blank_slope is None else (self.blank_slope, self.u_blank_slope),
             self.dead_time,
             self.window,
             self.polynomial,
             self.drift,
+            self.repeatability,
             self._optics(),
             dict(self.stocks),
         )

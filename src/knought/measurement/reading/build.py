@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -131,7 +132,11 @@ def built(
         reason=labels.get("reason", ()),
         note=labels.get("note", ()),
         concentrations={species: found.values[kept] for species, found in amounts.items()},
-        source=source,
+        source=replace(
+            source,
+            headers={role: found.column.column.address for role, found in measured.items()},
+        ),
+        rows=values.rows[kept],
         account=tuple(draft.account),
     )
 

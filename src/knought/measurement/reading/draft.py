@@ -35,7 +35,7 @@ class Draft:
     used : (n,) ndarray of bool
         Which runs count.
     sound : (n,) ndarray of bool
-        Which of these could be read whole; only they are looked at further.
+        Which of these stand in whole rows; only they are looked at further.
     kept : (n,) ndarray of bool
         Which rows become runs of the table; a run that does not count and lacks a number does not.
     problems
@@ -75,7 +75,14 @@ class Draft:
         )
 
     def refuse(self, wrong: BoolArray, column: NumberColumn, what: str, remedy: str) -> None:
-        """Tell every used run where `wrong`; a run that does not count is not kept there."""
-        for place in np.flatnonzero(wrong & self.sound)[:_MOST_PROBLEMS]:
+        """Tell every used run where `wrong`; a run that does not count is not kept there.
+
+        A cell that could not be read has been told already.
+        """
+        told = self.values.unreadable.get(column.column.place)
+        looked_at = self.sound.copy()
+        if told is not None:
+            looked_at[told] = False
+        for place in np.flatnonzero(wrong & looked_at)[:_MOST_PROBLEMS]:
             self.problem(what, remedy, column, int(place))
         self.kept &= ~(wrong & ~self.used)

@@ -58,9 +58,11 @@ class Values:
     used
         Whether each run counts.
     broken
-        Whether a cell of the run could not be read.
+        Whether the row of the run has more cells than the header.
+    unreadable
+        Places of the runs whose cell could not be read, by column.
     problems
-        These cells.
+        These rows and cells.
     remarks
         Rows that are no runs.
     """
@@ -70,6 +72,7 @@ class Values:
     words: Mapping[str, list[str]]
     used: list[bool]
     broken: list[bool]
+    unreadable: Mapping[int, list[int]]
     problems: tuple[Problem, ...]
     remarks: tuple[AccountLine, ...] = field(default=())
 
@@ -113,6 +116,7 @@ class _Body:
         self._rows = array("q")
         self._used: list[bool] = []
         self._broken: list[bool] = []
+        self._unreadable: dict[int, list[int]] = {}
         self._problems: list[Problem] = []
         self._remarks: list[AccountLine] = []
         self._labels_with_hash: bool | None = None
@@ -154,6 +158,7 @@ class _Body:
             self._words,
             self._used,
             self._broken,
+            self._unreadable,
             tuple(self._problems),
             (*self._account_of_beside(), *self._remarks),
         )
@@ -220,7 +225,6 @@ class _Body:
 
     def _take(self, row: int, cells: list[str]) -> None:
         count = len(cells)
-        told = len(self._problems)
         used = self._is_used(row, cells)
         self._rows.append(row)
         self._used.append(used)
@@ -230,9 +234,11 @@ class _Body:
             # What a run that is left out says where a number should be is no one's concern.
             if wrong is not None and used:
                 self._tell(wrong.what, wrong.remedy, row, column.column, cells[place])
+                self._unreadable.setdefault(place, []).append(len(self._rows) - 1)
         for role, column_of_words in self._parts.words.items():
             place = column_of_words.place
             self._words[role].append(unguarded(shown(cells[place])) if place < count else "")
+        told = len(self._problems)
         if self._untitled or count > self._titled:
             self._look_beside(row, cells)
         self._broken.append(len(self._problems) > told)

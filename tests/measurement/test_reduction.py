@@ -1,0 +1,160 @@
+"""From traces and recipes to a table, with one name for each source of error."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+import numpy as np
+import pytest
+
+import knought as kn
+from knought.errors import InputError
+from knought.measurement.shared_errors import SharedError
+from knought.study import read_study
+from knought.study_sections.upstream import read_upstream
+
+if TYPE_CHECKING:
+    from pathlib import Path
+
+    from knought.measurement.reduction import Reduction
+
+_STUDY = """
+[medium]
+total_volume = "50 mL"
+u_volume = "0.3 %"
+
+[[medium.stocks]]
+name = "oxidant"
+contents = { "2 K^+ + M^2-" = "20 mmol/L" }
+u = "0.8 %"
+
+[[medium.stocks]]
+name = "ligand"
+contents = { "K^+ + X^-" = "0.2 mol/L" }
+u = "0.4 %"
+
+[[medium.stocks]]
+name = "salt"
+contents = { KNO3 = "1 mol/L" }
+u = "0.2 %"
+
+[traces]
+runs = "runs.csv"
+kind = "slopes"
+orders = { "M^2-" = 1, "X^-" = 1 }
+
+[traces.optics]
+absorptivity = "20000 L mol^-1 cm^-1"
+u_absorptivity = "1.5 %"
+"""
+
+_RUNS = """run,t/°C,V(oxidant)/mL,V(ligand)/mL,V(salt)/mL,slope/s^-1,u(slope)/s^-1
+a,25,1,5,0.5,1.0e-4,1e-6
+b,25,1,5,5,2.0e-4,2e-6
+c,35,2,5,0.5,4.0e-4,4e-6
+"""
+
+
+def _reduced(folder: Path, study: str = _STUDY, runs: str = _RUNS) -> Reduction:
+    (folder / "study.toml").write_text(study, encoding="utf-8")
+    (folder / "runs.csv").write_text(runs, encoding="utf-8")
+    return read_upstream(folder / "study.toml").reduced(lambda name, _: folder / name)
+
+
+def test_volumes_in_the_table_of_runs_are_the_recipe(tmp_path: Path) -> None:
+    found = _reduced(tmp_path)
+    oxidant, ligand, salt = 0.02 * np.array([1, 1, 2]) / 50, 0.02, np.array([0.5, 5, 0.5]) / 50
+    assert pytest.approx(3 * oxidant + ligand + salt, rel=1e-12) == found.rates.I
+    assert found.rates.concentrations["X^-"] == pytest.approx([ligand] * 3, rel=1e-12)
+    rate = np.array([1e-4, 2e-4, 4e-4]) / 20_000
+    assert found.rates.k == pytest.approx(rate / (oxidant * ligand), rel=1e-12)
+
+
+def test_one_stock_is_one_source_for_k_and_for_the_ionic_strength(tmp_path: Path) -> None:
+    found = _reduced(tmp_path)
+    errors = {each.name: each for each in found.shared_errors}
+    assert list(errors) == ["molar absorptivity", "stock oxidant", "stock ligand", "stock salt"]
+    ligand = errors["stock ligand"]
+    assert (ligand.kind, ligand.u) == ("by-run", 0.004)
+    assert ligand.on_ln_k == pytest.approx({"a": -1.0, "b": -1.0, "c": -1.0}, rel=1e-5)
+    assert found.rates.I is not None
+    share = dict(zip("abc", 0.02 / found.rates.I, strict=True))
+    assert ligand.on_ln_I == pytest.approx(share, rel=1e-4)
+    assert not errors["stock salt"].on_ln_k
+
+
+def test_volumes_of_a_run_are_its_own(tmp_path: Path) -> None:
+    found = _reduced(tmp_path)
+    # 1 % from the slope, and two pipetted volumes of 0.3 % that k is divided by.
+    expected = np.hypot(0.01, 0.003 * np.sqrt(2))
+    assert found.rates.u_k == pytest.approx(expected * found.rates.k, rel=1e-9)
+    assert found.rates.u_I is not None
+
+
+def test_the_budget_of_a_fit_names_each_stock(tmp_path: Path) -> None:
+    rows = [
+        f"{i},{t},1,5,{v},{3e-5 * 2 ** (t / 10 - 2.5) * (1 + 0.02 * v):.5g},1e-7"
+        for i, (t, v) in enumerate((t, v) for t in (15, 25, 35) for v in (0.2, 1, 3, 9))
+    ]
+    found = _reduced(tmp_path, runs="\n".join([_RUNS.splitlines()[0], *rows]) + "\n")
+    fit = kn.assess(found.rates, salt_law="davies", shared_errors=found.shared_errors)
+    budget, k = fit.budget("rate_constant"), fit.headline.parameters["rate_constant"]
+    relative = budget.uncertainty("stock ligand") / float(k.value)
+    # 0.4 % through the concentration, less what it moves I.
+    assert 0.003 < relative < 0.0045
+    assert set(budget.variances) >= {each.name for each in found.shared_errors}
+
+
+def test_a_common_error_is_the_same_by_run_and_as_a_factor() -> None:
+    T, I = np.array([290.0, 300.0]), np.array([0.1, 0.2])
+    slopes = np.array([0.05, 0.05]), np.array([1.0, 2.0])
+    for kind, key in (("factor", "on_ln_k"), ("ionic-strength-factor", "on_ln_I")):
+        plain = SharedError("x", kind, 0.01)  # type: ignore[arg-type]
+        by_run = SharedError("x", "by-run", 0.01, **{key: {"a": 1.0, "b": 1.0}})  # type: ignore[arg-type]
+        assert by_run.effect(T, I, *slopes, None, ("a", "b")) == pytest.approx(
+            plain.effect(T, I, *slopes, None)
+        )
+
+
+def test_a_run_still_to_be_made_takes_the_mean_effect() -> None:
+    error = SharedError("x", "by-run", 0.01, on_ln_k={"a": -1.0, "b": -0.5})
+    one = np.array([1.0])
+    assert error.effect(300 * one, one, one, one, None) == pytest.approx([-0.0075])
+
+
+@pytest.mark.parametrize(
+    ("kind", "effects"), [("by-run", {}), ("factor", {"a": 1.0}), ("by-run", {"a": float("nan")})]
+)
+def test_effects_on_runs_belong_to_their_kind(kind: str, effects: dict[str, float]) -> None:
+    with pytest.raises(InputError, match="effect"):
+        SharedError("x", kind, 0.01, on_ln_k=effects)  # type: ignore[arg-type]
+
+
+@pytest.mark.parametrize(
+    ("old", "new", "words"),
+    [
+        ('"M^2-" = 1', '"L^2-" = 1', "none of it in what run a holds"),
+        ("[traces]\nruns", '[[medium.recipes]]\nrun = "a"\n[traces]\nruns', "Keep one of the two"),
+        ('name = "salt"', 'name = "brine"', "there is no stock 'salt'"),
+    ],
+)
+def test_a_recipe_that_does_not_fit_is_refused(
+    old: str, new: str, words: str, tmp_path: Path
+) -> None:
+    with pytest.raises(InputError, match=words):
+        _reduced(tmp_path, _STUDY.replace(old, new))
+
+
+def test_what_reduce_writes_reports_as_the_traces_do(tmp_path: Path) -> None:
+    from knought.cli import main
+
+    _reduced(tmp_path)
+    assert main(["reduce", str(tmp_path / "study.toml"), "--out", str(tmp_path / "out")]) == 0
+    direct = read_upstream(tmp_path / "study.toml").reduced(lambda name, _: tmp_path / name)
+    written = read_study(tmp_path / "out" / "study.toml")
+    errors = [each.error() for each in written.settings.shared_errors]
+    assert [each.name for each in errors] == [each.name for each in direct.shared_errors]
+    for one, other in zip(errors, direct.shared_errors, strict=True):
+        assert one.u == pytest.approx(other.u, rel=1e-9)
+        assert (one.on_ln_k, one.on_ln_I) == (other.on_ln_k, other.on_ln_I)
+    assert pytest.approx(direct.rates.k) == kn.read_rates(tmp_path / "out" / "rates.csv").k
