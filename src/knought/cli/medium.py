@@ -53,7 +53,7 @@ def run(options: argparse.Namespace) -> None:
     if (options.reach is None) != (options.salt is None):
         raise InputError("--reach and --salt belong together", "give both")
     series = section.series()
-    lines = _lines(series, labels)
+    lines = [*_lines(series, labels), *_sources(section)]
     if options.reach is not None:
         lines += _salt(section, options.reach, options.salt, labels)
     say("\n".join(lines), layout_of(options))
@@ -116,6 +116,23 @@ def _lines(series: MediumSeries, labels: tuple[str, ...]) -> list[str]:
         lines += [f"  {species.text:<14} {c:.5g} mol/L" for species, c in ordered if c > 0]
         lines += [f"  warning ({each.code}): {each.message}" for each in medium.caveats]
     return lines
+
+
+def _sources(section: MediumSection) -> list[str]:
+    """Say which constants were used, and where each is from."""
+    found = section.all_equilibria()
+    if not found:
+        return []
+    head = f"constants at I → 0 unless said, carried by {section.form().words}"
+    return [
+        head,
+        *(
+            f"  {each.reaction}: lg K = {each.lg_K:g} at {each.reference_temperature:.2f} K"
+            + (f" and I = {each.ionic_strength:g} mol/L" if each.ionic_strength else "")
+            + f" ({each.source or 'given'})"
+            for each in found
+        ),
+    ]
 
 
 def _salt(section: MediumSection, goal: float, salt: str, labels: tuple[str, ...]) -> list[str]:

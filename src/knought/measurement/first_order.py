@@ -29,7 +29,15 @@ from knought.measurement.first_order_search import (
     searched,
 )
 from knought.measurement.traces import checked_trace
-from knought.numerics.correlated_noise import Noise, Projected, binned, mixture_of, project
+from knought.numerics.correlated_noise import (
+    FEW_CORRELATION_TIMES,
+    MUCH_WANDER,
+    Noise,
+    Projected,
+    binned,
+    mixture_of,
+    project,
+)
 
 if TYPE_CHECKING:
     from numpy.typing import ArrayLike
@@ -62,8 +70,8 @@ class FirstOrders:
         Their standard uncertainties with independent noise.
     residual_deviation : (m,) ndarray
         √(RSS/ν) of the ordinary fit.
-    correlation_share : (m,) ndarray
-        Mean share of correlated noise in one point's variance.
+    correlation_share, correlation_time : (m,) ndarray
+        Mean share of correlated noise in one point's variance, and its typical correlation time.
     """
 
     weights: FloatArray
@@ -76,6 +84,7 @@ class FirstOrders:
     u_levels: FloatArray
     residual_deviation: FloatArray
     correlation_share: FloatArray
+    correlation_time: FloatArray
 
     @property
     def value(self) -> FloatArray:
@@ -212,7 +221,6 @@ def first_orders(
     fits, record_points = _correlated(model, t, data, k, levels)
     weights = fits.weights(unknowns)
     shift, scale = fits.parameter(unknowns - 1, unknowns)
-    noise_shares = fits.shares
     u = np.sqrt(np.diagonal(covariance, axis1=1, axis2=2))
     return FirstOrders(
         weights,
@@ -224,15 +232,16 @@ def first_orders(
         k * u[:, -1],
         u[:, :-1],
         deviation,
-        weights @ noise_shares,
+        weights @ fits.noise.shares,
+        fits.noise.typical_time(weights),
     )
 
 
 @dataclass(frozen=True, eq=False)
 class _Cells(Projected):
-    """Fits with the wander's share of each cell."""
+    """Fits with the noise of each cell."""
 
-    shares: FloatArray = field(default_factory=lambda: np.zeros(0))
+    noise: Noise
 
 
 def _correlated(
@@ -249,7 +258,7 @@ def _correlated(
     record = binned(t, residuals(model, t, y, k), place=place)
     noise = Noise(record, wander=len(t) >= ENOUGH_POINTS)
     fits = project(record, record.averaged(jacobian(model, t, k, levels)), noise)
-    return _Cells(**vars(fits), shares=noise.shares), len(record.time)
+    return _Cells(**vars(fits), noise=noise), len(record.time)
 
 
 def first_order(
@@ -333,7 +342,10 @@ def first_order(
         half_lives=float(half_lives),
         correlation_share=float(found.correlation_share[0]),
         pattern=pattern,
-        caveats=tuple(_caveats(pattern, k * float(t[-1] - t[0]), model, len(t))),
+        caveats=(
+            *_caveats(pattern, k * float(t[-1] - t[0]), model, len(t)),
+            *_wander_caveat(found, float(t[-1] - t[0])),
+        ),
     )
 
 
@@ -341,6 +353,21 @@ def _u_start(model: SingleExponential, t: FloatArray, y: FloatArray, k: float) -
     """Return u of amplitude plus final level."""
     covariance = ordinary(model, t, y, np.array([k]))[1][0]
     return float(np.sqrt(covariance[:2, :2].sum()))
+
+
+def _wander_caveat(found: FirstOrders, span: float) -> tuple[Caveat, ...]:
+    """Say where the record holds few independent pieces."""
+    time = float(found.correlation_time[0])
+    if found.correlation_share[0] <= MUCH_WANDER or span >= FEW_CORRELATION_TIMES * time:
+        return ()
+    return (
+        Caveat(
+            "first-order-correlated-noise",
+            f"The noise stays correlated over about {time:.3g} (unit of time), so the trace holds "
+            "few independent pieces and u is itself uncertain by tens of per cent. Repeat runs "
+            "tell the scatter.",
+        ),
+    )
 
 
 def _caveats(pattern: Pattern, reach: float, model: SingleExponential, points: int) -> list[Caveat]:

@@ -16,9 +16,7 @@ import numpy as np
 from knought.errors import Caveat, InputError
 from knought.measurement.initial_slope_rule import ENOUGH_POINTS, Slopes, initial_slopes
 from knought.measurement.traces import checked_trace
-from knought.numerics.correlated_noise import (
-    mixture_of,
-)
+from knought.numerics.correlated_noise import FEW_CORRELATION_TIMES, MUCH_WANDER, mixture_of
 
 if TYPE_CHECKING:
     from numpy.typing import ArrayLike
@@ -30,9 +28,6 @@ __all__ = ["InitialSlope", "initial_slope"]
 
 #: A window in which the slope falls by more than this share says much of the curve, not of t = 0.
 _MUCH_CONVERSION = 0.3
-
-#: Fewer correlation times than this in the record, and its correlation is poorly known.
-_FEW_CORRELATION_TIMES = 20
 
 
 @dataclass(frozen=True, eq=False)
@@ -197,8 +192,8 @@ def _caveats(found: Slopes, t: FloatArray, conversion: float, recorded: int) -> 
                 "first-order fit, or more points early on, would say more.",
             )
         )
-    correlated = found.correlation_share[0] > 0.2
-    if correlated and (t[-1] - t[0]) < _FEW_CORRELATION_TIMES * found.correlation_time[0]:
+    correlated = found.correlation_share[0] > MUCH_WANDER
+    if correlated and (t[-1] - t[0]) < FEW_CORRELATION_TIMES * found.correlation_time[0]:
         said.append(
             Caveat(
                 "slope-correlated-noise",

@@ -8,7 +8,7 @@ The rule, stated once:
    terms (:mod:`knought.numerics.correlated_noise`); what stays unknown of it is in the answer.
 3. Of the windows 1, 3/4, 9/16, ... of the record, all from its beginning, the longest is taken in
    which a polynomial of order 1, 2 or 3 leaves nothing that terms up to the fifth order explain
-   (F-test at 5 %).
+   (F-test at 15 %: what passes unseen would bias the slope).
 4. The slope is read one order above the lowest such order: curvature too small to be seen must not
    bias it unseen. That costs precision, and is the honest price of an extrapolation.
 
@@ -49,7 +49,7 @@ _WINDOWS = tuple(0.75**i for i in range(13))
 #: A smooth curve for learning the noise bends at least this much over the record.
 _LEAST_BEND = 2.0
 _HIGHEST_TESTED, _HIGHEST_ADEQUATE = 5, 3
-_SIGNIFICANCE = 0.05
+_SIGNIFICANCE = 0.15
 
 
 @dataclass(frozen=True, eq=False)
@@ -229,10 +229,7 @@ class _Choice:
         """Note mean share and time of correlation."""
         shares = self.weights * noise.shares
         self.noise[0] = shares.sum(axis=1)
-        each = np.zeros(len(noise.shares))
-        per_time = (len(noise.shares) - 1) // len(noise.times)
-        each[1:] = np.repeat(noise.times, per_time)
-        self.noise[1] = (shares * each).sum(axis=1) / np.maximum(self.noise[0], 1e-300)
+        self.noise[1] = noise.typical_time(self.weights)
 
     def take(self, passed: BoolArray, window: _Window, order: int) -> None:
         """Give the records that pass and are still open this window and order."""

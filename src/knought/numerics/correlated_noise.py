@@ -25,6 +25,8 @@ from knought.arrays import FloatArray, frozen
 from knought.numerics.quantiles import Mixture
 
 __all__ = [
+    "FEW_CORRELATION_TIMES",
+    "MUCH_WANDER",
     "Binned",
     "Noise",
     "Projected",
@@ -37,11 +39,21 @@ __all__ = [
 #: Longer records are averaged into this many bins.
 MOST_BINS = 64
 
-_SHARES = np.array([0.15, 0.35, 0.55, 0.75, 0.92])
-_CORRELATION_TIMES, _LONGEST_TIME = 7, 0.2
+#: Shares of wander of the noise, up to nearly all.
+_SHARES = np.array([0.25, 0.6, 0.9, 0.995])
+
+#: Correlation times reach over this many points, but no further than thrice the record and no less
+#: than a fifth of it: a short record cannot tell a slow wander from its own course, and must not
+#: rule it out.
+_CORRELATION_TIMES, _LONGEST_POINTS, _LONGEST_TIME = 8, 120.0, (0.2, 3.0)
 
 #: Weight before the data are seen of "no correlation"; the rest is spread over the cells.
-_WHITE = 0.5
+_WHITE = 0.4
+
+
+#: Where more than this share of a point's variance wanders, and the record is fewer correlation
+#: times long than that, it is few independent pieces, and u itself is poorly known.
+MUCH_WANDER, FEW_CORRELATION_TIMES = 0.4, 20
 
 
 @dataclass(frozen=True, eq=False)
@@ -164,12 +176,25 @@ class Noise:
             np.einsum("...cn,cn->...c", (left * right)[..., self._which, :], self._weights)
         )
 
+    def typical_time(self, weights: FloatArray) -> FloatArray:
+        """Return the correlation time of each record, ``(m,)``: geometric mean over its cells.
+
+        Parameters
+        ----------
+        weights : (m, c) ndarray
+            Weights of the cells; cells count as their wander does.
+        """
+        each = np.concatenate([[0.0], np.log(self.times[self._which[1:]])])
+        shares = weights * self.shares
+        return np.asarray(np.exp(shares @ each / np.maximum(shares.sum(axis=1), 1e-300)))
+
 
 def correlation_times(record: Binned) -> FloatArray:
-    """Return the correlation times that a record can tell of: from one point to a fifth of it."""
+    """Return the correlation times that are considered, from one point on."""
     span = float(record.time[-1] - record.time[0])
     points = float(record.counts.sum())
-    return np.geomspace(span / points, span * _LONGEST_TIME, _CORRELATION_TIMES)
+    longest = span * float(np.clip(_LONGEST_POINTS / points, *_LONGEST_TIME))
+    return np.geomspace(span / points, longest, _CORRELATION_TIMES)
 
 
 @lru_cache(maxsize=64)
