@@ -14,6 +14,7 @@ from knought.study import read_study
 from knought.study_sections.upstream import read_upstream
 
 if TYPE_CHECKING:
+    from collections.abc import Callable
     from pathlib import Path
 
     from knought.measurement.reduction import Reduction
@@ -158,3 +159,136 @@ def test_what_reduce_writes_reports_as_the_traces_do(tmp_path: Path) -> None:
         assert one.u == pytest.approx(other.u, rel=1e-9)
         assert (one.on_ln_k, one.on_ln_I) == (other.on_ln_k, other.on_ln_I)
     assert pytest.approx(direct.rates.k) == kn.read_rates(tmp_path / "out" / "rates.csv").k
+
+
+_SLOPES = """
+[traces]
+runs = "runs.csv"
+kind = "slopes"
+orders = ORDERS
+
+[traces.optics]
+absorptivity = "10000 L mol^-1 cm^-1"
+"""
+
+
+_RATES: dict[str, Callable[[float, float], float]] = {
+    "plain": lambda a, b: 0.5 * a * b,
+    "b squared": lambda a, b: 20 * a * b**2,
+    "parallel": lambda a, b: 0.5 * a * b + 1e-6,
+}
+
+
+def _varied(folder: Path, orders: str, rate: str = "plain") -> Reduction:
+    """Slopes at two temperatures, each concentration varied there; noise of 1 %, seeded."""
+    from knought.numerics.seeds import generator
+
+    random = generator(52_610, len(orders))
+    rows = ["run,T/K,I/(mol/L),c(A)/(mol/L),c(B)/(mol/L),slope/s^-1,u(slope)/s^-1"]
+    design = [(1, 10), (2, 10), (4, 10), (8, 10), (2, 20), (2, 40), (2, 80)]
+    for number, (T, (a, b)) in enumerate((T, pair) for T in (298.15, 308.15) for pair in design):
+        true = _RATES[rate](1e-4 * a, 1e-3 * b) * (1 + (T > 300))
+        slope = 1e4 * true * (1 + 0.01 * random.standard_normal())
+        rows.append(f"{number},{T},0.1,{1e-4 * a},{1e-3 * b},{slope:.6g},{100 * true:.3g}")
+    return _reduced(folder, _SLOPES.replace("ORDERS", orders), "\n".join(rows) + "\n")
+
+
+def test_orders_that_are_right_are_borne_out(tmp_path: Path) -> None:
+    found = _varied(tmp_path, "{ A = 1, B = 1 }")
+    assert not found.caveats
+    said = "\n".join(found.notes)
+    assert "whole number 1" in said
+    assert "intercept" in said
+    assert found.rates.k == pytest.approx(0.5 * np.repeat([1, 2], 7), rel=0.04)
+
+
+def test_an_order_that_is_wrong_is_contradicted(tmp_path: Path) -> None:
+    found = _varied(tmp_path, "{ A = 1, B = 1 }", "b squared")
+    assert found.caveats[0].code == "order-contradicted"
+    assert "The order 1 in B" in found.caveats[0].message
+    assert found.rates.order == 2  # as stated, and not chosen anew
+
+
+def test_a_parallel_path_shows_as_an_intercept(tmp_path: Path) -> None:
+    found = _varied(tmp_path, "{ A = 1, B = 1 }", "parallel")
+    assert {each.code for each in found.caveats} >= {"order-contradicted", "line-intercept"}
+
+
+def test_an_open_order_is_told_and_not_chosen(tmp_path: Path) -> None:
+    with pytest.raises(InputError) as caught:
+        _varied(tmp_path, '{ A = 1, B = "?" }')
+    said = str(caught.value)
+    assert "the order in B is open; the runs say" in said
+    assert "whole number 1" in said
+    with pytest.raises(InputError, match="no concentration was varied"):
+        _reduced(tmp_path, _STUDY.replace('"X^-" = 1', '"X^-" = "?"'))
+
+
+def test_a_blank_and_what_is_known_of_the_levels_are_used(tmp_path: Path) -> None:
+    from tests.measurement.simulated_traces import noisy
+
+    t = np.linspace(0, 100, 200)
+    noise = noisy(2, len(t), 0.0, 0.0, 1e-4, 31)
+    signals = [slope * t + 1e-4 * t + e for slope, e in zip((1e-3, 2e-3), noise, strict=True)]
+    rows = [
+        "t/s,a,b",
+        *(",".join(f"{x:.6g}" for x in row) for row in zip(t, *signals, strict=True)),
+    ]
+    (tmp_path / "traces.csv").write_text("\n".join(rows) + "\n", encoding="utf-8")
+    study = _SLOPES.replace("ORDERS", "{ A = 1 }").replace(
+        'kind = "slopes"',
+        'kind = "initial-slope"\nfile = "traces.csv"\ntotal_change = 10\n'
+        'blank_slope = "0.006 min^-1"\nu_blank_slope = "2e-5 s^-1"',
+    )
+    found = _reduced(tmp_path, study, "run,T/K,c(A)/(mol/L)\na,298.15,0.1\nb,298.15,0.1\n")
+    assert [each.measured for each in found.runs] == pytest.approx([1e-3, 2e-3], rel=0.01)
+    assert [each.progress for each in found.runs] == pytest.approx([0.011, 0.021], rel=0.02)
+    (blank,) = [each for each in found.shared_errors if each.name == "blank"]
+    moved = [blank.u * blank.on_ln_k[run] for run in "ab"]
+    assert moved == pytest.approx([-0.02, -0.01], rel=0.01)
+
+
+def test_levels_of_first_order_traces_are_read(tmp_path: Path) -> None:
+    t = np.linspace(0, 60, 80)
+    rows = ["t (min),a", *(f"{x:.6g},{0.9 - 0.6 * np.exp(-0.02 * x):.8g}" for x in t)]
+    (tmp_path / "traces.csv").write_text("\n".join(rows) + "\n", encoding="utf-8")
+    for level in ("final = 0.9", "initial = 0.3"):
+        study = f'[traces]\nruns = "runs.csv"\nfile = "traces.csv"\n{level}\n'
+        found = _reduced(tmp_path, study, "run,T/K\na,298.15\n")
+        assert found.rates.k == pytest.approx([0.02 / 60], rel=1e-4)
+        assert level.split()[-1] in found.notes[0]
+    with pytest.raises(InputError, match="both levels"):
+        _reduced(
+            tmp_path,
+            '[traces]\nruns = "runs.csv"\nfile = "traces.csv"\nfinal = 0.9\ninitial = 0.3\n',
+            "run,T/K\na,298.15\n",
+        )
+
+
+def test_the_columns_of_medium_are_read_back_and_fitted(tmp_path: Path) -> None:
+    """`knought medium --csv` beside a column of k is a rate table."""
+    from knought.cli import main
+
+    recipes = "".join(
+        f'[[medium.recipes]]\nrun = "{i}"\nvolumes = {{ salt = "{v} mL" }}\n'
+        for i, v in enumerate((0.5, 1, 2, 5, 10))
+    )
+    section = (
+        '[medium]\nu_volume = "0.5 %"\ntotal_volume = "50 mL"\nequilibria = ["water"]\n'
+        '[[medium.stocks]]\nname = "salt"\ncontents = { NaCl = "1 mol/L" }\nu = "0.2 %"\n'
+    )
+    (tmp_path / "recipe.toml").write_text(section + recipes, encoding="utf-8")
+    written = tmp_path / "columns.csv"
+    assert main(["medium", str(tmp_path / "recipe.toml"), "--csv", str(written)]) == 0
+    head, *rows = written.read_text(encoding="utf-8").splitlines()
+    I = np.array([float(row.split(",")[2]) for row in rows])
+    k = 3.0 * 10 ** (2 * 0.51 * np.sqrt(I) / (1 + np.sqrt(I)))
+    table = [f"{head},k/(L mol^-1 s^-1),u_r(k)/%"]
+    table += [f"{row},{each:.6g},1" for row, each in zip(rows, k, strict=True)]
+    (tmp_path / "rates.csv").write_text("\n".join(table) + "\n", encoding="utf-8")
+    rates = kn.read_rates(tmp_path / "rates.csv")
+    assert pytest.approx(I, rel=1e-12) == rates.I
+    assert rates.u_I is not None
+    assert rates.concentrations["Na^+"] == pytest.approx(I, rel=1e-4)
+    fit = kn.fit(rates, salt_law="guntelberg")
+    assert float(fit.parameters["charge_product"].value) == pytest.approx(1.0, abs=0.01)

@@ -54,6 +54,8 @@ def run(options: argparse.Namespace) -> None:
         raise InputError("--reach and --salt belong together", "give both")
     series = section.series()
     lines = [*_lines(series, labels), *_sources(section)]
+    if (series.standard_uncertainty > 0).any():
+        lines.append("± is a standard uncertainty: stocks, volumes and constants as stated")
     if options.reach is not None:
         lines += _salt(section, options.reach, options.salt, labels)
     say("\n".join(lines), layout_of(options))

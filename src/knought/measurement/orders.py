@@ -21,7 +21,7 @@ from knought.numerics.least_squares import LinearFit, RankDeficiencyError, solve
 from knought.numerics.quantiles import chi_square_survival, student_quantile
 
 if TYPE_CHECKING:
-    from collections.abc import Mapping
+    from collections.abc import Mapping, Sequence
 
     from numpy.typing import ArrayLike
 
@@ -71,7 +71,7 @@ class Orders:
     orders
         One a reactant.
     ln_k, u_ln_k
-        ln of the rate constant with these orders, and its standard uncertainty.
+        ln of the rate constant of the first group with these orders, and its standard uncertainty.
     chi_square, degrees_of_freedom
         Of the fit with the uncertainties as given; from scatter where none were.
     caveats
@@ -128,6 +128,7 @@ def partial_orders(
     rates: ArrayLike,
     concentrations: Mapping[str, ArrayLike],
     u_rates: ArrayLike | None = None,
+    groups: Sequence[int] | None = None,
 ) -> Orders:
     """Return the partial orders in all reactants from one fit of ln rate.
 
@@ -140,6 +141,9 @@ def partial_orders(
     u_rates : (n,) array_like, optional
         Standard uncertainties of the rates. Where the scatter is larger than they say (or none
         are given) u is from the scatter.
+    groups
+        Condition of each run by number, 0, 1, ...: runs of one group share T and I, and each group
+        has a rate constant of its own. One group if not given.
 
     Raises
     ------
@@ -150,19 +154,21 @@ def partial_orders(
     rate = _positive(rates, "rate")
     names = tuple(concentrations)
     columns = [_positive(concentrations[name], f"c({name})") for name in names]
-    n, p = len(rate), len(names) + 1
-    if any(len(column) != n for column in columns) or n <= p:
+    member = np.zeros(len(rate), dtype=int) if groups is None else np.asarray(groups, dtype=int)
+    blocks = (member[:, None] == np.unique(member)).astype(float)
+    n, p = len(rate), len(names) + blocks.shape[1]
+    if any(len(column) != n for column in (*columns, member)) or n <= p:
         raise InputError(
             f"{n} rates for {p} unknowns", "give each run its concentrations, and more runs"
         )
     u = None if u_rates is None else _positive(u_rates, "u(rate)") / rate
     centred = [np.log(column) for column in columns]
-    design = np.column_stack([np.ones(n), *centred])
+    design = np.column_stack([blocks, *centred])
     fit, factor, nu = _solved(design, np.log(rate), u, names)
     u_all = np.sqrt(np.diag(fit.covariance)) * factor
     orders = tuple(
         _order(name, float(fit.parameters[i]), float(u_all[i]), nu)
-        for i, name in enumerate(names, start=1)
+        for i, name in enumerate(names, start=blocks.shape[1])
     )
     return Orders(
         orders,

@@ -20,6 +20,7 @@ import numpy as np
 from knought.errors import Caveat, InputError, Problem
 from knought.measurement.reduction_amounts import Amount, amount_of
 from knought.measurement.reduction_errors import errors_of
+from knought.measurement.reduction_orders import check_orders, require_orders
 from knought.measurement.reduction_run import ReducedRun, reduce_run
 from knought.measurement.table import RateTable
 
@@ -107,6 +108,8 @@ def reduce_traces(
     divisor, order = _divisor(len(runs.run), amounts, method)
     I = runs.I if runs.I is not None else (None if media is None else media.ionic_strength)
     found = _all_runs(runs, traces, method, media, I)
+    check = check_orders(runs, amounts, method, found, I)
+    require_orders(method, check)
     errors = errors_of(runs, method, media, amounts, found)
     words = runs.words
     k = np.array([each.value for each in found]) / divisor
@@ -130,15 +133,20 @@ def reduce_traces(
             **{name: each.values for name, each in amounts.items()},
         },
     )
-    done = (*method.lines(order), *_medium_lines(runs, media))
+    done = (*method.lines(order), *check.lines, *_medium_lines(runs, media))
     notes = (*done, *errors.lines)
     account = (
         *done,
         *(f"run {each.run}: {each.line}" for each in found),
         *errors.lines,
     )
-    caveats = tuple(
-        Caveat(each.code, f"Run {one.run}: {each.message}") for one in found for each in one.caveats
+    caveats = (
+        *check.caveats,
+        *(
+            Caveat(each.code, f"Run {one.run}: {each.message}")
+            for one in found
+            for each in one.caveats
+        ),
     )
     recipes = () if media is None else media.recipes
     return Reduction(
@@ -216,7 +224,7 @@ def _checked(
     """
     amounts: dict[str, Amount] = {}
     problems: list[Problem] = []
-    for name in method.orders:
+    for name in (*method.orders, *method.open_orders):
         try:
             amounts[name] = amount_of(name, runs, media)
         except InputError as error:
@@ -232,7 +240,9 @@ def _checked(
             for run in runs.run
             if run not in traces
         ]
-    if method.kind != "first-order" and (method.optics is None or not method.orders):
+    if method.kind != "first-order" and (
+        method.optics is None or not (method.orders or method.open_orders)
+    ):
         problems.append(
             Problem(
                 "slopes need optics and orders to become rate constants",

@@ -27,6 +27,9 @@ class Method:
     orders
         Partial orders by substance. For ``"first-order"`` those of reactants in excess, by whose
         concentration k_obs is divided.
+    open_orders
+        Substances whose order is not known yet: the reduction says what the runs tell of it, and
+        stops.
     initial, final
         Known level of first-order traces at t = 0 or at the end; at most one.
     total_change
@@ -34,7 +37,7 @@ class Method:
         slope's window holds.
     blank
         Slope of a blank (drift of instrument or solution) in s^-1 with its standard uncertainty,
-        taken off every initial slope.
+        taken off every initial slope; its error is shared by all runs.
     dead_time, window
         First and last time to use, s.
     polynomial
@@ -64,6 +67,7 @@ class Method:
     repeatability: float = 0.0
     optics: Optics | None = None
     stocks: Mapping[str, float] = field(default_factory=dict)
+    open_orders: tuple[str, ...] = ()
 
     def lines(self, order: Fraction) -> tuple[str, ...]:
         """Say what is done, for an overall order of the reaction: trace, rate, k."""

@@ -55,8 +55,8 @@ class ReducedRun:
     caveats
         What a reader must know.
     by_constant, by_ligand
-        What one standard uncertainty of each equilibrium constant and ΔH does to ln(rate), by name,
-        and ∂ln(rate)/∂ln[ligand], by ligand.
+        What one standard uncertainty of each equilibrium constant, ΔH and the blank does to
+        ln(rate), by name, and ∂ln(rate)/∂ln[ligand], by ligand.
     """
 
     run: str
@@ -151,7 +151,7 @@ def _initial_slope(run: str, trace: Trace, method: Method) -> ReducedRun:
         dead_time=method.dead_time,
         window=method.window,
         order=method.polynomial,
-        blank=method.blank,
+        blank=None if method.blank is None else (method.blank[0], 0.0),
         total_change=method.total_change,
     )
     value, u = slope.value, slope.standard_uncertainty
@@ -174,6 +174,8 @@ def _initial_slope(run: str, trace: Trace, method: Method) -> ReducedRun:
         progress=slope.conversion,
         levels=(slope.level, None),
         caveats=slope.caveats,
+        # One blank is taken off every run: its error is shared, and no part of u.
+        by_constant={} if method.blank is None else {"blank": -method.blank[1] / value},
     )
 
 
@@ -204,7 +206,7 @@ def _rate(
         line=line,
         absorptivity=rate.absorptivity,
         shares=rate.shares,
-        by_constant=rate.by_constant,
+        by_constant={**slope.by_constant, **rate.by_constant},
         by_ligand=rate.by_ligand,
     )
 

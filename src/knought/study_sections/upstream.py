@@ -85,10 +85,16 @@ class TracesSection(Section):
             If an order is no number, or optics or product are wrong.
         """
         try:
-            orders = {name: Fraction(str(order)) for name, order in self.orders.items()}
+            orders = {
+                name: Fraction(str(order)) for name, order in self.orders.items() if order != "?"
+            }
         except (ValueError, ZeroDivisionError) as error:
             raise InputError(
-                Problem("is no order of reaction", "write 1, 2 or 1/2", read=str(self.orders))
+                Problem(
+                    "is no order of reaction",
+                    'write 1, 2 or "1/2", or "?" to be told what the runs say',
+                    read=str(self.orders),
+                )
             ) from error
         return Method(
             self.kind,
@@ -104,6 +110,7 @@ class TracesSection(Section):
             self.repeatability,
             self._optics(),
             dict(self.stocks),
+            tuple(name for name, order in self.orders.items() if order == "?"),
         )
 
     def _optics(self) -> Optics | None:
