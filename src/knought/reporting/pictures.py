@@ -209,13 +209,20 @@ def _regions(assessment: Assessment) -> Picture:
 
 
 def _budget(assessment: Assessment) -> Picture:
+    # In a single column the legend stands above the bars, and grows with the sources.
+    sources = {
+        source
+        for name in uncertainty_figures.BUDGETED
+        if name in assessment.headline.parameters and not assessment.headline.parameters[name].given
+        for source in assessment.budget(name).variances
+    }
     return Picture(
         "budget",
         "Which error to reduce",
         "Bars: share of each source of error in the variance of a result; a row adds up to "
         "100 %. Shares from 8 % are labelled.",
         _on_one(lambda ax: uncertainty_figures.budget_bars(assessment, ax)),
-        (2.9, 2.4),
+        (1.9 + 0.17 * len(sources), max(2.4, 0.6 + 0.16 * len(sources))),
     )
 
 
@@ -256,7 +263,7 @@ def trace_pictures(reduction: Reduction) -> tuple[Picture, ...]:
         if reduction.method.kind == "first-order"
         else "the polynomial, dashed the slope at t = 0"
     )
-    narrow, wide = (1.75 * -(-len(shown) // across(n)) for n in (SINGLE_COLUMN, DOUBLE_COLUMN))
+    narrow, wide = (1.9 * -(-len(shown) // across(n)) for n in (SINGLE_COLUMN, DOUBLE_COLUMN))
     return (
         Picture(
             "traces",

@@ -53,10 +53,10 @@ def trace_panels(reduction: Reduction, figure: Figure) -> None:
         one = reduction.runs[place]
         _trace(ax, reduction.traces[one.run], one)
         T = reduction.rates.T[place]
-        said = f"run {one.run}: {T:.2f} K"
+        said = f"run {one.run}\n{T:.2f} K"
         if reduction.rates.I is not None:
             said += f", {reduction.rates.I[place]:.3g} mol/L"
-        ax.set_title(said, fontsize=7.5)
+        ax.set_title(said, fontsize=7.0)
     for ax in axes.flat[len(shown) :]:
         ax.set_visible(False)
     for ax in axes[:, 0]:
