@@ -15,6 +15,7 @@ from knought.reporting import (
     uncertainty_figures,
 )
 from knought.reporting.style import DOUBLE_COLUMN, SINGLE_COLUMN, STYLE, blank_figure
+from knought.reporting.uncertainty_tables import BUDGETED
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -212,7 +213,7 @@ def _budget(assessment: Assessment) -> Picture:
     # In a single column the legend stands above the bars, and grows with the sources.
     sources = {
         source
-        for name in uncertainty_figures.BUDGETED
+        for name in BUDGETED
         if name in assessment.headline.parameters and not assessment.headline.parameters[name].given
         for source in assessment.budget(name).variances
     }
