@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import replace
+from fractions import Fraction
 
 import numpy as np
 import pytest
@@ -14,7 +15,7 @@ from knought.fitting.budget import budget
 from knought.fitting.fit import fit
 from knought.fitting.influence import influence
 from knought.fitting.monte_carlo import monte_carlo
-from knought.fitting.observations import observe
+from knought.fitting.observations import Observations, observe
 from knought.fitting.replicates import replicates
 from knought.fitting.surface_fit import SurfaceFit, fit_surface
 from tests.fitting.test_shared_errors import study
@@ -142,19 +143,30 @@ def test_weights_that_do_not_settle_are_said_not_to(monkeypatch: pytest.MonkeyPa
 
 def test_the_summary_says_what_is_not_included() -> None:
     plain = study()
+    offset = kn.SharedError("probe offset", "temperature-offset", 0.2)
+    by_probe = replace(plain, u_T=frozen(np.full(16, 0.1)))
     named = [
-        (plain, "errors of temperature and ionic strength."),
-        (replace(plain, u_T=frozen(np.full(16, 0.1))), "strength that runs share."),
-        (replace(plain, u_given=False), "Random errors of temperature and ionic strength are in"),
-        (replace(plain, I=None, u_given=True), "errors of temperature."),
+        (plain, ": errors of temperature and ionic strength."),
+        (by_probe, ": errors of temperature that runs share, errors of ionic strength."),
+        (
+            replace(plain, own=(own("ionic-strength-factor", 0.01),), shared=(offset,)),
+            ": errors of each run's temperature, errors of ionic strength that runs share.",
+        ),
+        (
+            replace(plain, u_given=False),
+            ": errors of temperature and ionic strength that runs share.",
+        ),
+        (replace(plain, I=None), ": errors of temperature."),
     ]
     for seen, words in named:
         law = "none" if seen.I is None else "guntelberg"
         found = fit_surface(seen, salt_law=law, scatter="given" if seen.u_given else None)
         assert isinstance(found, SurfaceFit)
         assert words in found.excludes
-    offset = kn.SharedError("probe offset", "temperature-offset", 0.2)
-    assert not fit_surface(replace(plain, shared=(offset,)), salt_law="guntelberg").excludes
+    whole = replace(by_probe, u_I=frozen(0.01 * plain.ionic_strength))
+    scale = kn.SharedError("salt scale", "ionic-strength-factor", 0.02)
+    whole = replace(whole, shared=(offset, scale))
+    assert not fit_surface(whole, salt_law="guntelberg").excludes
 
 
 def test_a_table_splits_named_errors_into_shared_ones_and_those_of_each_run() -> None:
@@ -162,3 +174,29 @@ def test_a_table_splits_named_errors_into_shared_ones_and_those_of_each_run() ->
     seen = observe(rates, [*errors, own("factor", 0.01)])
     assert [error.name for error in seen.shared] == ["stock of b"]
     assert [error.name for error in seen.own] == ["reading"]
+
+
+def test_shared_errors_that_explain_all_the_scatter_leave_a_fit() -> None:
+    """Five runs of which known shared errors explain the misfit of four parameters: the independent
+    scatter comes out as nothing, and the study was refused as undetermined.
+    """
+    I = np.array([0.0218708, 0.0049864, 0.02256425, 0.09845039, 0.02229626])
+    seen = Observations(
+        frozen(np.array([-0.09082141, 0.97673004, 0.6897401, 0.28617676, 1.44112649])),
+        frozen(np.full(5, 0.01)),
+        frozen(np.array([288.33589951, 298.43057108, 298.26582784, 298.28412256, 308.36985851])),
+        frozen(I),
+        frozen(np.full(5, 0.1)),
+        frozen(0.03 * I),
+        u_given=True,
+        order=Fraction(2),
+        shared=(
+            kn.SharedError("absorptivity", "factor", 0.03),
+            kn.SharedError("probe offset", "temperature-offset", 0.2),
+            kn.SharedError("salt scale", "ionic-strength-factor", 0.02),
+        ),
+    )
+    found = fit_surface(seen, salt_law="sit")
+    assert found.scatter.kind == "given"
+    assert np.all(found.standard_errors_scatter < found.standard_errors_given)
+    assert np.all(np.isfinite(found.standard_errors_scatter))

@@ -19,6 +19,7 @@ if TYPE_CHECKING:
 __all__ = [
     "design_caveats",
     "domain_caveats",
+    "excluded",
     "extrapolation",
     "refuse_undetermined",
     "require_levels",
@@ -232,6 +233,46 @@ def uncertainty_caveats(seen: Observations) -> tuple[Caveat, ...]:
             "Compare with the fit of k itself.",
         ),
     )
+
+
+def excluded(seen: Observations, *, stated: bool, salt: bool) -> str:
+    """Say which errors of T and I no ± includes, because nothing is stated of them.
+
+    Parameters
+    ----------
+    seen
+        The runs.
+    stated
+        Whether u(k) are stated; random errors of T and I are in the scatter otherwise.
+    salt
+        Whether the surface depends on ionic strength.
+
+    Returns
+    -------
+    str
+        A sentence; empty where everything is stated.
+    """
+    missing: dict[str, list[str]] = {}
+    for name, column, start in (
+        ("temperature", seen.u_T, "temperature"),
+        ("ionic strength", seen.u_I, "ionic-strength"),
+    ):
+        if name == "ionic strength" and (seen.I is None or not salt):
+            continue
+        own = column is not None or any(error.kind.startswith(start) for error in seen.own)
+        shared = any(error.kind.startswith(start) for error in seen.shared)
+        which = {
+            (False, False): "errors of {}",
+            (True, False): "errors of {} that runs share",
+            (False, True): "errors of each run's {}",
+        }.get((own or not stated, shared))
+        if which is not None:
+            missing.setdefault(which, []).append(name)
+    if not missing:
+        return ""
+    listed = ", ".join(which.format(" and ".join(names)) for which, names in missing.items())
+    before = "" if stated else "The scatter holds what errors of T and I differ between runs. "
+    return f"{before}Not included, as none are stated: {listed}."
 
 
 def extrapolation(

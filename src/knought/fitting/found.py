@@ -16,7 +16,7 @@ import numpy as np
 
 from knought.chemistry.constants import GAS_CONSTANT as R
 from knought.chemistry.quantities import Quantity, quantity
-from knought.fitting.checks import extrapolation
+from knought.fitting.checks import excluded, extrapolation
 from knought.fitting.estimate import Estimate
 from knought.laws.activation import activation_rows
 from knought.laws.surface import Rows
@@ -125,18 +125,7 @@ class Found:
     @property
     def excludes(self) -> str:
         """What the standard uncertainties leave out because nothing is stated of it, a sentence."""
-        seen = self.observations
-        if any(error.kind != "factor" for error in seen.shared):
-            return ""
-        conditions = "temperature" if seen.I is None else "temperature and ionic strength"
-        if seen.has_abscissa_errors:
-            return f"Not included, as none are stated: errors of {conditions} that runs share."
-        if self.scatter.stated:
-            return f"Not included, as none are stated: errors of {conditions}."
-        return (
-            f"Random errors of {conditions} are in the scatter; not included, as none are stated: "
-            "those that runs share."
-        )
+        return excluded(self.observations, stated=self.scatter.stated, salt=self.describes_salt)
 
     @cached_property
     def parameters(self) -> Mapping[str, Estimate]:

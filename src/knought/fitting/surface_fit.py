@@ -54,8 +54,10 @@ DEFAULT_REFERENCE_TEMPERATURE = 298.15
 _SCALE_SETTLED = 1e-12
 _MOST_SCALINGS = 200
 
-#: Data that a law passes through exactly have no scatter; their u is then this part of that given.
-_LEAST_SCALE = 1e-12
+#: Data that a law passes through exactly, or whose misfit shared errors explain alone, have no
+#: scatter; their u is then this part of that given. Much less, and the weights of what is known of
+#: the shared errors would drown.
+_LEAST_SCALE = 1e-6
 
 
 @dataclass(frozen=True, eq=False)
@@ -275,7 +277,7 @@ def scatter_scale(
         scale *= factor
         if abs(factor - 1) < _SCALE_SETTLED or scale < _LEAST_SCALE:
             break
-    return scale, scaled
+    return max(scale, _LEAST_SCALE), scaled
 
 
 @dataclass(frozen=True, eq=False)

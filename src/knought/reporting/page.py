@@ -196,7 +196,7 @@ def _methods(report: Report) -> list[str]:
         f"ln k was fitted by generalised least squares to {seen.runs} runs with "
         f"{len(found.surface.parameters)} parameters, linear in all of them; every derived "
         "quantity comes from their joint covariance.",
-        f"The uncertainties are standard uncertainties {found.includes}.",
+        f"The uncertainties are standard uncertainties {found.includes}. {found.excludes}".strip(),
     ]
     if found.surface.salt_law.needs_water:
         sentences.append(

@@ -146,6 +146,7 @@ def uncertainty_record(found: Found) -> dict[str, Any]:
     scatter = found.scatter
     made: dict[str, Any] = {
         "means": f"standard uncertainty, {found.includes}",
+        "not_included": found.excludes or None,
         "kind": scatter.kind,
         "chi_square": scatter.chi_square,
         "degrees_of_freedom": scatter.degrees_of_freedom,
