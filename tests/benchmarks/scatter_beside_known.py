@@ -37,7 +37,7 @@ def coverage(nu: int, ratios: tuple[float, ...] = RATIOS, level: float = 0.95) -
     return held
 
 
-def flat(share: FloatArray, degrees_of_freedom: int) -> FloatArray:
+def flat(share: FloatArray, degrees_of_freedom: float) -> FloatArray:
     """ln g of the prior that is flat in ln σ."""
     return np.zeros_like(share)
 

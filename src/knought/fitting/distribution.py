@@ -73,7 +73,7 @@ class ParameterDistribution:
             known = np.einsum("np,pq,nq->n", matrix, self.known, matrix)
             known = np.clip(known, 0, variances[0])
             return scatter_beside_known(
-                locations[0], variances[0] - known, known, int(self.degrees_of_freedom)
+                locations[0], variances[0] - known, known, self.degrees_of_freedom
             )
         scales = np.sqrt(variances)
         return Mixture(self.weights, locations, scales, self.degrees_of_freedom)

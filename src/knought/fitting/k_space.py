@@ -17,14 +17,10 @@ import numpy as np
 from knought.arrays import frozen
 from knought.errors import InputError
 from knought.fitting.fit import resolve
+from knought.fitting.independent_scatter import headline_distribution, independent_scatter
 from knought.fitting.observations import Observations, observe
 from knought.fitting.scatter import judge_scatter
-from knought.fitting.surface_fit import (
-    SurfaceFit,
-    fit_surface,
-    headline_distribution,
-    scatter_scale,
-)
+from knought.fitting.surface_fit import SurfaceFit, fit_surface
 from knought.numerics.least_squares import LinearFit, solve
 
 if TYPE_CHECKING:
@@ -105,18 +101,16 @@ def fit_in_k(
         return _gauss_newton(problem, start.solution.parameters)
 
     solution = solved(errors)
-    scale, scaled = scatter_scale(solution, errors, solved)
+    independent = independent_scatter(solution, errors, solved)
     judged = judge_scatter(
         solution.chi_square, solution.degrees_of_freedom, stated=seen.u_given, choice=scatter
     )
-    judged = replace(judged, shared_scale=scale if errors.shared_sources else None)
+    judged = independent.told(judged)
     return replace(
         start,
         solution=solution,
-        scatter_solution=scaled,
-        distribution=headline_distribution(
-            start.surface, solution, scaled, judged, bool(errors.shared_sources)
-        ),
+        scatter_solution=independent.solution,
+        distribution=headline_distribution(start.surface, solution, independent, judged),
         scatter=judged,
     )
 

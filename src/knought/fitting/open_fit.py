@@ -314,7 +314,7 @@ def _collected(
 ) -> OpenFit:
     cells, scales, p = solutions.means.shape[1:]
     # A shared error keeps its size, so that scatter and shared errors have no common factor.
-    judged = replace(judged, shared_scale=None)
+    judged = replace(judged, shared_scale=None, shared_degrees_of_freedom=None)
     weights = solutions.weights[0]
     kept = _kept(weights)
     highest = float(solutions.log_weight.max())

@@ -49,7 +49,9 @@ class Scatter:
         ``"enlarged"`` (stated, but too small to explain the scatter).
     shared_scale
         Where runs share errors, whose size the scatter does not tell: the factor on independent
-        uncertainties alone that makes χ² equal to its degrees of freedom.
+        uncertainties alone that explains the scatter.
+    shared_degrees_of_freedom
+        Degrees of freedom to which that factor is known.
     """
 
     chi_square: float
@@ -57,6 +59,7 @@ class Scatter:
     stated: bool
     kind: Literal["given", "scatter", "enlarged"]
     shared_scale: float | None = None
+    shared_degrees_of_freedom: float | None = None
 
     @property
     def reduced_chi_square(self) -> float:
@@ -91,14 +94,17 @@ class Scatter:
     @property
     def headline_degrees_of_freedom(self) -> float:
         """Degrees of freedom of the headline ±: infinite where u is stated and holds."""
-        return float(self.degrees_of_freedom) if self.from_scatter else math.inf
+        if not self.from_scatter:
+            return math.inf
+        known = self.shared_degrees_of_freedom
+        return float(self.degrees_of_freedom) if known is None else known
 
     @property
     def words(self) -> str:
         """What the ± is made of, as a phrase."""
         if self.kind == "given":
             return "from the stated uncertainties of k"
-        nu = self.degrees_of_freedom
+        nu = f"{self.headline_degrees_of_freedom:.3g}"
         if self.kind == "scatter":
             return f"from the scatter of the runs about the fit, {nu} degrees of freedom"
         return (

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 from fractions import Fraction
 from typing import TYPE_CHECKING
 
@@ -11,8 +11,8 @@ import numpy as np
 from knought.arrays import FloatArray, frozen
 from knought.errors import InputError
 from knought.fitting import checks
-from knought.fitting.distribution import ParameterDistribution
 from knought.fitting.found import Found
+from knought.fitting.independent_scatter import headline_distribution, independent_scatter
 from knought.fitting.observations import Observations, observe
 from knought.fitting.run_errors import settle
 from knought.fitting.scatter import judge_scatter
@@ -28,36 +28,17 @@ from knought.numerics.least_squares import (
 )
 
 if TYPE_CHECKING:
-    from collections.abc import Callable
-
     from numpy.typing import ArrayLike
 
     from knought.fitting.run_errors import RunErrors
-    from knought.fitting.scatter import Scatter, ScatterChoice
+    from knought.fitting.scatter import ScatterChoice
     from knought.laws.salt import SaltLaw
     from knought.measurement.table import RateTable
 
-__all__ = [
-    "DEFAULT_TEMPERATURE_LAW",
-    "ManySurfaceFits",
-    "SurfaceFit",
-    "fit_many",
-    "fit_surface",
-    "headline_distribution",
-    "scatter_scale",
-]
+__all__ = ["DEFAULT_TEMPERATURE_LAW", "ManySurfaceFits", "SurfaceFit", "fit_many", "fit_surface"]
 
 DEFAULT_TEMPERATURE_LAW = "eyring"
 DEFAULT_REFERENCE_TEMPERATURE = 298.15
-
-#: The scale of the scatter is iterated until it moves by less than this fraction.
-_SCALE_SETTLED = 1e-12
-_MOST_SCALINGS = 200
-
-#: Data that a law passes through exactly, or whose misfit shared errors explain alone, have no
-#: scatter; their u is then this part of that given. Much less, and the weights of what is known of
-#: the shared errors would drown.
-_LEAST_SCALE = 1e-6
 
 
 @dataclass(frozen=True, eq=False)
@@ -185,19 +166,17 @@ def fit_surface(
 
     try:
         solution, errors, unsettled = settle(seen, surface, solved)
-        scale, scaled = scatter_scale(solution, errors, solved)
+        independent = independent_scatter(solution, errors, solved)
     except RankDeficiencyError as found:
         checks.refuse_undetermined(found, surface)
     judged = judge_scatter(
         solution.chi_square, solution.degrees_of_freedom, stated=seen.u_given, choice=scatter
     )
-    judged = replace(judged, shared_scale=scale if errors.shared_sources else None)
+    judged = independent.told(judged)
     return SurfaceFit(
         observations=seen,
         surface=surface,
-        distribution=headline_distribution(
-            surface, solution, scaled, judged, bool(errors.shared_sources)
-        ),
+        distribution=headline_distribution(surface, solution, independent, judged),
         scatter=judged,
         errors=errors,
         caveats=(
@@ -207,77 +186,8 @@ def fit_surface(
             *unsettled,
         ),
         solution=solution,
-        scatter_solution=scaled,
+        scatter_solution=independent.solution,
     )
-
-
-def headline_distribution(
-    surface: Surface,
-    solution: LinearFit,
-    scaled: LinearFit | None,
-    judged: Scatter,
-    shares_errors: bool,
-) -> ParameterDistribution:
-    """Return the distribution of the parameters behind the headline ±.
-
-    Where the scatter gives u and errors are shared besides, only what the scatter tells has its
-    degrees of freedom; an effective number of them (JCGM 100, G.4) holds too little for few.
-    """
-    chosen = scaled if judged.from_scatter and scaled is not None else solution
-    mixed = judged.from_scatter and shares_errors
-    common = chosen.gain[:, len(chosen.residuals) :]
-    return ParameterDistribution(
-        names=surface.parameters,
-        weights=np.ones(1),
-        means=chosen.parameters[None],
-        covariances=chosen.covariance[None],
-        degrees_of_freedom=judged.headline_degrees_of_freedom,
-        known=frozen(common @ common.T) if mixed else None,
-    )
-
-
-def scatter_scale(
-    solution: LinearFit, errors: RunErrors, solved: Callable[[RunErrors], LinearFit]
-) -> tuple[float, LinearFit | None]:
-    """Return the factor on independent uncertainties that explains the scatter, and the fit there.
-
-    Without shared errors it is the Birge ratio; with them it is iterated until the generalised χ²
-    equals its degrees of freedom, as shared errors keep their size.
-
-    Parameters
-    ----------
-    solution
-        The fit with uncertainties as given.
-    errors
-        The errors that it used.
-    solved
-        Fits with other errors.
-
-    Returns
-    -------
-    float
-        The factor; nan without degrees of freedom.
-    LinearFit or None
-        The fit with it.
-    """
-    nu = solution.degrees_of_freedom
-    if nu <= 0:
-        return float("nan"), None
-    scale = float(np.sqrt(solution.chi_square / nu))
-    if not errors.shared_sources:
-        return scale, replace(
-            solution,
-            covariance=frozen(solution.covariance * scale**2),
-            gain=frozen(solution.gain * scale),
-        )
-    scaled = solution
-    for _ in range(_MOST_SCALINGS):
-        scaled = solved(errors.scaled(max(scale, _LEAST_SCALE)))
-        factor = float(np.sqrt(scaled.chi_square / nu))
-        scale *= factor
-        if abs(factor - 1) < _SCALE_SETTLED or scale < _LEAST_SCALE:
-            break
-    return max(scale, _LEAST_SCALE), scaled
 
 
 @dataclass(frozen=True, eq=False)

@@ -67,6 +67,8 @@ class LinearFit:
         order; gain gainᵀ is the covariance, so that its squares are the budget of every result.
     residuals : (n,) ndarray
         y - X θ, in the unit of y; shared errors are not taken out of them.
+    independent : (n,) ndarray
+        The same with the shared errors found taken out, over u.
     leverage : (n,) ndarray
         Diagonal of the projection of the whitened observations.
     chi_square
@@ -82,6 +84,7 @@ class LinearFit:
     estimator: FloatArray
     gain: FloatArray
     residuals: FloatArray
+    independent: FloatArray
     leverage: FloatArray
     chi_square: float
     degrees_of_freedom: int
@@ -154,6 +157,7 @@ def solve(
         estimator=frozen(gain[:, :n] * weight),
         gain=frozen(gain),
         residuals=frozen(residual[:n] / weight + shared @ (solution / scale)[p:]),
+        independent=frozen(residual[:n]),
         leverage=frozen(np.sum(q[:n] ** 2, axis=1)),
         chi_square=float(residual @ residual),
         degrees_of_freedom=n + r - p,

@@ -21,6 +21,7 @@ The interval grows with s. ``tests/benchmarks/scatter_beside_known.py`` prints t
 
 from __future__ import annotations
 
+import math
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -49,7 +50,7 @@ def scatter_beside_known(
     locations: FloatArray,
     scatter_variances: FloatArray,
     known_variances: FloatArray,
-    degrees_of_freedom: int,
+    degrees_of_freedom: float,
 ) -> Mixture:
     """Return what is known of results whose errors are partly of a size known only from scatter.
 
@@ -90,8 +91,15 @@ def scatter_beside_known(
     )
 
 
-def _log_prior(share: FloatArray, degrees_of_freedom: int) -> FloatArray:
-    """Return ln g, given a²/(b² σ²)."""
+def _log_prior(share: FloatArray, degrees_of_freedom: float) -> FloatArray:
+    """Return ln g, given a²/(b² σ²); between whole ν it is interpolated."""
+    lower = math.floor(degrees_of_freedom)
+    between = degrees_of_freedom - lower
+    found = (1 - between) * _log_prior_at(share, lower)
+    return found + between * _log_prior_at(share, lower + 1) if between else found
+
+
+def _log_prior_at(share: FloatArray, degrees_of_freedom: int) -> FloatArray:
     if degrees_of_freedom not in _FEW:
         return np.asarray(np.log1p(share))
     c, h = _FEW[degrees_of_freedom]

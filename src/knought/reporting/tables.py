@@ -102,9 +102,9 @@ def meaning_of_uncertainty(found: Found) -> str:
     if isinstance(found, OpenFit):
         coverage += ", integrated over the open salt law"
     elif found.distribution.known is not None:
+        nu = found.scatter.headline_degrees_of_freedom
         coverage += (
-            f", the scatter known to {found.scatter.degrees_of_freedom} degrees of freedom beside "
-            "shared errors of known size"
+            f", the scatter known to {nu:.3g} degrees of freedom beside shared errors of known size"
         )
     elif found.scatter.from_scatter:
         coverage += f", Student t with {found.scatter.degrees_of_freedom} degrees of freedom"
