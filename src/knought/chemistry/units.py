@@ -15,6 +15,7 @@ from __future__ import annotations
 import difflib
 from dataclasses import dataclass, field
 from fractions import Fraction
+from functools import lru_cache
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -161,6 +162,18 @@ def parse_unit(text: str) -> Unit:
     Returns
     -------
     Unit
+
+    Raises
+    ------
+    InputError
+        If the text is no unit of the list, or could be read in two ways.
+    """
+    return _parsed(text)
+
+
+@lru_cache(maxsize=512)
+def _parsed(text: str) -> Unit:
+    """Read a unit once: a compilation names the same few in each of its rows.
 
     Raises
     ------

@@ -13,7 +13,6 @@ from __future__ import annotations
 
 import math
 from dataclasses import dataclass, field
-from fractions import Fraction
 from typing import TYPE_CHECKING
 
 from knought.chemistry.numbers import (
@@ -22,6 +21,7 @@ from knought.chemistry.numbers import (
     decimal_evidence,
     read_number,
 )
+from knought.chemistry.order_text import parse_order
 from knought.discussion.literature_headers import Heading, read_heading
 from knought.discussion.literature_row import Row, values_of_row
 from knought.discussion.literature_spread import SpreadMeaning, parse_spread_meaning
@@ -37,6 +37,7 @@ from knought.measurement.reading.grid import TYPED, TextGrid, column_letter, pac
 from knought.measurement.reading.opening import open_bytes
 
 if TYPE_CHECKING:
+    from fractions import Fraction
     from pathlib import Path
 
     from knought.chemistry.numbers import DecimalMark
@@ -48,6 +49,9 @@ __all__ = ["read_literature", "read_literature_text"]
 _SEARCHED_ROWS = 30
 
 _FEWEST_HEADINGS = 2
+
+#: Reading stops after this many problems.
+_MOST_PROBLEMS = 100
 
 
 def read_literature(
@@ -210,6 +214,8 @@ def _read(grid: TextGrid, uncertainty_means: str | None) -> tuple[LiteratureValu
     for row, cells in grid.rows():
         if row > header_row and not (cells and cells[0].lstrip().startswith("#")):
             values += _row(reading, row, cells)
+        if len(reading.problems) >= _MOST_PROBLEMS:
+            break
     if reading.problems:
         raise InputError(reading.problems)
     if not values:
@@ -332,9 +338,10 @@ def _order(reading: _Reading, row: int, words: dict[str, str]) -> Fraction | Non
     if not said:
         return None
     try:
-        return Fraction(said)
-    except (ValueError, ZeroDivisionError):
-        reading.problem("is no order of reaction", "write 1, 2 or 3/2", row, "order", said)
+        return parse_order(said)
+    except InputError as error:
+        first = error.problems[0]
+        reading.problem(first.what, first.remedy, row, "order", said)
         return None
 
 

@@ -8,6 +8,7 @@ from typing import Literal
 
 from pydantic import Field
 
+from knought.chemistry.order_text import parse_order
 from knought.discussion.candidates import Candidate, Expectation
 from knought.study_sections.base import (
     Diffusivity,
@@ -78,14 +79,7 @@ class CandidateSection(Section):
 
     @staticmethod
     def _order(order: float | str) -> Fraction:
-        from knought.errors import InputError, Problem
-
-        try:
-            return Fraction(str(order))
-        except (ValueError, ZeroDivisionError) as error:
-            raise InputError(
-                Problem("is no order of reaction", "write 1, 2 or 3/2", read=str(order))
-            ) from error
+        return parse_order(str(order))
 
     def _expectations(self) -> tuple[Expectation, ...]:
         found = []

@@ -4,12 +4,12 @@ from __future__ import annotations
 
 import tomllib
 from dataclasses import dataclass
-from fractions import Fraction
 from pathlib import Path
 from typing import TYPE_CHECKING, Annotated, Any
 
 from pydantic import BeforeValidator, ConfigDict, Field, ValidationError
 
+from knought.chemistry.order_text import parse_order
 from knought.errors import InputError, Problem
 from knought.measurement.absorbance import Optics
 from knought.measurement.complexed_product import ComplexedProduct
@@ -86,9 +86,9 @@ class TracesSection(Section):
         """
         try:
             orders = {
-                name: Fraction(str(order)) for name, order in self.orders.items() if order != "?"
+                name: parse_order(str(order)) for name, order in self.orders.items() if order != "?"
             }
-        except (ValueError, ZeroDivisionError) as error:
+        except InputError as error:
             raise InputError(
                 Problem(
                     "is no order of reaction",

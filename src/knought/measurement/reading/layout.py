@@ -142,6 +142,8 @@ def find_layout(grid: TextGrid) -> Layout | None:
 
 def is_header_row(grid: TextGrid, row: int, cells: Sequence[str]) -> bool:
     """Whether a row reads as the header of another table."""
+    if sum(not cell.isspace() for cell in cells if cell) < _FEWEST_HEADERS:
+        return False
     return _read(grid, row, _titles(cells)).is_header
 
 
