@@ -292,3 +292,35 @@ def test_the_columns_of_medium_are_read_back_and_fitted(tmp_path: Path) -> None:
     assert rates.concentrations["Na^+"] == pytest.approx(I, rel=1e-4)
     fit = kn.fit(rates, salt_law="guntelberg")
     assert float(fit.parameters["charge_product"].value) == pytest.approx(1.0, abs=0.01)
+
+
+_SPOILT = (
+    "0", "-1", "1e308", "nan", '"1 mol/L"', '"0 mL"', '"-3 mL"', '""', "{}", "[]", "true",
+    '"1e300 mmol/L"', '"-5 %"', '"inf s"', '{ NaCl = "1 mol/L" }', '{ "Na^+" = "1 mol/L" }',
+    '["water", "sodium sulfate"]', '{ "M^2-" = 0 }', '{ "M^2-" = "1/0" }', '{ "M^2-" = "1e9" }',
+)  # fmt: skip
+
+
+def test_spoilt_studies_are_refused_or_reduced_but_never_break(tmp_path: Path) -> None:
+    from knought.numerics.seeds import generator
+
+    random = generator(66_016)
+    lines = _STUDY.splitlines()
+    keys = [i for i, line in enumerate(lines) if "=" in line]
+    cells = ("", "-1", "0", "nan", "1e308", "abc", "V(water)/mL", "1:30", "1e-300", "no", '"')
+    refused = 0
+    for _ in range(50):
+        spoilt, runs = list(lines), [row.split(",") for row in _RUNS.splitlines()]
+        if random.random() < 0.7:
+            at = keys[int(random.integers(len(keys)))]
+            spoilt[at] = (
+                f"{spoilt[at].split('=')[0]}= {_SPOILT[int(random.integers(len(_SPOILT)))]}"
+            )
+        else:
+            row = runs[int(random.integers(len(runs)))]
+            row[int(random.integers(len(row)))] = cells[int(random.integers(len(cells)))]
+        try:
+            _reduced(tmp_path, "\n".join(spoilt), "\n".join(",".join(row) for row in runs) + "\n")
+        except InputError:
+            refused += 1
+    assert 20 < refused < 50

@@ -99,3 +99,8 @@ def test_a_table_of_runs_with_unknown_or_missing_columns_is_refused(
 def test_a_file_that_is_not_there_is_said(tmp_path: Path) -> None:
     with pytest.raises(InputError, match=r"gone\.csv"):
         read_traces(tmp_path / "gone.csv")
+
+
+def test_a_signal_beyond_any_instrument_is_refused() -> None:
+    with pytest.raises(InputError, match="larger than any instrument"):
+        Trace("1", np.array([0.0, 1.0]), np.array([1.0, 1e308]))

@@ -112,9 +112,10 @@ def reduce_traces(
     require_orders(method, check)
     errors = errors_of(runs, method, media, amounts, found)
     words = runs.words
-    k = np.array([each.value for each in found]) / divisor
     beside = np.hypot(errors.own, method.repeatability)
-    u_k = np.hypot(np.array([each.u for each in found]) / divisor, k * beside)
+    with np.errstate(over="ignore", invalid="ignore"):  # the table refuses what is not finite
+        k = np.array([each.value for each in found]) / divisor
+        u_k = np.hypot(np.array([each.u for each in found]) / divisor, k * beside)
     rates = RateTable(
         k=k,
         T=runs.T,
@@ -143,7 +144,8 @@ def reduce_traces(
     caveats = (
         *check.caveats,
         *(
-            Caveat(each.code, f"Run {one.run}: {each.message}")
+            # Times of traces were read into seconds.
+            Caveat(each.code, f"Run {one.run}: {each.message.replace(' (unit of time)', ' s')}")
             for one in found
             for each in one.caveats
         ),

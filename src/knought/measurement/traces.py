@@ -15,6 +15,9 @@ if TYPE_CHECKING:
 
 __all__ = ["Trace", "checked_trace"]
 
+#: Squares of larger numbers are no longer finite.
+_LARGEST = 1e100
+
 
 @dataclass(frozen=True, eq=False)
 class Trace:
@@ -85,6 +88,10 @@ def checked_trace(
         )
     if not (np.isfinite(t).all() and np.isfinite(y).all()):
         raise InputError(f"{named}a time or signal is not a number", "leave such points out")
+    if max(np.abs(t).max(initial=0.0), np.abs(y).max(initial=0.0)) > _LARGEST:
+        raise InputError(
+            f"{named}a time or signal is larger than any instrument reads", "check the numbers"
+        )
     steps = np.diff(t)
     if np.any(steps <= 0):
         at = int(np.argmax(steps <= 0))

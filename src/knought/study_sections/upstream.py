@@ -35,6 +35,9 @@ Centimetre = Annotated[float, BeforeValidator(in_unit("cm"))]
 Second = Annotated[float, BeforeValidator(in_unit("s"))]
 PerSecond = Annotated[float, BeforeValidator(in_unit("s^-1"))]
 
+#: No rate law has a higher partial order.
+_HIGHEST_ORDER = 10
+
 
 class OpticsSection(Section):
     """``[traces.optics]``: what makes absorbance a concentration."""
@@ -96,6 +99,14 @@ class TracesSection(Section):
                     read=str(self.orders),
                 )
             ) from error
+        if any(abs(order) > _HIGHEST_ORDER for order in orders.values()):
+            raise InputError(
+                Problem(
+                    f"is no order of reaction: beyond {_HIGHEST_ORDER}",
+                    "check the orders",
+                    read=str(self.orders),
+                )
+            )
         return Method(
             self.kind,
             orders,
