@@ -40,6 +40,25 @@ file = "rates.xlsx"                        # or .csv, .tsv; beside this file
 # uncertainty_means = "standard deviation" # what ± means, where the header does not say
 # decimal = ","                            # where the numbers of a text file do not show it
 
+# Traces instead of rate constants: leave [rates] out. runs.csv: run, t/°C, V(stock name)/mL, ...;
+# traces.csv: t/s and a column a run. `knought reduce` shows what comes of them.
+# [medium]
+# total_volume = "25 mL"
+# equilibria = ["water", "phosphate"]
+# [[medium.stocks]]
+# name = "salt"
+# contents = { NaClO4 = "1.000 mol/L" }
+# u = "0.2 %"
+# [traces]
+# runs = "runs.csv"
+# file = "traces.csv"
+# kind = "initial-slope"                   # first-order, slopes
+# orders = { A = 1, B = "?" }              # "?" is told, and not chosen
+# dead_time = "4 s"
+# [traces.optics]
+# absorptivity = "21500 L mol^-1 cm^-1"
+# u_absorptivity = "1 %"
+
 [reaction]
 # What enters the rate-determining step, with charges. If you know it, say it: nothing narrows
 # the rate constant at zero ionic strength more.

@@ -151,3 +151,16 @@ def test_the_order_of_equilibria_does_not_matter() -> None:
     for species, c in one.concentrations.items():
         assert other.concentrations[species] == pytest.approx(c, rel=1e-9)
     assert np.isclose(one.ionic_strength, other.ionic_strength, rtol=1e-12)
+
+
+@pytest.mark.parametrize("salt", ["MgSO4", "Na2SO4"])
+def test_a_law_far_out_of_its_domain_ends_in_words(salt: str) -> None:
+    # Davies's law turns over beyond 1 mol/L and drives constants out of all bounds.
+    every = [each for name in NAMES for each in known_equilibria(name)]
+    with pytest.raises(InputError, match=r"not solved|no ionic strength"):
+        prepare({salt: 30.0, "HCl": 5.0}, 298.15, every)
+
+
+def test_more_than_a_solution_holds_is_refused() -> None:
+    with pytest.raises(InputError, match="more than any solution"):
+        prepare({"NaCl": 1e5})

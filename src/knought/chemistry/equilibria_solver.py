@@ -163,7 +163,17 @@ class _System:
                 order = wanted
                 basis, dependent, coupling, shift = self._basis(order, constants)
                 totals = self.start[basis] + coupling.T @ self.start[dependent]
-            ln_c, worst = _step(ln_c, basis, dependent, coupling, shift, totals)
+            try:
+                with np.errstate(over="ignore", invalid="ignore"):  # told below
+                    ln_c, worst = _step(ln_c, basis, dependent, coupling, shift, totals)
+            except np.linalg.LinAlgError:
+                worst = np.nan
+            if not (np.isfinite(worst) and np.isfinite(ln_c).all()):
+                raise InputError(
+                    "the equilibria were not solved: a concentration ran out of all bounds",
+                    "check constants and concentrations; the activity law may be far out of its "
+                    "domain",
+                )
             # Within the goal, go on while rounding still lets it improve.
             if worst < BALANCE and worst >= 0.3 * best:
                 self.ln_c = ln_c

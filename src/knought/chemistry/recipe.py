@@ -23,6 +23,9 @@ if TYPE_CHECKING:
 
 __all__ = ["Recipe", "Stock"]
 
+#: No solution holds more of anything, mol/L; water itself has 55.
+_MOST = 100.0
+
 
 @dataclass(frozen=True, eq=False)
 class Stock:
@@ -183,6 +186,15 @@ def _ions(contents: Mapping[str, float], where: str) -> dict[Species, float]:
                 Problem(
                     f"{where}: the concentration of {substance} is {concentration:g} mol/L",
                     "concentrations are at least zero",
+                )
+            )
+            continue
+        if concentration > _MOST:
+            problems.append(
+                Problem(
+                    f"{where}: {concentration:g} mol/L of {substance} is more than any solution "
+                    "holds",
+                    "check the unit: a number without one is in mol/L",
                 )
             )
             continue
