@@ -10,7 +10,7 @@ from hypothesis import strategies as st
 
 from knought.chemistry.quantities import QUANTITIES, quantity, rate_constant_unit
 from knought.errors import InputError
-from knought.rounding import heading, power_of_ten, rounded, superscript, unit_text
+from knought.rounding import brief, chance, heading, power_of_ten, rounded, superscript, unit_text
 
 
 @pytest.mark.parametrize(
@@ -126,3 +126,25 @@ def test_unknown_quantities_are_refused() -> None:
 def test_powers_and_superscripts() -> None:
     assert power_of_ten(-3) == "10⁻³"
     assert superscript("2+") == "²⁺"
+
+
+@pytest.mark.parametrize(
+    ("value", "digits", "text"),
+    [
+        (1.84e10, 2, "1.8 × 10¹⁰"),
+        (1e-9, 3, "1 × 10⁻⁹"),
+        (0.25, 3, "0.25"),
+        (-0.0251, 2, "−0.025"),
+        (2076.49, 3, "2.08 × 10³"),
+    ],
+)
+def test_numbers_in_sentences_have_powers_of_ten(value: float, digits: int, text: str) -> None:
+    assert brief(value, digits) == text
+
+
+@pytest.mark.parametrize(
+    ("probability", "text"),
+    [(0.0, "p < 10⁻⁶"), (1e-7, "p < 10⁻⁶"), (2.3e-5, "p = 2 × 10⁻⁵"), (0.031, "p = 0.03")],
+)
+def test_chances_are_never_nothing(probability: float, text: str) -> None:
+    assert chance(probability) == text

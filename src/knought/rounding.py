@@ -7,11 +7,21 @@ terminals without Unicode, HTML, LaTeX) only arrange what it decided.
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from decimal import ROUND_HALF_EVEN, Decimal
 from typing import Literal
 
-__all__ = ["Layout", "Rounded", "heading", "power_of_ten", "rounded", "superscript", "unit_text"]
+__all__ = [
+    "Layout",
+    "Rounded",
+    "brief",
+    "chance",
+    "heading",
+    "power_of_ten",
+    "rounded",
+    "superscript",
+    "unit_text",
+]
 
 Layout = Literal["text", "ascii", "html", "latex"]
 
@@ -20,6 +30,9 @@ _UNCERTAINTY_DIGITS = 2
 
 #: Significant digits shown of a number that has no uncertainty.
 _BARE_DIGITS = 5
+
+#: Probabilities below this are not told apart.
+_LEAST_CHANCE = 1e-6
 
 #: Numbers from 10^-3 up to 10^5 are written without a power of ten.
 _SMALLEST_PLAIN, _LARGEST_PLAIN = -3, 5
@@ -154,6 +167,37 @@ def rounded(
     last = _place(_quantized(spread, last), digits or _UNCERTAINTY_DIGITS)
     exponent = _shared_exponent(max(abs(exact), spread), last)
     return Rounded(_digits(exact, last, exponent), _digits(spread, last, exponent), exponent)
+
+
+def brief(value: float, digits: int = 3) -> str:
+    """Return a number for a sentence, with a power of ten rather than an exponent of programmers.
+
+    Parameters
+    ----------
+    value
+        The number.
+    digits
+        Significant digits at most; zeros at the end are left out.
+    """
+    digital = rounded(value, digits=digits)
+    if "." in digital.value:
+        digital = replace(digital, value=digital.value.rstrip("0").rstrip("."))
+    return digital.number()
+
+
+def chance(probability: float, digits: int = 1) -> str:
+    """Return ``"p = 0.03"``; a probability that is hardly more than nothing as ``"p < 10⁻⁶"``.
+
+    Parameters
+    ----------
+    probability
+        Between 0 and 1.
+    digits
+        Significant digits.
+    """
+    if probability < _LEAST_CHANCE:
+        return "p < 10⁻⁶"
+    return f"p = {brief(float(f'{probability:.{digits}g}'), digits)}"
 
 
 def _place(number: Decimal, digits: int) -> int:

@@ -76,7 +76,7 @@ def test_mechanism_says_weights_charges_and_limit(
         "diffusion limit",
         "double sphere",
         "ΔS‡ is negative",
-        "D = 1e-09 and 1.2e-09",
+        "D = 1 × 10⁻⁹ and 1.2 × 10⁻⁹",
     ):
         assert words in said
     assert "prove" not in said

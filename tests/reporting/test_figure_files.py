@@ -32,6 +32,8 @@ def test_every_picture_comes_in_both_widths_and_every_format(report: kn.Report) 
         bitmap = Image.open(io.BytesIO(files[f"{width}/residuals.png"]))
         assert bitmap.width == pytest.approx(mm / 25.4 * 600, abs=1)
         assert bitmap.mode == "RGB"
+        assert bitmap.getpixel((0, 0)) == (255, 255, 255)
+        assert len(bitmap.getcolors(1 << 20) or ()) > 10  # something is drawn
         assert bitmap.info["dpi"] == pytest.approx((600, 600), abs=0.1)
 
 

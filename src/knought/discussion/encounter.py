@@ -27,6 +27,7 @@ from knought.chemistry.constants import GAS_CONSTANT as R
 from knought.chemistry.debye_huckel import bjerrum_length, debye_huckel
 from knought.discussion.electrostatics import require_length
 from knought.errors import InputError
+from knought.rounding import brief
 
 if TYPE_CHECKING:
     from numpy.typing import ArrayLike
@@ -230,8 +231,8 @@ def _mutual_diffusion(
             )
         carried = T / at * water.viscosity(at) / water.viscosity(T)
         words = (
-            f"D = {coefficients[0]:.3g} and {coefficients[1]:.3g} m² s⁻¹ at {at:.2f} K, carried "
-            "as T/η(T)"
+            f"D = {brief(coefficients[0])} and {brief(coefficients[1])} m² s⁻¹ at {at:.2f} K, "
+            "carried as T/η(T)"
         )
         return np.asarray(sum(coefficients) * carried), words
     radii = radii or (contact_distance / 2, contact_distance / 2)

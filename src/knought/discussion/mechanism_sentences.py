@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING
 
 from knought.discussion.literature_sentences import probability_text, signed_fixed
 from knought.discussion.standing import law_words, signed
+from knought.rounding import brief
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -185,8 +186,8 @@ def encounter_sentences(check: EncounterCheck) -> list[str]:
     place = int(limit.T.argmin())
     highest = int(check.share.argmax())
     sentences = [
-        f"The diffusion limit is {limit.rate_constant.min():.2g} to "
-        f"{limit.rate_constant.max():.2g} L mol⁻¹ s⁻¹ over {limit.T.min():.2f} to "
+        f"The diffusion limit is {brief(float(limit.rate_constant.min()), 2)} to "
+        f"{brief(float(limit.rate_constant.max()), 2)} L mol⁻¹ s⁻¹ over {limit.T.min():.2f} to "
         f"{limit.T.max():.2f} K (Debye factor {limit.debye_factor[place]:.3g} at the lowest, "
         f"R = {limit.contact_distance * 1e10:.3g} Å, z_A z_B = {signed(limit.charge_product)}; "
         f"{limit.source}), with an apparent activation energy of "
@@ -195,21 +196,22 @@ def encounter_sentences(check: EncounterCheck) -> list[str]:
     share = check.share[highest]
     if not check.near:
         sentences.append(
-            f"k is at most {share:.1g} of it: meeting is not what limits the rate, and no "
-            "correction is made."
+            f"k is at most {brief(float(share), 1)} of it: meeting is not what limits the rate, "
+            "and no correction is made."
         )
         return sentences
     activated = check.activated
     if activated is None or not math.isfinite(float(activated[highest])):
         sentences.append(
-            f"k reaches the limit at {limit.T[highest]:.2f} K ({share:.2g} of it): its temperature "
-            "dependence is that of diffusion, and says little of the step itself."
+            f"k reaches the limit at {limit.T[highest]:.2f} K ({brief(float(share), 2)} of it): "
+            "its temperature dependence is that of diffusion, and says little of the step itself."
         )
         return sentences
     sentences.append(
-        f"k comes within a factor of 10 of it ({share:.2g} of it at {limit.T[highest]:.2f} K): "
+        f"k comes within a factor of 10 of it ({brief(float(share), 2)} of it at "
+        f"{limit.T[highest]:.2f} K): "
         f"corrected for encounter, 1/k = 1/k_D + 1/k_act, the step itself has k_act = "
-        f"{activated[highest]:.3g} L mol⁻¹ s⁻¹ there."
+        f"{brief(float(activated[highest]), 3)} L mol⁻¹ s⁻¹ there."
     )
     return sentences
 

@@ -9,6 +9,7 @@ import numpy as np
 
 from knought.errors import Caveat
 from knought.fitting.checks import extrapolation
+from knought.rounding import brief, chance
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -79,9 +80,9 @@ def _scatter_verdict(headline: Found) -> list[Caveat]:
     return [
         Caveat(
             "u-too-small",
-            f"The runs scatter {scatter.birge_ratio:.2f} times as much as their stated "
-            f"uncertainties allow (χ²/ν = {scatter.reduced_chi_square:.2f}, ν = "
-            f"{scatter.degrees_of_freedom}, p = {scatter.probability:.2g}): every ± here is "
+            f"The runs scatter {brief(scatter.birge_ratio)} times as much as their stated "
+            f"uncertainties allow (χ²/ν = {brief(scatter.reduced_chi_square)}, ν = "
+            f"{scatter.degrees_of_freedom}, {chance(scatter.probability, 2)}): every ± here is "
             "enlarged accordingly. Either u(k) leaves an error source out, or the laws do not "
             "describe the data.",
         )
@@ -96,9 +97,9 @@ def _misfit_verdict(headline: Found, laws: Sequence[SurfaceFit]) -> list[Caveat]
     return [
         Caveat(
             "nothing-fits",
-            f"No law describes these data within their stated uncertainties (the best has p = "
-            f"{max(chances):.1g}). Look at the residuals before using any number: an outlier, a "
-            "second pathway, ion pairing or a change of mechanism would all look like this.",
+            f"No law describes these data within their stated uncertainties (the best has "
+            f"{chance(max(chances))}). Look at the residuals before using any number: an outlier, "
+            "a second pathway, ion pairing or a change of mechanism would all look like this.",
         )
     ]
 
@@ -223,9 +224,9 @@ def _replicate_verdict(repeated: Replicates | None) -> list[Caveat]:
             Caveat(
                 "replicates-scatter",
                 f"Repeated runs scatter {ratio:.1f} times as much as their stated u (s(ln k) = "
-                f"{repeated.standard_deviation:.3f} against {repeated.typical_u:.3f}, p = "
-                f"{repeated.probability:.1g}): u(k) looks like the fit error of one trace. Take it "
-                "from replicates instead.",
+                f"{repeated.standard_deviation:.3f} against {repeated.typical_u:.3f}, "
+                f"{chance(repeated.probability)}): u(k) looks like the fit error of one trace. "
+                "Take it from replicates instead.",
             )
         )
     if repeated.lack_probability < _UNLIKELY:
@@ -233,7 +234,7 @@ def _replicate_verdict(repeated: Replicates | None) -> list[Caveat]:
             Caveat(
                 "lack-of-fit",
                 "The laws miss the means of repeated runs by more than the replicates scatter "
-                f"(p = {repeated.lack_probability:.1g}): something that the laws do not describe "
+                f"({chance(repeated.lack_probability)}): something that the laws do not describe "
                 "changes with T, I or time.",
             )
         )
@@ -266,8 +267,8 @@ def _pattern_verdict(diagnostics: Diagnostics) -> list[Caveat]:
     return [
         Caveat(
             "pattern",
-            f"Residuals keep their sign along {along} more than chance would have it (p = "
-            f"{worst[1]:.1g}): drift, or a law that does not fit there.",
+            f"Residuals keep their sign along {along} more than chance would have it "
+            f"({chance(worst[1])}): drift, or a law that does not fit there.",
         )
     ]
 
@@ -280,9 +281,9 @@ def _curvature_verdict(diagnostics: Diagnostics) -> list[Caveat]:
         Caveat(
             "curvature",
             f"ln k against 1/T is curved: ΔCₚ‡ = ({bent.value:.0f} ± "
-            f"{bent.standard_uncertainty:.0f}) J K⁻¹ mol⁻¹, p = {bent.probability:.2g}. Before it "
-            "is called a heat capacity, rule out a temperature error that grows, a second path, a "
-            "pre-equilibrium that shifts, and the approach to the diffusion limit.",
+            f"{bent.standard_uncertainty:.0f}) J K⁻¹ mol⁻¹, {chance(bent.probability, 2)}. Before "
+            "it is called a heat capacity, rule out a temperature error that grows, a second path, "
+            "a pre-equilibrium that shifts, and the approach to the diffusion limit.",
         )
     ]
 
@@ -298,7 +299,7 @@ def _salt_verdict(diagnostics: Diagnostics) -> list[Caveat]:
         Caveat(
             "salt-matters",
             f"At the same T and I, ln k depends on the salt (against {test.reference}: {listed}; "
-            f"p = {test.probability:.1g}). I alone does not describe the medium: ions pair, or the "
+            f"{chance(test.probability)}). I alone does not describe the medium: ions pair, or the "
             "counter-ion takes part.",
         )
     ]

@@ -9,6 +9,7 @@ from __future__ import annotations
 from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
+from knought.reporting.ascii_text import to_ascii
 from knought.rounding import Rounded, heading, rounded, unit_text
 
 if TYPE_CHECKING:
@@ -16,7 +17,7 @@ if TYPE_CHECKING:
 
     from knought.chemistry.quantities import Quantity, Symbol
     from knought.fitting.estimate import Estimate
-    from knought.rounding import Layout
+from knought.rounding import Layout
 
 __all__ = [
     "LAYOUTS",
@@ -115,6 +116,9 @@ class Table:
     rows: tuple[tuple[Cell, ...], ...]
     notes: tuple[str, ...] = ()
 
+
+#: Text in a terminal's tables is cut after this many characters.
+_LONGEST_NAME = 60
 
 LAYOUTS: tuple[Layout, ...] = ("text", "ascii", "html", "latex")
 
@@ -236,10 +240,11 @@ def plain_lines(table: Table, layout: Layout = "text", width: int = 100) -> list
 
     # Sign and unit stand on two lines, so that a heading is seldom wider than its numbers.
     units = [heading("", column.unit, layout).strip() for column in table.columns]
-    heads = [[column.sign(layout) for column in table.columns], units]
+    plain = to_ascii if layout == "ascii" else str  # before widths are measured
+    heads = [[plain(column.sign(layout)) for column in table.columns], units]
     if not any(units):
         heads.pop()
-    grid = heads + [[cell.written(layout) for cell in row] for row in table.rows]
+    grid = heads + [[plain(_short(cell.written(layout))) for cell in row] for row in table.rows]
     widths = [max(len(row[j]) for row in grid) for j in range(len(table.columns))]
     lines = []
     for i, row in enumerate(grid):
@@ -253,6 +258,11 @@ def plain_lines(table: Table, layout: Layout = "text", width: int = 100) -> list
     for note in table.notes:
         lines += textwrap.wrap(note, width)
     return lines
+
+
+def _short(text: str) -> str:
+    """Shorten a name that would push the numbers out of sight; files and page have it whole."""
+    return text if len(text) <= _LONGEST_NAME else text[: _LONGEST_NAME - 1].rstrip() + "…"
 
 
 def join_words(parts: Sequence[str]) -> str:

@@ -12,6 +12,7 @@ import math
 from typing import TYPE_CHECKING
 
 from knought.reporting.cells import interval_cell
+from knought.reporting.methods import methods_sentences
 from knought.reporting.style import DOUBLE_COLUMN, SINGLE_COLUMN
 
 if TYPE_CHECKING:
@@ -85,7 +86,7 @@ def written_page(report: Report, drawn: Mapping[str, str]) -> str:
         answer_tables=report.answer_tables,
         sections=report.sections,
         drawn={name: Markup(drawing) for name, drawing in drawn.items()},
-        methods=_methods(report),
+        methods=methods_sentences(report.assessment),
         version=__version__,
         html=_html,
         heading=_heading,
@@ -186,26 +187,3 @@ def _heading(column: Column) -> str:
         return escape(_html(column.signs))
     # The sign is escaped or our own; units come from the registry.
     return escape(_html(column.signs)) + Markup(f'<br><span class="unit">{unit}</span>')
-
-
-def _methods(report: Report) -> list[str]:
-    """Return sentences for a methods section."""
-    found = report.assessment.headline
-    seen = report.assessment.observations
-    sentences = [
-        f"ln k was fitted by generalised least squares to {seen.runs} runs with "
-        f"{len(found.surface.parameters)} parameters, linear in all of them; every derived "
-        "quantity comes from their joint covariance.",
-        f"The uncertainties are standard uncertainties {found.includes}. {found.excludes}".strip(),
-    ]
-    if found.surface.salt_law.needs_water:
-        sentences.append(
-            "Debye–Hückel coefficients A(T) and B(T) are computed at every temperature from the "
-            "density (IAPWS SR6-08) and permittivity (IAPWS R8-97) of water at 0.1 MPa."
-        )
-    concentration = report.assessment.choices.standard_concentration
-    sentences.append(
-        f"Activation parameters refer to a standard concentration of {concentration:g} mol/L and "
-        "to transition-state theory with a transmission coefficient of one; constants are CODATA's."
-    )
-    return sentences

@@ -145,11 +145,15 @@ def check_sentences(assessment: Assessment) -> list[str]:
             else f", against a stated u of {repeated.typical_u:.3f}"
         )
         sentences.append(
-            f"Runs repeated at {repeated.groups} conditions scatter with s(ln k) = "
-            f"{repeated.standard_deviation:.3f} ({repeated.degrees_of_freedom} degrees of "
-            f"freedom){stated}."
+            f"Runs repeated at {_counted(repeated.groups, 'condition')} scatter with s(ln k) = "
+            f"{repeated.standard_deviation:.3f} "
+            f"({_counted(repeated.degrees_of_freedom, 'degree')} of freedom){stated}."
         )
     return sentences
+
+
+def _counted(number: int, word: str) -> str:
+    return f"{number} {word}" if number == 1 else f"{number} {word}s"
 
 
 def _signed(number: float) -> str:

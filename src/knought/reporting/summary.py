@@ -5,6 +5,7 @@ from __future__ import annotations
 import textwrap
 from typing import TYPE_CHECKING
 
+from knought.reporting.ascii_text import to_ascii
 from knought.reporting.cells import plain_lines
 from knought.reporting.sentences import (
     charge_sentences,
@@ -25,45 +26,9 @@ if TYPE_CHECKING:
     from knought.reporting.cells import Table
     from knought.rounding import Layout
 
-__all__ = ["summary"]
+__all__ = ["summary", "to_ascii"]
 
 _WIDTH = 100
-
-#: What terminals without Unicode get instead of the signs of the text.
-_ASCII = {
-    **{sign: f"^{plain}" for sign, plain in zip("⁰⁴⁵⁶⁷⁸⁹⁺", "0456789+", strict=True)},
-    **dict(zip("₀₁₂₃₄₅₆₇₈₉", "0123456789", strict=True)),
-    "°": "0",
-    "‡": "++",
-    "Δ": "D",
-    "→": "->",
-    "–": "-",
-    "−": "-",
-    "±": "+/-",
-    "β": "beta",
-    "å": "a",
-    "Å": "Angstrom",
-    "χ²": "chi^2",
-    "ν": "nu",
-    "√": "sqrt ",
-    "∂": "d",
-    "×": "x",
-    "ₐ": "_a",
-    "ₚ": "p",
-    "⁻": "^-",
-    "¹": "1",
-    "²": "^2",
-    "³": "^3",
-    "·": ".",
-    "ü": "ue",
-    "ö": "oe",
-    "é": "e",
-    "…": "...",
-    "ø": "oe",
-    "“": '"',
-    "”": '"',
-    "’": "'",
-}
 
 
 def summary(assessment: Assessment, layout: Layout = "text") -> str:
@@ -97,13 +62,6 @@ def summary(assessment: Assessment, layout: Layout = "text") -> str:
         blocks.append(_caveat_lines(assessment))
     text = "\n\n".join("\n".join(block) for block in blocks) + "\n"
     return to_ascii(text) if layout == "ascii" else text
-
-
-def to_ascii(text: str) -> str:
-    """Return `text` in ASCII: the trade's signs by their names, anything else as ``?``."""
-    for sign, plain in _ASCII.items():
-        text = text.replace(sign, plain)
-    return text.encode("ascii", "replace").decode("ascii")
 
 
 def _titled(table: Table, layout: Layout) -> list[str]:

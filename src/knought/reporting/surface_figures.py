@@ -8,6 +8,7 @@ from __future__ import annotations
 
 import math
 from typing import TYPE_CHECKING
+from weakref import WeakKeyDictionary
 
 import numpy as np
 
@@ -39,10 +40,15 @@ if TYPE_CHECKING:
 __all__ = ["level_of", "salt_effect", "temperature_dependence"]
 
 #: Lines against 1/T are nearly straight; those against √I bend near zero.
-_POINTS_IN_T, _POINTS_IN_I = 25, 46
+_POINTS_IN_T, _POINTS_IN_I = 19, 37
 
 #: Fitted lines are drawn for at most this many ionic strengths or temperatures.
 _MOST_LINES = 6
+
+#: Bands of each fit, for as long as somebody holds it.
+_BANDS: WeakKeyDictionary[
+    Found, dict[tuple[bytes, bytes], tuple[FloatArray, FloatArray, FloatArray]]
+] = WeakKeyDictionary()
 
 #: Legends list at most this many levels.
 _MOST_LISTED = 12
@@ -109,9 +115,7 @@ def salt_effect(assessment: Assessment, ax: Axes) -> Axes:
     charges = found.parameters.get("charge_product")
     for i in _spread(len(levels)):
         T = float(levels[i])
-        mixture = found.distribution.of(found.surface.ln_k(T, roots**2))
-        low, high = (end / LN10 for end in mixture.interval(0.95))
-        middle = mixture.mean / LN10
+        middle, low, high = (each / LN10 for each in _band(found, np.full(len(roots), T), roots**2))
         ax.fill_between(roots, low, high, color=colours[i], alpha=0.22, linewidth=0)
         ax.plot(roots, middle, color=colours[i])
         ax.plot([0.0], middle[:1], marker="o", mfc="white", mec=colours[i], clip_on=False)
@@ -145,15 +149,24 @@ def _line(
     gid: str | None = None,
 ) -> None:
     """Draw one fitted line with its 95 % confidence and prediction bands."""
-    mixture = found.distribution.of(found.surface.ln_k(T, I))
-    x, middle = 1000.0 / T, mixture.mean
-    low, high = mixture.interval(0.95)
+    x = 1000.0 / T
+    middle, low, high = _band(found, T, np.full(len(T), I))
     # A further run scatters about the line with the typical u of the runs.
     run = _TWO_SIDED_95 * float(np.median(found.effective_u))
     above, below = np.hypot(high - middle, run), np.hypot(middle - low, run)
     ax.fill_between(x, middle - below, middle + above, color=colour, alpha=0.10, linewidth=0)
     ax.fill_between(x, low, high, color=colour, alpha=0.25, linewidth=0)
     ax.plot(x, middle, color=colour, ls=dashes, gid=gid)
+
+
+def _band(found: Found, T: FloatArray, I: FloatArray) -> tuple[FloatArray, FloatArray, FloatArray]:
+    """Return mean and 95 % interval of ln k, found once for both widths of a figure."""
+    known = _BANDS.setdefault(found, {})
+    key = (T.tobytes(), I.tobytes())
+    if key not in known:
+        mixture = found.distribution.of(found.surface.ln_k(T, I))
+        known[key] = (mixture.mean, *mixture.interval(0.95))
+    return known[key]
 
 
 def _points(

@@ -26,6 +26,7 @@ from knought.reporting.cells import (
     unit_cell,
     words,
 )
+from knought.rounding import brief
 
 if TYPE_CHECKING:
     from knought.arrays import FloatArray
@@ -254,7 +255,7 @@ def _misfit_cells(found: Found) -> tuple[Cell, ...]:
 
 
 def _small(chance: float) -> str:
-    return "< 1e-6" if chance < 1e-6 else f"{chance:.0e}"
+    return "< 10⁻⁶" if chance < 1e-6 else brief(float(f"{chance:.1g}"), 1)
 
 
 def _law_remark(law: SurfaceFit) -> str:

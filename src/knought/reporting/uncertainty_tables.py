@@ -39,6 +39,9 @@ __all__ = [
 #: Results whose budget is shown.
 BUDGETED = ("rate_constant", "activation_energy", "activation_entropy", "charge_product")
 
+#: Shares below this are nothing.
+_ROUNDING = 1e-12
+
 #: At most this many of the largest influences are shown.
 _MOST_INFLUENCES = 10
 
@@ -64,6 +67,8 @@ def budget_table(assessment: Assessment) -> Table | None:
         for each in budgets:
             share = each.shares.get(source, 0.0)
             u = each.quantity.shown(each.uncertainty(source)) if source in each.variances else 0.0
+            if share < _ROUNDING:
+                u = 0.0  # nothing but the rounding of floating-point numbers
             cells += [number(float(f"{u:.2g}")), Cell(share, (("text", f"{share:.1%}"),))]
         rows.append(tuple(cells))
     totals = [words("all together")]
@@ -122,6 +127,11 @@ def prior_table(assessment: Assessment) -> Table | None:
     )
 
 
+def _signed_cell(shift: float) -> Cell:
+    plain = f"{shift:+.2f}"
+    return Cell(shift, (("text", plain.replace("-", "−")), ("ascii", plain)))
+
+
 def influence_table(assessment: Assessment) -> Table | None:
     """Return what moves most when something is left out; None where nothing can be."""
     moved = sorted(assessment.influence(), key=lambda each: -each.largest)[:_MOST_INFLUENCES]
@@ -131,7 +141,7 @@ def influence_table(assessment: Assessment) -> Table | None:
     rows = tuple(
         (
             words(f"{each.kind} {each.label}"),
-            *(Cell(each.shifts[name], (("text", f"{each.shifts[name]:+.2f}"),)) for name in names),
+            *(_signed_cell(each.shifts[name]) for name in names),
         )
         for each in moved
     )

@@ -24,7 +24,8 @@
   for (const drawing of document.querySelectorAll("svg")) {
     const points = [...drawing.querySelectorAll("g.point")];
     if (!points.length) continue;
-    const middle = (point) => { const at = point.getBoundingClientRect(); return [at.left, at.top]; };
+    const place = (point, name) => Number(point.querySelector(".reach").getAttribute(name));
+    const order = [...points].sort((a, b) => place(a, "cx") - place(b, "cx") || place(a, "cy") - place(b, "cy"));
     points.forEach((point, i) => {
       point.setAttribute("tabindex", i ? "-1" : "0");
       point.querySelector("title")?.remove();  /* the label takes its place */
@@ -40,7 +41,6 @@
       const jump = { Home: 0, End: points.length - 1 }[event.key];
       if (step === undefined && jump === undefined) return;
       event.preventDefault();
-      const order = [...points].sort((a, b) => middle(a)[0] - middle(b)[0] || middle(a)[1] - middle(b)[1]);
       const here = order.indexOf(document.activeElement);
       const next = order[jump ?? Math.min(Math.max(here + step, 0), order.length - 1)];
       for (const point of points) point.setAttribute("tabindex", point === next ? "0" : "-1");
