@@ -11,7 +11,7 @@ from knought.chemistry.constants import CELSIUS_ZERO, LN10
 from knought.chemistry.quantities import quantity
 from knought.chemistry.water import COLDEST, HOTTEST
 from knought.reporting.style import INK, ROOT_LABEL, padded, run_point, sequential, unit_in_brackets
-from knought.rounding import rounded
+from knought.rounding import brief
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
@@ -78,7 +78,7 @@ def _tints(count: int) -> list[tuple[float, ...]]:
 
 
 def _written(level: float) -> str:
-    return rounded(10**level, digits=3).number()
+    return brief(10**level)
 
 
 def _levels(low: float, high: float) -> FloatArray:
