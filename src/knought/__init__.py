@@ -34,6 +34,7 @@ if TYPE_CHECKING:
     from knought.discussion.solvent import solvent_series
     from knought.errors import Caveat, InputError, Problem
     from knought.fitting.assess import Assessment, assess
+    from knought.fitting.assess_many import ManyAssessments, assess_many
     from knought.fitting.bootstrap import bootstrap
     from knought.fitting.estimate import Estimate
     from knought.fitting.fit import fit
@@ -62,6 +63,7 @@ __all__ = [
     "Forbidden",
     "InputError",
     "LiteratureValue",
+    "ManyAssessments",
     "OpenFit",
     "Plan",
     "Priors",
@@ -73,6 +75,7 @@ __all__ = [
     "SurfaceFit",
     "__version__",
     "assess",
+    "assess_many",
     "bootstrap",
     "charge_product",
     "compare",
@@ -111,6 +114,7 @@ _HOMES = {
     "Forbidden": "discussion.reach",
     "InputError": "errors",
     "LiteratureValue": "discussion.literature",
+    "ManyAssessments": "fitting.assess_many",
     "OpenFit": "fitting.open_fit",
     "Plan": "discussion.next_runs",
     "Priors": "laws.open_law",
@@ -121,6 +125,7 @@ _HOMES = {
     "Species": "chemistry.species",
     "SurfaceFit": "fitting.surface_fit",
     "assess": "fitting.assess",
+    "assess_many": "fitting.assess_many",
     "bootstrap": "fitting.bootstrap",
     "charge_product": "chemistry.species",
     "compare": "discussion.compare",

@@ -9,10 +9,11 @@ import numpy as np
 import pytest
 
 from knought.arrays import frozen
-from knought.discussion.plan_expectation import simulate_runs, solver_of
+from knought.discussion.plan_expectation import made_data, simulate_runs, solver_of
 from knought.discussion.plan_model import PlanModel, Repeatability, assumed_model, model_of
 from knought.fitting.observations import Observations
 from knought.fitting.open_fit import fit_open
+from knought.fitting.surface_fit import fit_surface
 from knought.measurement.shared_errors import SharedError
 from tests.discussion.test_exchange import model
 
@@ -122,3 +123,30 @@ def test_further_runs_start_from_what_the_runs_made_leave_open() -> None:
             before /= float(made.parameters[name].value)
         assert 0.5 * before < after.expected[name] < before
         assert after.error[name] == pytest.approx(after.expected[name], rel=0.08)
+
+
+def test_further_runs_share_the_errors_that_the_runs_made_had() -> None:
+    """By the law of total variance again: with the stock's error drawn given the runs made."""
+    stock = SharedError("stock", kind="factor", u=0.05)
+    opened = model(salt_law="guntelberg")
+    rng = np.random.default_rng(8)
+    T_made, I_made = T[:8], I[:8]
+    off = 0.05 * 1.3  # what the stock was off by when the runs were made
+    ln_k = opened.expected_ln_k(T_made, I_made) + off + 0.03 * rng.standard_normal(8)
+    made = fit_surface(
+        replace(seen(ln_k, T_made, I_made), shared=(stock,)),
+        salt_law="guntelberg",
+        scatter="given",
+    )
+    further = model_of(made, Repeatability(0.03))
+    after = simulate_runs(further, T, I, data_sets=3000, seed=1)
+    for name in NAMES:
+        assert after.error[name] == pytest.approx(after.expected[name], rel=0.06)
+    # More runs with the same stock leave what it does to k°.
+    assert after.expected["rate_constant"] > 0.9 * 0.05
+    # Further runs lie off by what the runs made were, less what is not known of it.
+    made_again = made_data(further, T, I, data_sets=3000, seed=1)
+    rows = further.rows(T, I)
+    exact = rows.offset[0] + made_again.theta @ rows.rows[0].T
+    common = (made_again.ln_k[:, 8:] - exact).mean(axis=1)
+    assert 0.03 < common.std() < 0.06

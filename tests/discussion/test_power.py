@@ -2,19 +2,26 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
+
 import numpy as np
 import pytest
 
 from knought.discussion.plan_expectation import simulate_runs
 from knought.discussion.plan_model import PlanModel, Repeatability, assumed_model
 from knought.discussion.power import (
+    assessed,
     charge_power,
     detection,
     heat_capacity_power,
     nearest_integer_right,
     one_integer_left,
+    planned_table,
 )
+from knought.fitting.assess import assess
 from knought.fitting.surface_fit import fit_many
+from knought.measurement.shared_errors import SharedError
+from knought.measurement.table import RateTable
 from tests.discussion.test_exchange import model
 from tests.simulation import guntelberg, simulate
 
@@ -41,8 +48,10 @@ def guntelberg_model(error: float) -> PlanModel:
 @pytest.mark.parametrize(("error", "right"), [(0.05, 1.00), (0.10, 0.99), (0.20, 0.83)])
 def test_the_nearest_integer_is_right_as_often_as_it_should_be(error: float, right: float) -> None:
     """z_A z_B = 2, Güntelberg's law known, 15-45 °C and I = 0.01-0.1 mol/L: 100, 99, 83 %."""
-    simulated = simulate_runs(guntelberg_model(error), T, I, data_sets=4000, seed=1)
-    power = charge_power(simulated)[0]
+    expected = simulate_runs(guntelberg_model(error), T, I, data_sets=5, seed=1).expected
+    power = charge_power(
+        guntelberg_model(error), T, I, expected["charge_product"], data_sets=4000, seed=1
+    )[0]
     assert power.by_formula == pytest.approx(right, abs=0.02)
     assert power.by_simulation == pytest.approx(right, abs=0.02)
     assert power.by_simulation == pytest.approx(
@@ -94,4 +103,27 @@ def test_two_temperatures_say_nothing_of_a_heat_capacity() -> None:
 
 
 def test_a_plan_without_charges_has_no_charge_power() -> None:
-    assert charge_power(simulate_runs(model(), T, I, data_sets=10, seed=1)) == ()
+    assert charge_power(model(), T, I, 1.0, data_sets=10, seed=1) == ()
+
+
+@pytest.mark.parametrize("salt_law", ["open", "guntelberg"])
+def test_every_simulated_plan_is_what_assess_says_of_its_runs(salt_law: str) -> None:
+    """Member by member, through the front door, a shared error and the rule for ± included."""
+    stock = SharedError("stock", kind="factor", u=0.02)
+    planned = replace(model(salt_law=salt_law), shared_errors=(stock,))
+    found, made = assessed(planned, T, I, "charge_product", data_sets=12, seed=4, remade=False)
+    table = planned_table(planned, T, I)
+    assert table.u_k is not None
+    enlarged = 0
+    for i in range(12):
+        k = np.exp(made.ln_k[i])
+        rates = RateTable(k=k, T=T, order=table.order, I=I, u_k=table.u_k / table.k * k)
+        one = assess(rates, salt_law=salt_law, shared_errors=[stock])
+        z = one.parameters["charge_product"]
+        u = float(z.standard_uncertainty)
+        low, high = z.interval(0.95)
+        enlarged += one.headline.scatter.from_scatter
+        assert found.value("charge_product")[i] == pytest.approx(float(z.value), abs=1e-7 * u)
+        assert found.interval("charge_product")[0][i] == pytest.approx(float(low), abs=1e-7 * u)
+        assert found.interval("charge_product")[1][i] == pytest.approx(float(high), abs=1e-7 * u)
+    assert int(found.headline.from_scatter.sum()) == enlarged

@@ -171,7 +171,15 @@ class Plan:
             data_sets=wanted.data_sets,
             seed=wanted.seed + 1,
         )
-        return (*charge_power(self.simulated), *([] if curvature is None else [curvature]))
+        charges = charge_power(
+            self.model,
+            T,
+            I,
+            self.expected_uncertainty.get("charge_product", np.nan),
+            data_sets=wanted.data_sets,
+            seed=wanted.seed,
+        )
+        return (*charges, *([] if curvature is None else [curvature]))
 
     @cached_property
     def information(self) -> FloatArray:

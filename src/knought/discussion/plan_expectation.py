@@ -26,9 +26,10 @@ if TYPE_CHECKING:
 
     from knought.arrays import FloatArray, IndexArray
     from knought.discussion.plan_model import PlanModel
+    from knought.fitting.found import Found
     from knought.laws.surface import Rows
 
-__all__ = ["SimulatedRuns", "simulate_runs"]
+__all__ = ["MadeData", "SimulatedRuns", "conditions_of_all", "made_data", "simulate_runs"]
 
 #: Data sets from which an expected u is found: its own relative error is then about 1 %.
 DEFAULT_DATA_SETS = 1000
@@ -80,15 +81,6 @@ class SimulatedRuns:
         """Root mean square of value less truth, by quantity."""
         return self._by_name(np.sqrt(np.mean((self.value - self.truth) ** 2, axis=0)))
 
-    def below(self, name: str, at: FloatArray | float) -> FloatArray:
-        """Return the probability that each data set gives to values below `at`, ``(m,)``."""
-        from scipy.special import ndtr
-
-        j = self.names.index(name)
-        at = np.broadcast_to(at, (len(self.weights),))[:, None]
-        each = ndtr((at - self.location[:, :, j]) / np.sqrt(self.variance[:, j]))
-        return np.asarray(np.sum(self.weights * each, axis=1))
-
     def _by_name(self, values: FloatArray) -> dict[str, float]:
         return {name: float(value) for name, value in zip(self.names, values, strict=True)}
 
@@ -122,11 +114,8 @@ def simulate_runs(
         truths that the real ones contradict.
     """
     rows = headline_rows(model) if targets is None else targets
-    random = generator(seed, len(T))
-    component = random.choice(len(model.possible.weights), size=data_sets, p=model.possible.weights)
-    cell, theta = _truths(model, component, random)
-    ln_k = _data(model, T, I, cell, theta, random, remade=remade)
-    solutions = solver_of(model, T, I).solve(ln_k)
+    made = made_data(model, T, I, data_sets=data_sets, seed=seed, remade=remade)
+    solutions = solver_of(model, T, I).solve(made.ln_k)
     matrix = np.concatenate([each.rows for each in rows.values()], axis=1)
     offset = np.concatenate([each.offset for each in rows.values()], axis=1)
     covariance = solutions.covariances[:, 0]
@@ -135,13 +124,59 @@ def simulate_runs(
         tuple(rows),
         offset + np.einsum("ctp,mcp->mct", matrix, solutions.means[:, :, 0]),
         np.einsum("ctp,cpq,ctq->ct", matrix, covariance, matrix),
-        offset[cell] + np.einsum("mtp,mp->mt", matrix[cell], theta),
+        np.stack([made.truth(each) for each in rows.values()], axis=1),
     )
+
+
+@dataclass(frozen=True, eq=False)
+class MadeData:
+    """Data sets made of a design, and what was true of each.
+
+    Attributes
+    ----------
+    ln_k : (m, n) ndarray
+        Of the runs already made, and of the further ones behind them.
+    cell : (m,) ndarray of int
+        The cell that was true.
+    theta : (m, p) ndarray
+        The parameters that were.
+    """
+
+    ln_k: FloatArray
+    cell: IndexArray
+    theta: FloatArray
+
+    def truth(self, rows: Rows) -> FloatArray:
+        """Return what was true of one quantity, ``(m,)``; `rows` with the axis of the cells."""
+        offset, matrix = rows.offset[self.cell, 0], rows.rows[self.cell, 0]
+        return np.asarray(offset + np.einsum("mp,mp->m", matrix, self.theta))
+
+
+def made_data(
+    model: PlanModel,
+    T: FloatArray,
+    I: FloatArray,
+    *,
+    data_sets: int,
+    seed: int,
+    remade: bool = False,
+) -> MadeData:
+    """Draw what is true, and the data that it gives.
+
+    Parameters
+    ----------
+    model, T, I, data_sets, seed, remade
+        As for :func:`simulate_runs`.
+    """
+    random = generator(seed, len(T))
+    component = random.choice(len(model.possible.weights), size=data_sets, p=model.possible.weights)
+    cell, theta = _truths(model, component, random)
+    return MadeData(_data(model, T, I, cell, theta, random, remade=remade), cell, theta)
 
 
 def solver_of(model: PlanModel, T: FloatArray, I: FloatArray) -> CellSolver:
     """Return the solver of the runs already made together with runs at `T` and `I`."""
-    all_T, all_I, u = _conditions(model, T, I)
+    all_T, all_I, u = conditions_of_all(model, T, I)
     rows = model.rows(all_T, all_I)
     return CellSolver(
         rows.rows,
@@ -182,15 +217,41 @@ def _data(
 ) -> FloatArray:
     """Make ln k of each data set; what the runs already made gave stands before it."""
     if model.found is None or remade:
-        all_T, all_I, u = _conditions(model, T, I)
+        all_T, all_I, u = conditions_of_all(model, T, I)
         shared = model.shared_of_all(T, I)
         hidden = random.standard_normal((len(cell), shared.shape[1])) @ shared.T
         return np.asarray(_noisy(model, all_T, all_I, u, cell, theta, random) + hidden)
-    # What a shared error was on the day of the runs made is part of what they left possible.
     seen = model.found.observations
     made = np.broadcast_to(seen.ln_k, (len(cell), seen.runs))
     further = _noisy(model, T, I, model.u(T, I), cell, theta, random)
+    if model.shared_errors:
+        # What a shared error was when the runs were made is hidden in their residuals, and the
+        # further runs have the same.
+        hidden = _hidden(model, model.found, cell, theta, random)
+        further += hidden @ model.shared(T, I).T
     return np.concatenate([made, further], axis=1)
+
+
+def _hidden(
+    model: PlanModel,
+    found: Found,
+    cell: IndexArray,
+    theta: FloatArray,
+    random: np.random.Generator,
+) -> FloatArray:
+    """Draw the shared errors given the runs already made and what is true, ``(m, q)``.
+
+    Residuals r = J e + independent errors, e standard normal before them: normal afterwards, with
+    the precision 1 + Jᵀ J and the mean (1 + Jᵀ J)⁻¹ Jᵀ r, all divided by u.
+    """
+    seen, u = found.observations, found.effective_u
+    J = model.shared(seen.T, seen.ionic_strength, seen.batch, seen.run) / u[:, None]
+    rows = model.rows(seen.T, seen.ionic_strength)
+    exact = rows.offset[cell] + np.einsum("mnp,mp->mn", rows.rows[cell], theta)
+    lower = np.linalg.cholesky(np.eye(J.shape[1]) + J.T @ J)
+    pulled = np.linalg.solve(lower, ((seen.ln_k - exact) / u @ J).T)
+    drawn = pulled + random.standard_normal(pulled.shape)
+    return np.asarray(np.linalg.solve(lower.T, drawn).T)
 
 
 def _noisy(
@@ -208,7 +269,7 @@ def _noisy(
     return np.asarray(exact + u * random.standard_normal(exact.shape))
 
 
-def _conditions(
+def conditions_of_all(
     model: PlanModel, T: FloatArray, I: FloatArray
 ) -> tuple[FloatArray, FloatArray, FloatArray]:
     """Return T, I and u of ln k of the runs already made and of further ones behind them."""

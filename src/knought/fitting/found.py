@@ -36,7 +36,7 @@ if TYPE_CHECKING:
     from knought.fitting.scatter import Scatter
     from knought.laws.surface import Surface
 
-__all__ = ["ACTIVATION", "Found"]
+__all__ = ["ACTIVATION", "FITTED", "Found"]
 
 #: The activation parameters in the order in which they are reported.
 ACTIVATION = (
@@ -48,7 +48,7 @@ ACTIVATION = (
 )
 
 #: Fitted parameters that are reported as they are.
-_FITTED = (
+FITTED = (
     "activation_heat_capacity",
     "charge_product",
     "interaction_coefficient",
@@ -131,7 +131,7 @@ class Found:
     def parameters(self) -> Mapping[str, Estimate]:
         """Every parameter and derived quantity at T_ref and I → 0, by its name."""
         found = dict(self.at())
-        for name in _FITTED:
+        for name in FITTED:
             if name in self.distribution.names:
                 found[name] = self._estimate(
                     self._quantity(name), self.distribution.parameter(name)

@@ -41,7 +41,15 @@ if TYPE_CHECKING:
     from knought.measurement.table import RateTable
     from knought.numerics.least_squares import LinearFit
 
-__all__ = ["OpenFit", "fit_open", "interaction_prior", "open_solver"]
+__all__ = [
+    "CHARGE_PRODUCTS",
+    "OpenFit",
+    "fit_open",
+    "flat_parameters",
+    "interaction_prior",
+    "open_solver",
+    "settled_errors",
+]
 
 #: Components that together weigh less than this are left out of the mixture.
 _NEGLIGIBLE_WEIGHT = 1e-10
@@ -202,7 +210,7 @@ def _fit_on_grid(
     )
     checks.require_levels(seen, surface, charges_given=charge_product is not None)
     centre = replace(surface, salt_law=grid.central)
-    errors, unsettled = _settled_errors(seen, centre, priors)
+    errors, unsettled = settled_errors(seen, centre, priors)
     caveats = (
         *checks.uncertainty_caveats(seen),
         *checks.design_caveats(seen, centre, errors.u),
@@ -210,9 +218,7 @@ def _fit_on_grid(
     )
     solver = open_solver(seen, surface, grid, errors)
     solutions = solver.solve(seen.ln_k[None])
-    # Priors count as observations of the parameters they describe, so that only the parameters
-    # with flat priors use up degrees of freedom.
-    flat = len(set(surface.parameters) - {"interaction_coefficient"})
+    flat = flat_parameters(surface)
     best = float(solutions.chi_square.min())
     judged = judge_scatter(best, seen.runs - flat, stated=seen.u_given, choice=scatter)
     if judged.from_scatter:
@@ -270,12 +276,30 @@ def interaction_prior(surface: Surface, priors: Priors) -> tuple[FloatArray, Flo
     return row, np.array([mean / deviation])
 
 
-def _settled_errors(
+def flat_parameters(surface: Surface) -> int:
+    """Return how many parameters have flat priors.
+
+    Priors count as observations of the parameters they describe, so that only these use up degrees
+    of freedom.
+    """
+    return len(set(surface.parameters) - {"interaction_coefficient"})
+
+
+def settled_errors(
     seen: Observations, centre: Surface, priors: Priors
 ) -> tuple[RunErrors, tuple[Caveat, ...]]:
     """Return the errors of the runs, those of T and I carried along the slope of the central cell.
 
     Slopes and adjusted conditions hardly depend on å and c, so that one cell's serve for all.
+
+    Parameters
+    ----------
+    seen
+        The runs.
+    centre
+        The surface with the central cell's salt law.
+    priors
+        Of the open law.
 
     Raises
     ------

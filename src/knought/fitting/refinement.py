@@ -16,13 +16,13 @@ if TYPE_CHECKING:
     from knought.fitting.estimate import Estimate
     from knought.laws.open_law import OpenGrid
 
-__all__ = ["OnGrid", "refined"]
+__all__ = ["FEWEST_CELLS", "FINEST", "SETTLED_GRID", "OnGrid", "refined"]
 
 #: A grid is refined where its effective number of cells is below this, up to this refinement,
 #: until results move by less than this part of their u.
-_FEWEST_CELLS = 12
-_FINEST = 8
-_SETTLED_GRID = 0.01
+FEWEST_CELLS = 12
+FINEST = 8
+SETTLED_GRID = 0.01
 
 
 class OnGrid(Protocol):
@@ -72,10 +72,10 @@ def refined(fitted: Callable[[int], Fitted]) -> Fitted:
         with a caveat that none is fine enough.
     """
     found, finer = fitted(1), 1
-    while _few_cells(found) and finer < _FINEST:
+    while _few_cells(found) and finer < FINEST:
         finer *= 2
         before, found = found, fitted(finer)
-        if _moved(before, found) < _SETTLED_GRID:
+        if _moved(before, found) < SETTLED_GRID:
             return found
     if _few_cells(found):
         caveat = Caveat(
@@ -92,7 +92,7 @@ def _few_cells(found: OnGrid) -> bool:
     """Return whether too few cells of a grid with several carry the weight."""
     if found.grid.cells == 1:
         return False
-    return 1.0 / float(np.sum(found.cell_weights**2)) < _FEWEST_CELLS
+    return 1.0 / float(np.sum(found.cell_weights**2)) < FEWEST_CELLS
 
 
 def _moved(before: OnGrid, after: OnGrid) -> float:

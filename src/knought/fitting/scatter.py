@@ -18,15 +18,24 @@ from knought.errors import InputError
 from knought.numerics.quantiles import chi_square_survival
 
 if TYPE_CHECKING:
-    from knought.arrays import FloatArray
+    from knought.arrays import BoolArray, FloatArray, IndexArray
 
-__all__ = ["SIGNIFICANCE", "Scatter", "ScatterChoice", "judge_scatter", "scale_nodes"]
+__all__ = [
+    "SIGNIFICANCE",
+    "Scatter",
+    "ScatterChoice",
+    "first_scale_node",
+    "from_scatter_many",
+    "judge_scatter",
+    "scale_nodes",
+    "scale_nodes_from",
+]
 
 #: Below this probability of χ², stated uncertainties do not explain the scatter.
 SIGNIFICANCE = 0.05
 
-#: Nodes of σ where it is found from the scatter, and the tail probability of σ left out.
-_SCALE_NODES = 24
+#: Steps between nodes of σ where it is found from the scatter, and the tail probability left out.
+_SCALE_STEPS = 24
 _SCALE_TAIL = 5e-4
 
 ScatterChoice = Literal["given", "scatter"]
@@ -154,8 +163,44 @@ def judge_scatter(
     return Scatter(chi_square, nu, stated, "scatter")
 
 
+def from_scatter_many(
+    chi_square: FloatArray,
+    degrees_of_freedom: int,
+    *,
+    stated: bool,
+    choice: ScatterChoice | None = None,
+) -> BoolArray:
+    """Decide for many data sets of one design whether the headline ± comes from the scatter.
+
+    Parameters
+    ----------
+    chi_square : (m,) ndarray
+        Of the fits, with the uncertainties as given.
+    degrees_of_freedom, stated, choice
+        As for :func:`judge_scatter`, the same for all.
+
+    Returns
+    -------
+    (m,) ndarray of bool
+
+    Raises
+    ------
+    InputError
+        As :func:`judge_scatter` does.
+    """
+    from scipy.special import chdtrc
+
+    nu = degrees_of_freedom
+    one = judge_scatter(0.0, nu, stated=stated, choice=choice)
+    if one.from_scatter or choice is not None or nu <= 0:
+        return np.full(len(chi_square), one.from_scatter)
+    return np.asarray(chdtrc(nu, chi_square) < SIGNIFICANCE)
+
+
 def scale_nodes(chi_square: float, degrees_of_freedom: int) -> FloatArray:
     """Return values of σ that hold its distribution given the scatter, equally spaced in ln σ.
+
+    Nodes stand at whole multiples of their spacing, so that many data sets share them.
 
     Parameters
     ----------
@@ -164,14 +209,33 @@ def scale_nodes(chi_square: float, degrees_of_freedom: int) -> FloatArray:
 
     Returns
     -------
-    (24,) ndarray
+    (25,) ndarray
         From the σ below which all but a tail of its distribution lies, to that above which it
         does: σ² = χ²/χ²_ν (JCGM 101, 6.4.9, for Student's t as a scale mixture of normals).
     """
+    first, spacing = first_scale_node(np.array([chi_square]), degrees_of_freedom)
+    return scale_nodes_from(int(first[0]), spacing)
+
+
+def first_scale_node(chi_square: FloatArray, degrees_of_freedom: int) -> tuple[IndexArray, float]:
+    """Return the first node of each data set as a multiple of the spacing, and the spacing.
+
+    Parameters
+    ----------
+    chi_square : (m,) ndarray
+        Of the fits with unit σ.
+    degrees_of_freedom
+        The same for all.
+    """
     from scipy.special import chdtri
 
-    nu = degrees_of_freedom
-    ends = chi_square / chdtri(nu, np.array([_SCALE_TAIL, 1 - _SCALE_TAIL]))
+    most, least = chdtri(degrees_of_freedom, np.array([_SCALE_TAIL, 1 - _SCALE_TAIL]))
+    spacing = 0.5 * math.log(most / least) / (_SCALE_STEPS - 1)
     # A fit that happens to leave no residual still has the rounding of the numbers it was given.
-    low, high = (float(end) for end in np.sqrt(np.maximum(ends, 1e-24)))
-    return np.geomspace(low, high, _SCALE_NODES)
+    lowest = np.maximum(np.sqrt(chi_square / most), 1e-12)
+    return np.floor(np.log(lowest) / spacing).astype(np.intp), spacing
+
+
+def scale_nodes_from(first: int, spacing: float) -> FloatArray:
+    """Return the nodes of σ that begin at a multiple of their spacing."""
+    return np.asarray(np.exp(spacing * np.arange(first, first + _SCALE_STEPS + 1)))

@@ -35,7 +35,7 @@ if TYPE_CHECKING:
     from knought.laws.salt import SaltLaw
     from knought.measurement.table import RateTable
 
-__all__ = ["DEFAULT_TEMPERATURE_LAW", "ManySurfaceFits", "SurfaceFit", "fit_many", "fit_surface"]
+__all__ = ["DEFAULT_TEMPERATURE_LAW", "ManySurfaceFits", "SurfaceFit", "akaike", "fit_many", "fit_surface"]
 
 DEFAULT_TEMPERATURE_LAW = "eyring"
 DEFAULT_REFERENCE_TEMPERATURE = 298.15
@@ -88,17 +88,40 @@ class SurfaceFit(Found):
         χ² + 2K + 2K(K+1)/(n-K-1) where u is stated; n ln(χ²/n) in place of χ², and one parameter
         more, where it comes from the scatter (Burnham and Anderson 2002, sections 2.2 and 2.4).
         """
-        n, K = self.observations.runs, len(self.distribution.names)
-        if not self.scatter.stated:
-            K += 1
-        if n - K - 1 <= 0:
-            return float("nan")
-        misfit = self.scatter.chi_square
-        if not self.scatter.stated:
-            if misfit <= 0:
-                return float("nan")
-            misfit = n * float(np.log(misfit / n))
-        return misfit + 2 * K + 2 * K * (K + 1) / (n - K - 1)
+        found = akaike(
+            np.array([self.scatter.chi_square]),
+            self.observations.runs,
+            len(self.distribution.names),
+            stated=self.scatter.stated,
+        )
+        return float(found[0])
+
+
+def akaike(chi_square: FloatArray, runs: int, parameters: int, *, stated: bool) -> FloatArray:
+    """Return AICc of fits to data sets of one size; see :attr:`SurfaceFit.aicc`.
+
+    Parameters
+    ----------
+    chi_square : (m,) ndarray
+        Of the fits; with unit weights where u is not stated.
+    runs, parameters
+        n, and K without σ.
+    stated
+        Whether u is stated.
+
+    Returns
+    -------
+    (m,) ndarray
+        nan where it is not defined.
+    """
+    n, K = runs, parameters + (0 if stated else 1)
+    if n - K - 1 <= 0:
+        return np.full(len(chi_square), np.nan)
+    penalty = 2 * K + 2 * K * (K + 1) / (n - K - 1)
+    if stated:
+        return np.asarray(chi_square + penalty)
+    positive = np.where(chi_square > 0, chi_square, np.nan)
+    return np.asarray(n * np.log(positive / n) + penalty)
 
 
 def fit_surface(

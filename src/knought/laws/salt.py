@@ -69,6 +69,11 @@ class SaltLaw:
     given_charge_product: float | None = None
 
     @property
+    def ion_size(self) -> float | None:
+        """Ion-size parameter å in m of the extended law; None for other laws."""
+        return self.form.ion_size if isinstance(self.form, ExtendedForm) else None
+
+    @property
     def parameters(self) -> tuple[str, ...]:
         """Names of the law's parameters."""
         named = (

@@ -209,7 +209,7 @@ def _refined(
         f = np.asarray(long_right - residual - long_matrix @ x, dtype=float)
         g = np.asarray(-(long_matrix.T @ residual), dtype=float)
         # Solve  dr + A dx = f,  Aᵀ dr = g  with A = Q R.
-        lower_solution = _solve_upper_transposed(upper, g)
+        lower_solution = np.linalg.solve(upper.T, g)
         projected = q.T @ f
         dx = _solve_upper(upper, projected - lower_solution)
         dr = f - q @ projected + q @ lower_solution
@@ -219,15 +219,9 @@ def _refined(
 
 
 def _solve_upper(upper: FloatArray, right: FloatArray) -> FloatArray:
-    from scipy.linalg import solve_triangular
-
-    return np.asarray(solve_triangular(upper, right, lower=False))
-
-
-def _solve_upper_transposed(upper: FloatArray, right: FloatArray) -> FloatArray:
-    from scipy.linalg import solve_triangular
-
-    return np.asarray(solve_triangular(upper, right, lower=False, trans="T"))
+    # Of a triangular matrix, elimination is substitution; LAPACK's own routine for it comes with
+    # scipy.linalg, which takes longer to load than a fit.
+    return np.asarray(np.linalg.solve(upper, right))
 
 
 def _triangular_inverse(upper: FloatArray) -> FloatArray:

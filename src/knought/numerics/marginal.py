@@ -16,6 +16,7 @@ give it without forming a product: A_j = Q_j R_j, then the small stack (R_j/σ; 
 
 from __future__ import annotations
 
+from copy import copy
 from dataclasses import dataclass
 
 import numpy as np
@@ -108,6 +109,13 @@ class CellSolver:
         self._priors[hidden:, : self._p] = prior_rows
         self._prior_values = np.concatenate([np.zeros(hidden), prior_values])
         self._factorise()
+
+    def with_scales(self, scales: FloatArray) -> CellSolver:
+        """Return the solver of the same designs at other values of σ, ``(s,)``."""
+        other = copy(self)
+        other._scales = np.asarray(scales, dtype=float)
+        other._factorise()
+        return other
 
     def _factorise(self) -> None:
         """Factorise the small stack (R/σ; priors) of every cell and scale."""
