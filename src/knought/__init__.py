@@ -38,12 +38,13 @@ if TYPE_CHECKING:
     from knought.fitting.bootstrap import bootstrap
     from knought.fitting.estimate import Estimate
     from knought.fitting.fit import fit
+    from knought.fitting.fit_many import fit_many
     from knought.fitting.ion_size import fit_ion_size
     from knought.fitting.k_space import fit_in_k
     from knought.fitting.monte_carlo import monte_carlo
     from knought.fitting.open_fit import OpenFit
     from knought.fitting.profile import profile_ion_size
-    from knought.fitting.surface_fit import SurfaceFit, fit_many
+    from knought.fitting.surface_fit import SurfaceFit
     from knought.laws.open_law import Priors
     from knought.measurement.first_order import first_order
     from knought.measurement.initial_slope import initial_slope
@@ -138,7 +139,7 @@ _HOMES = {
     "fit": "fitting.fit",
     "fit_in_k": "fitting.k_space",
     "fit_ion_size": "fitting.ion_size",
-    "fit_many": "fitting.surface_fit",
+    "fit_many": "fitting.fit_many",
     "initial_slope": "measurement.initial_slope",
     "ionic_strength": "chemistry.medium",
     "monte_carlo": "fitting.monte_carlo",

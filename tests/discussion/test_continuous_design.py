@@ -18,7 +18,8 @@ import pytest
 from knought.discussion.cell_information import CellInformation
 from knought.discussion.continuous_design import continuous_design, derivatives
 from knought.discussion.criteria import QuantityCriterion, criterion_of
-from knought.discussion.exchange import Floor, exchange
+from knought.discussion.design_floor import Floor
+from knought.discussion.exchange import exchange
 from knought.discussion.plan_aims import Aim, read_aim
 from knought.discussion.reach import Reach
 from knought.laws.surface import Rows

@@ -8,7 +8,8 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from knought.discussion.criteria import criterion_of
-from knought.discussion.exchange import Floor, exchange, random_design, random_search
+from knought.discussion.design_floor import Floor, random_design
+from knought.discussion.exchange import exchange, random_search
 from knought.discussion.plan_aims import read_aim
 from knought.discussion.plan_model import PlanModel, Repeatability, assumed_model
 from knought.discussion.reach import Reach
@@ -73,16 +74,16 @@ def test_exchange_is_never_worse_than_ten_times_as_many_random_designs(
     found = exchange(criterion, runs, Floor.none(reach), generator(3), starts=2)
     evaluations = 10 * found.evaluations
     chance = random_search(criterion, runs, Floor.none(reach), generator(4), evaluations)
-    assert found.value <= chance.value * (1 + 2e-5)
+    assert found.value <= chance.value * (1 + 1e-12)
 
 
 def test_it_is_not_worse_either_where_a_floor_is_kept() -> None:
     reach = Reach.of(CELSIUS[::2])
     criterion = criterion_of(read_aim("activation_energy"), model(), reach)
     floor = Floor(reach.temperature_level, reach.ionic_strength_level, temperatures=3)
-    found = exchange(criterion, 6, floor, generator(3), starts=2, complete=0)
+    found = exchange(criterion, 6, floor, generator(3), starts=1, complete=0)
     chance = random_search(criterion, 6, floor, generator(4), 10 * found.evaluations)
-    assert found.value <= chance.value * (1 + 2e-5)
+    assert found.value <= chance.value * (1 + 1e-12)
     whole = exchange(criterion, 6, floor, generator(3))
     assert found.value == pytest.approx(whole.value, rel=1e-6)
 

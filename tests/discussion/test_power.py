@@ -19,7 +19,7 @@ from knought.discussion.power import (
     planned_table,
 )
 from knought.fitting.assess import assess
-from knought.fitting.surface_fit import fit_many
+from knought.fitting.fit_many import fit_many
 from knought.measurement.shared_errors import SharedError
 from knought.measurement.table import RateTable
 from tests.discussion.test_exchange import model

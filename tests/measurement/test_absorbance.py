@@ -14,7 +14,7 @@ import knought as kn
 from knought.chemistry.debye_huckel import debye_huckel
 from knought.chemistry.medium import prepare
 from knought.errors import InputError
-from knought.fitting.surface_fit import fit_many
+from knought.fitting.fit_many import fit_many
 from knought.measurement.absorbance import Optics
 from knought.measurement.complexed_product import ComplexedProduct
 from knought.measurement.first_order import first_orders

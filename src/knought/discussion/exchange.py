@@ -1,7 +1,8 @@
 """Exact designs by exchange: take out each run in turn and put it where it tells most.
 
 Fedorov's exchange (Theory of Optimal Experiments, 1972) with first improvement and many random
-starts (Cook and Nachtsheim, Technometrics 22 (1980) 315). A floor of distinct temperatures and
+starts (Cook and Nachtsheim, Technometrics 22 (1980) 315); the best are then improved by pairs, and
+shaken. A floor of distinct temperatures and
 ionic strengths is kept at every step, and the working time that changes of temperature cost is
 part of the criterion: what is made small is the criterion per unit of working time. Where there are
 few designs, every one is tried instead.
@@ -16,14 +17,14 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
+from knought.discussion.design_floor import Floor, random_design
 from knought.errors import InputError
 
 if TYPE_CHECKING:
-    from knought.arrays import BoolArray, FloatArray, IndexArray
+    from knought.arrays import IndexArray
     from knought.discussion.criteria import Criterion
-    from knought.discussion.reach import Reach
 
-__all__ = ["Exchanged", "Floor", "exchange", "random_design", "random_search"]
+__all__ = ["Exchanged", "exchange", "random_search"]
 
 #: A change counts as an improvement if it lowers the criterion by more than this fraction.
 _IMPROVES = 1e-9
@@ -34,84 +35,20 @@ _MOST_PASSES = 60
 #: So many of the best single-exchange designs are improved by pairs as well.
 _POLISHED = 3
 
+#: How often the best design is shaken.
+_SHAKES = 8
+
 #: Of the places for the first run of a pair, this many of the best are tried.
 _FIRST_OF_PAIR = 9
 
 #: Up to so many designs of one run less, every design is tried instead.
 COMPLETE = 1500
 
-#: Draws of a random design after which the floor is said to be out of reach.
-_MOST_DRAWS = 200
+#: By so much, relatively, may a value be off that comes from a design which leaves parameters open.
+_BLURRED = 1e-4
 
 #: Designs that a random search values at once.
 _BLOCK = 256
-
-
-@dataclass(frozen=True, eq=False)
-class Floor:
-    """How many temperatures and ionic strengths a design must have, and what changes cost.
-
-    Attributes
-    ----------
-    temperature_level, ionic_strength_level : (N,) ndarray of int
-        Level of each candidate.
-    temperatures, ionic_strengths
-        Least number of distinct levels, runs already made included.
-    made_temperature, made_ionic_strength
-        Levels that runs already made have; -1 for one that no candidate has.
-    change
-        What one change of temperature costs, in working times of a run.
-    """
-
-    temperature_level: IndexArray
-    ionic_strength_level: IndexArray
-    temperatures: int = 1
-    ionic_strengths: int = 1
-    made_temperature: frozenset[int] = frozenset()
-    made_ionic_strength: frozenset[int] = frozenset()
-    change: float = 0.0
-
-    @classmethod
-    def none(cls, reach: Reach, change: float = 0.0) -> Floor:
-        """Return the floor that forbids nothing."""
-        return cls(reach.temperature_level, reach.ionic_strength_level, change=change)
-
-    def allowed(self, runs: IndexArray, left: int = 1) -> BoolArray:
-        """Return which candidates one of `left` further runs may take, ``(N,)``.
-
-        Parameters
-        ----------
-        runs : (N,) ndarray of int
-            The design without the further runs.
-        left
-            Runs still to be placed, this one included.
-        """
-        may = np.ones(len(runs), dtype=bool)
-        for level, least, made in (
-            (self.temperature_level, self.temperatures, self.made_temperature),
-            (self.ionic_strength_level, self.ionic_strengths, self.made_ionic_strength),
-        ):
-            have = set(level[runs > 0].tolist()) | made
-            if least - len(have) > left:
-                may[:] = False
-            elif least - len(have) == left:
-                may &= ~np.isin(level, list(have))
-        return may
-
-    def time(self, runs: IndexArray) -> FloatArray:
-        """Return the working time with one run more at each candidate, over that of the runs."""
-        if self.change == 0:
-            return np.ones(len(runs))
-        have = set(self.temperature_level[runs > 0].tolist())
-        new = ~np.isin(self.temperature_level, list(have))
-        total = float(runs.sum()) + 1
-        return np.asarray((total + self.change * np.maximum(len(have) + new - 1, 0)) / total)
-
-    def time_of(self, runs: IndexArray) -> float:
-        """Return the working time of a design over that of its runs."""
-        levels = len(set(self.temperature_level[runs > 0].tolist()))
-        total = float(runs.sum())
-        return (total + self.change * max(levels - 1, 0)) / total
 
 
 @dataclass(frozen=True, eq=False)
@@ -178,7 +115,75 @@ def exchange(
     polished = [_improved_by_pairs(criterion, each, floor, random) for each in leading]
     evaluations = sum(each.evaluations for each in (*found, *polished))
     valued = [_valued(criterion, each.runs, floor, evaluations) for each in polished]
-    return min(valued, key=lambda each: each.value)
+    best = min(valued, key=lambda each: each.value)
+    return _shaken(criterion, _turned(criterion, best, floor, random), floor, random)
+
+
+def _turned(
+    criterion: Criterion, best: Exchanged, floor: Floor, random: np.random.Generator
+) -> Exchanged:
+    """Start again from the mirror images of a design; the best stays."""
+    evaluations = best.evaluations
+    for turned in _mirrored(best.runs, floor):
+        found = _improved(criterion, turned, floor, random)
+        evaluations += found.evaluations
+        best = min(best, _valued(criterion, found.runs, floor, 0), key=lambda each: each.value)
+    return Exchanged(best.runs, best.value, evaluations)
+
+
+def _mirrored(runs: IndexArray, floor: Floor) -> list[IndexArray]:
+    """Return the design with temperatures, ionic strengths or both in the opposite order.
+
+    Whether high ionic strengths stand at high or at low temperatures makes two optima that no
+    exchange leads between.
+    """
+    T, I = floor.temperature_level, floor.ionic_strength_level
+    places = {(int(t), int(i)): place for place, (t, i) in enumerate(zip(T, I, strict=True))}
+    designs = []
+    for in_T, in_I in ((True, False), (False, True), (True, True)):
+        there = [
+            places.get((int(T.max() - t) if in_T else int(t), int(I.max() - i) if in_I else int(i)))
+            for t, i in zip(T, I, strict=True)
+        ]
+        if any(place is None for place, count in zip(there, runs, strict=True) if count):
+            continue
+        design = np.zeros_like(runs)
+        for place, count in zip(there, runs, strict=True):
+            if place is not None:
+                design[place] += count
+        designs.append(design)
+    return designs
+
+
+def _shaken(
+    criterion: Criterion, best: Exchanged, floor: Floor, random: np.random.Generator
+) -> Exchanged:
+    """Take out several runs at random, put them back where they tell most, and exchange again.
+
+    Leaves optima that neither single nor double exchanges can; the best stays.
+    """
+    evaluations = best.evaluations
+    for turn in range(_SHAKES):
+        runs = best.runs.copy()
+        out = 1 + turn % (int(runs.sum()) - 1) if runs.sum() > 1 else 0
+        taken = random.choice(np.repeat(np.arange(len(runs)), runs), size=out, replace=False)
+        np.subtract.at(runs, taken, 1)
+        for left in range(out, 0, -1):
+            scores = criterion.with_one_more(runs.astype(float)) * floor.time(runs)
+            scores = np.where(floor.allowed(runs, left), scores, np.inf)
+            evaluations += len(scores)
+            if not np.isfinite(scores).any():
+                break
+            # Not always the best place: else the same design comes back.
+            order = np.argsort(scores)[: np.isfinite(scores).sum()]
+            runs[order[min(int(random.integers(3)), len(order) - 1)]] += 1
+        if runs.sum() != best.runs.sum():
+            continue
+        found = _improved(criterion, runs, floor, random)
+        evaluations += found.evaluations
+        again = _valued(criterion, found.runs, floor, evaluations)
+        best = again if again.value < best.value else best
+    return Exchanged(best.runs, best.value, evaluations)
 
 
 def _valued(criterion: Criterion, runs: IndexArray, floor: Floor, evaluations: int) -> Exchanged:
@@ -195,7 +200,8 @@ def _every_design(criterion: Criterion, runs: int, floor: Floor) -> Exchanged:
     InputError
         If none keeps the floor.
     """
-    best, value, evaluations = None, math.inf, 0
+    near: list[tuple[float, IndexArray]] = []
+    lowest, evaluations = math.inf, 0
     for chosen in combinations_with_replacement(range(len(criterion)), runs - 1):
         design = np.bincount(np.array(chosen, dtype=np.intp), minlength=len(criterion))
         may = floor.allowed(design)
@@ -204,13 +210,17 @@ def _every_design(criterion: Criterion, runs: int, floor: Floor) -> Exchanged:
         scores = criterion.with_one_more(design.astype(float)) * floor.time(design)
         scores = np.where(may, scores, np.inf)
         evaluations += len(scores)
-        last = int(np.argmin(scores))
-        if scores[last] < value:
-            best, value = (design, last), float(scores[last])
-    if best is None:
+        lowest = min(lowest, float(scores.min()))
+        for last in np.flatnonzero(scores <= lowest * (1 + _BLURRED)):
+            whole = design.copy()
+            whole[last] += 1
+            near.append((float(scores[last]), whole))
+    if not math.isfinite(lowest):
         raise InputError("no design can be valued", "allow more temperatures or ionic strengths")
-    best[0][best[1]] += 1
-    return _valued(criterion, best[0], floor, evaluations)
+    # Updates from designs that leave a parameter open lose digits: the best are valued anew.
+    best = {each.tobytes(): each for score, each in near if score <= lowest * (1 + _BLURRED)}
+    valued = [_valued(criterion, each, floor, evaluations) for each in best.values()]
+    return min(valued, key=lambda each: each.value)
 
 
 def _improved_by_pairs(
@@ -281,32 +291,6 @@ def _improved(
         if value >= before * (1 - _IMPROVES):
             break
     return Exchanged(runs, value, evaluations)
-
-
-def random_design(runs: int, floor: Floor, random: np.random.Generator) -> IndexArray:
-    """Return a design drawn at random that keeps the floor, ``(N,)``.
-
-    Raises
-    ------
-    InputError
-        If there are too few runs, or what is forbidden leaves too few levels.
-    """
-    for _ in range(_MOST_DRAWS):
-        design = np.zeros(len(floor.temperature_level), dtype=np.intp)
-        for left in range(runs, 0, -1):
-            may = np.flatnonzero(floor.allowed(design, left))
-            if len(may) == 0:
-                # The last run may need a new temperature and a new ionic strength that cannot be
-                # set together: draw again.
-                break
-            design[random.choice(may)] += 1
-        else:
-            return design
-    raise InputError(
-        f"{runs} runs cannot have {floor.temperatures} temperatures and "
-        f"{floor.ionic_strengths} ionic strengths here",
-        "plan more runs, or ask for fewer distinct temperatures or ionic strengths",
-    )
 
 
 def random_search(

@@ -17,7 +17,8 @@ import numpy as np
 
 from knought.discussion.continuous_design import ContinuousDesign, continuous_design
 from knought.discussion.criteria import Criterion, criterion_of
-from knought.discussion.exchange import Exchanged, Floor, exchange
+from knought.discussion.design_floor import Floor
+from knought.discussion.exchange import Exchanged, exchange
 from knought.discussion.plan_aims import Aim, read_aim
 from knought.discussion.plan_assumptions import PlanRequest, assumption_lines, model_for
 from knought.discussion.plan_cautions import cautions

@@ -11,7 +11,7 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from knought.discussion.exchange import Floor
+from knought.discussion.design_floor import Floor
 from knought.errors import InputError
 
 if TYPE_CHECKING:
