@@ -62,7 +62,10 @@ def charge_product_by_law(assessment: Assessment, ax: Axes) -> Axes:
     if len(integers) <= _MOST_INTEGERS:
         for integer in integers:
             ax.axvline(integer, color=MUTED, lw=0.7, ls=(0, (1, 2)), gid=f"integer-{integer}")
-        ax.set_xticks(list(integers), [f"{z:+d}".replace("-", "−") if z else "0" for z in integers])
+        if len(integers) > 2:
+            ax.set_xticks(
+                list(integers), [f"{z:+d}".replace("-", "−") if z else "0" for z in integers]
+            )
     if given is not None:
         ax.axvline(given, color=INK, lw=1.0, ls=(0, (4, 2)), gid="given")
     dark, light = sequential(2)[0], MUTED

@@ -52,7 +52,9 @@ def rate_constant_map(assessment: Assessment, ax: Axes) -> Axes:
     levels = _levels(float(lg_k.min()), float(lg_k.max()))
     ends = [float(lg_k.min()) - 1.0, *np.log10(levels), float(lg_k.max()) + 1.0]
     ax.contourf(T, roots, lg_k, levels=ends, colors=_tints(len(ends) - 1))
-    lines = ax.contour(T, roots, lg_k, levels=np.log10(levels), colors=INK, linewidths=0.8)
+    lines = ax.contour(
+        T, roots, lg_k, levels=np.log10(levels), colors=INK, linewidths=0.8, linestyles="solid"
+    )
     ax.clabel(lines, fmt=_written, fontsize=7, inline_spacing=3)
     for row, t, root in zip(
         np.flatnonzero(assessment.rates.used), seen.T, np.sqrt(seen.ionic_strength), strict=True
