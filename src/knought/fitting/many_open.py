@@ -45,6 +45,9 @@ __all__ = ["ManyOpen", "OpenResults"]
 #: Data sets are solved in blocks of about this many numbers, so that memory stays bounded.
 _BLOCK_NUMBERS = 4_000_000
 
+#: Components that together weigh less than this in every data set of a block are left out.
+_NEGLIGIBLE = 1e-10
+
 #: Results whose movement decides whether a grid is fine enough.
 _WATCHED = ("rate_constant", "charge_product")
 
@@ -215,6 +218,9 @@ class ManyOpen:
         m, cells, scales, p = solutions.means.shape
         by_cell = weights.reshape(m, cells, scales).sum(axis=2)
         few = (1.0 / np.sum(by_cell**2, axis=1) < FEWEST_CELLS) & (grid.cells > 1)
+        heavy = np.flatnonzero(np.max(weights, axis=0) > _NEGLIGIBLE / weights.shape[1])
+        weights = weights[:, heavy]
+        weights = (weights / weights.sum(axis=1, keepdims=True)).T
         mixtures = {}
         for name, each in rows.items():
             row = np.broadcast_to(each.rows, (cells, 1, p))[:, 0]
@@ -222,7 +228,7 @@ class ManyOpen:
             location = np.einsum("mcsp,cp->csm", solutions.means, row) + offset[:, None, None]
             variance = np.einsum("cp,cspq,cq->cs", row, solutions.covariances, row)
             scale = np.sqrt(np.maximum(variance, 0.0)).reshape(-1, 1)
-            mixtures[name] = Mixture(weights.T, location.reshape(-1, m), scale)
+            mixtures[name] = Mixture(weights, location.reshape(-1, m)[heavy], scale[heavy])
         charges = None
         if "charge_product" in mixtures:
             mixture = mixtures["charge_product"]

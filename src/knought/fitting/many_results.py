@@ -131,9 +131,13 @@ def results_of(
         As of :class:`ManyResults`.
     """
     columns = []
+    known: list[tuple[Mixture, tuple[FloatArray, ...]]] = []
     for name, mixture in mixtures.items():
-        value, u = mixture.mean, mixture.standard_deviation
-        low, high = mixture.interval(coverage)
+        found = _as_before(mixture, known)
+        if found is None:
+            found = (mixture.mean, mixture.standard_deviation, *mixture.interval(coverage))
+            known.append((mixture, found))
+        value, u, low, high = found
         if name == _RATE:
             value, low, high = np.exp(value), np.exp(low), np.exp(high)
             u = value * u
@@ -150,6 +154,29 @@ def results_of(
         degrees_of_freedom,
         from_scatter,
     )
+
+
+def _as_before(
+    mixture: Mixture, known: Sequence[tuple[Mixture, tuple[FloatArray, ...]]]
+) -> tuple[FloatArray, ...] | None:
+    """Return a result that is a b + c of one found already, by that; None where there is none.
+
+    E_a and ΔH‡, ΔG‡ and ln k, ln A and ΔS‡ are such pairs: their quantiles are sought once.
+    """
+    for other, (value, u, low, high) in known:
+        if other.scales.shape != mixture.scales.shape or not np.all(other.scales > 0):
+            continue
+        size = float(mixture.scales.flat[0] / other.scales.flat[0])
+        if not np.allclose(mixture.scales, size * other.scales, rtol=1e-11, atol=0):
+            continue
+        for factor in (size, -size):
+            shift = mixture.locations - factor * other.locations
+            first = float(shift.flat[0])
+            # Locations are compared in units of the spread: that is what quantiles are good to.
+            if np.all(np.abs(shift - first) <= 1e-10 * mixture.scales):
+                ends = (factor * low + first, factor * high + first)
+                return (factor * value + first, size * u, np.minimum(*ends), np.maximum(*ends))
+    return None
 
 
 def joined(parts: Sequence[ManyResults], order: IndexArray | None = None) -> ManyResults:

@@ -16,7 +16,7 @@ from dataclasses import dataclass, field
 
 import numpy as np
 
-from knought.arrays import FloatArray, frozen
+from knought.arrays import BoolArray, FloatArray, IndexArray, frozen
 from knought.errors import InputError
 
 __all__ = ["Histogram", "Mixture", "chi_square_survival", "normal_quantile", "student_quantile"]
@@ -25,6 +25,9 @@ __all__ = ["Histogram", "Mixture", "chi_square_survival", "normal_quantile", "st
 _RELATIVE_TOLERANCE = 1e-13
 
 _MOST_STEPS = 200
+
+#: Of many results, after so many steps those that are found are put aside.
+_STEPS_BETWEEN = 4
 
 #: With this many degrees of freedom, Student's t is the normal distribution to 1e-9.
 _AS_GOOD_AS_NORMAL = 1e9
@@ -133,12 +136,7 @@ class Mixture:
 
     def pdf(self, x: FloatArray | float) -> FloatArray:
         """Return the probability density at `x`, shape ``(...)``."""
-        standard = self._standardised(x)
-        if self._normal:
-            density = np.exp(-0.5 * standard**2) / math.sqrt(2 * math.pi)
-        else:
-            density = _student_density(standard, self.degrees_of_freedom)
-        return self._average(density / self.scales)
+        return self._average(self._component_pdf(self._standardised(x)))
 
     def quantile(self, probability: float) -> FloatArray:
         """Return the value below which `probability` of the mixture lies, shape ``(...)``.
@@ -161,20 +159,61 @@ class Mixture:
         low, high = ends.min(axis=0), ends.max(axis=0)
         if len(self.weights) == 1:
             return np.asarray(low)
-        x = np.clip(self.mean + step * self.standard_deviation, low, high)
-        goal = _RELATIVE_TOLERANCE * np.maximum(self.standard_deviation, 1e-300)
-        for _ in range(_MOST_STEPS):
-            excess = self.cdf(x) - probability
+        spread = self.standard_deviation
+        x = np.clip(self.mean + step * spread, low, high)
+        goal = _RELATIVE_TOLERANCE * np.maximum(spread, 1e-300)
+        if x.ndim != 1:
+            return self._root(probability, x, low, high, goal)[0]
+        # Of many results, those that are found are left alone while the others go on.
+        found = np.empty_like(x)
+        todo, part = np.arange(len(x)), self
+        while True:
+            x, low, high, done = part._root(probability, x, low, high, goal, _STEPS_BETWEEN)
+            found[todo] = x
+            if np.all(done):
+                return found
+            rest = np.flatnonzero(~done)
+            todo, part = todo[rest], part._results(rest)
+            x, low, high, goal = x[rest], low[rest], high[rest], goal[rest]
+
+    def _results(self, which: IndexArray) -> Mixture:
+        """Return some of several results."""
+        nu, u = self.degrees_of_freedom, self.standard_uncertainty
+        return Mixture(
+            self.weights if self.weights.ndim == 1 else self.weights[:, which],
+            self.locations[:, which],
+            self.scales[:, which],
+            nu[which] if isinstance(nu, np.ndarray) and nu.ndim else nu,
+            None if u is None else u[which],
+        )
+
+    def _root(
+        self,
+        probability: float,
+        x: FloatArray,
+        low: FloatArray,
+        high: FloatArray,
+        goal: FloatArray,
+        steps: int = _MOST_STEPS,
+    ) -> tuple[FloatArray, FloatArray, FloatArray, BoolArray]:
+        """Take Newton steps inside a bracket; return x, the bracket, and what is found."""
+        done = np.zeros(np.shape(x), dtype=bool)
+        for _ in range(steps):
+            standard = self._standardised(x)
+            excess = self._average(self._component_cdf(standard)) - probability
             low, high = np.where(excess < 0, x, low), np.where(excess > 0, x, high)
             with np.errstate(divide="ignore", invalid="ignore"):
-                newton = x - excess / self.pdf(x)
+                newton = x - excess / self._average(self._component_pdf(standard))
             inside = (newton > low) & (newton < high) & np.isfinite(newton)
             moved = np.where(inside, newton, 0.5 * (low + high))
             done = (np.abs(moved - x) <= goal) | (excess == 0) | (high - low <= goal)
             x = np.where(excess == 0, x, moved)
             if np.all(done):
                 break
-        return np.asarray(x)
+        else:
+            # What has not settled after so many steps moves within rounding.
+            done = done | (steps == _MOST_STEPS)
+        return np.asarray(x), low, high, np.asarray(done)
 
     def interval(self, coverage: float = 0.95) -> tuple[FloatArray, FloatArray]:
         """Return the probabilistically symmetric interval of the given coverage (JCGM 101, 3.15).
@@ -197,6 +236,13 @@ class Mixture:
         # A certain component (scale 0) is a step: -inf below it, +inf at and above it.
         step = np.where(x >= self.locations, np.inf, -np.inf)
         return np.where(self.scales == 0, step, standard)
+
+    def _component_pdf(self, standard: FloatArray) -> FloatArray:
+        if self._normal:
+            density = np.exp(-0.5 * standard**2) / math.sqrt(2 * math.pi)
+        else:
+            density = _student_density(standard, self.degrees_of_freedom)
+        return np.asarray(density / self.scales)
 
     def _component_cdf(self, standard: FloatArray) -> FloatArray:
         from scipy.special import ndtr, stdtr
