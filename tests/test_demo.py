@@ -52,6 +52,7 @@ def test_the_true_values_lie_in_the_intervals(name: str, given: bool) -> None:
         assert low <= true <= high, parameter
 
 
+@pytest.mark.usefixtures("undrawn")
 def test_the_demo_writes_every_study_and_says_what_is_true(
     tmp_path: Path, capsys: pytest.CaptureFixture[str]
 ) -> None:

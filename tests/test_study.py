@@ -121,6 +121,7 @@ def test_a_table_outside_the_folder_is_refused(folder: Path) -> None:
         read_study(inner / "study.toml").report()
 
 
+@pytest.mark.usefixtures("undrawn")
 def test_an_existing_folder_is_not_replaced_without_being_told(folder: Path) -> None:
     out = folder / "out"
     out.mkdir()
@@ -158,6 +159,7 @@ Paper B,1995,303.15,0.05,18.6,0.6
 """
 
 
+@pytest.mark.usefixtures("undrawn")
 def test_a_study_with_literature_and_candidates_discusses_them(folder: Path) -> None:
     (folder / "literature.csv").write_text(LITERATURE, encoding="utf-8")
     path = with_lines(
@@ -183,6 +185,7 @@ def test_a_study_with_literature_and_candidates_discusses_them(folder: Path) -> 
     assert not any("proves" in sentence for sentence in report.discussion)
 
 
+@pytest.mark.usefixtures("undrawn")
 def test_shared_errors_of_a_study_file_reach_the_budget(folder: Path) -> None:
     path = with_lines(
         folder,
@@ -225,6 +228,7 @@ def test_a_wrong_shared_error_is_named(folder: Path, line: str, message: str) ->
     assert message in str(caught.value)
 
 
+@pytest.mark.usefixtures("undrawn")
 def test_checks_of_a_study_file_reach_page_tables_and_record(folder: Path) -> None:
     path = with_lines(
         folder,
@@ -235,7 +239,9 @@ def test_checks_of_a_study_file_reach_page_tables_and_record(folder: Path) -> No
         "bootstrap = 100",
     )
     told: list[tuple[str, int]] = []
-    report = kn.run_study(path, folder / "out", progress=lambda *each: told.append(each))
+    report = kn.run_study(
+        path, folder / "out", figure_formats=[], progress=lambda *each: told.append(each)
+    )
     assert told[-1] == ("refits", 100)
     assert ("draws", 20_000) in told
     record = json.loads((folder / "out" / "results.json").read_text(encoding="utf-8"))
@@ -258,6 +264,7 @@ def test_checks_of_a_study_file_reach_page_tables_and_record(folder: Path) -> No
     assert len(report.tables) > 6
 
 
+@pytest.mark.usefixtures("undrawn")
 def test_an_interrupt_during_the_checks_leaves_nothing_behind(folder: Path) -> None:
     path = with_lines(folder, "[checks]", 'monte_carlo = "adaptive"')
 
@@ -286,6 +293,7 @@ def test_wrong_checks_are_named(folder: Path, line: str, message: str) -> None:
     assert message in str(caught.value)
 
 
+@pytest.mark.usefixtures("undrawn")
 def test_a_study_runs_from_traces_to_the_report(tmp_path: Path) -> None:
     from tests.measurement.test_absorbance import _write_study
 
