@@ -30,6 +30,7 @@ __all__ = [
     "atomic_write_bytes",
     "atomic_write_text",
     "os_problem",
+    "read_bytes",
     "refuse_existing",
     "safe_name",
     "sha256_of",
@@ -267,6 +268,26 @@ def _exchanged(one: Path, other: Path) -> bool:
         return bool(libc.renameat2(at_cwd, first, at_cwd, second, exchange) == 0)
     except (OSError, AttributeError, TypeError):
         return False
+
+
+def read_bytes(path: str | Path) -> bytes:
+    """Return the content of a file.
+
+    Parameters
+    ----------
+    path
+        The file.
+
+    Raises
+    ------
+    InputError
+        If it cannot be read.
+    """
+    path = Path(path)
+    try:
+        return path.read_bytes()
+    except OSError as error:
+        raise InputError(os_problem(error, path.name or str(path), "read")) from error
 
 
 def sha256_of(source: str | Path | bytes) -> str:

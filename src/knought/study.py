@@ -7,12 +7,11 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 from knought.errors import Caveat, InputError, Problem
-from knought.files import refuse_existing, sha256_of, whole_folder
+from knought.files import read_bytes, refuse_existing, sha256_of, whole_folder
 from knought.fitting.assess import assess
 from knought.measurement.reading import read_rates
-from knought.reporting.cells import plain_lines
 from knought.reporting.figure_files import FIGURE_FORMATS
-from knought.reporting.page import page
+from knought.reporting.folder import report_files
 from knought.reporting.report import Report
 from knought.study_file import read_study_file
 from knought.study_sections.upstream import Upstream
@@ -87,6 +86,7 @@ class Study:
             If anything in the study is wrong, or the runs cannot carry what is asked of them.
         """
         said = self.settings
+        contents = self._contents()
         reduced = None if said.rates is not None else self._upstream().reduced(self.beside)
         assessment = assess(
             self._rates() if reduced is None else reduced.rates,
@@ -108,11 +108,13 @@ class Study:
         return Report(
             assessment,
             said.study.title,
-            self._inputs(),
+            tuple((name, sha256_of(content)) for name, content in contents),
             said.study.seed,
             _discussed(self, assessment),
             said.checks.run(assessment.headline, seed=said.study.seed, progress=progress),
             reduced,
+            said.predict.conditions(assessment.headline),
+            contents,
         )
 
     def _rates(self) -> RateTable:
@@ -137,8 +139,8 @@ class Study:
     def _upstream(self) -> Upstream:
         return Upstream(self.settings.medium, self.settings.traces)
 
-    def _inputs(self) -> tuple[tuple[str, str], ...]:
-        """Name and hash of every file that the study reads."""
+    def _contents(self) -> tuple[tuple[str, bytes], ...]:
+        """Name and content of every file that the study reads, the study file first."""
         said = self.settings
         files = [*self._upstream().files(self.beside)]
         if said.rates is not None:
@@ -146,10 +148,8 @@ class Study:
         if said.literature is not None:
             file = said.literature.file
             files.append((file, self.beside(file, "[literature] file")))
-        return (
-            (self.path.name, sha256_of(self.path)),
-            *((name, sha256_of(path)) for name, path in files),
-        )
+        named = dict([(self.path.name, self.path), *files])
+        return tuple((name, read_bytes(path)) for name, path in named.items())
 
 
 def _once(caveats: Sequence[Caveat]) -> list[Caveat]:
@@ -282,22 +282,9 @@ def write_report(
     """
     refuse_existing(Path(out), overwrite=overwrite)
     # Everything is made before anything is written.
-    files = {
-        "report.html": page(report),
-        "results.json": report.record(),
-        "summary.txt": report.summary(),
-    }
-    for table in report.tables:
-        files[f"tables/{table.name}.txt"] = "\n".join([table.title, *plain_lines(table)]) + "\n"
-    figures = dict(report.figure_files(figure_formats))
-    if report.discussed is not None and report.discussed.plan is not None:
-        files["next-runs.csv"] = report.discussed.plan.csv()
+    files = report_files(report, figure_formats)
     with whole_folder(Path(out), overwrite=overwrite) as folder:
-        for name, text in files.items():
+        for name, content in files.items():
             target = folder / name
-            target.parent.mkdir(exist_ok=True)
-            target.write_text(text, encoding="utf-8", newline="\n")
-        for name, content in figures.items():
-            target = folder / "figures" / name
             target.parent.mkdir(parents=True, exist_ok=True)
             target.write_bytes(content)

@@ -27,6 +27,7 @@ from knought.study_sections.core import (
 from knought.study_sections.discussion import CandidateSection, LiteratureSection
 from knought.study_sections.medium import MediumSection
 from knought.study_sections.plan import PlanSection
+from knought.study_sections.predict import PredictSection
 from knought.study_sections.upstream import TracesSection
 
 if TYPE_CHECKING:
@@ -53,6 +54,7 @@ class StudyFile(Section):
     literature: LiteratureSection | None = None
     candidates: tuple[CandidateSection, ...] = ()
     plan: PlanSection | None = None
+    predict: PredictSection = PredictSection()
 
     @model_validator(mode="after")
     def _one_source(self) -> StudyFile:

@@ -6,6 +6,7 @@ does. Look at ``git diff`` before you believe them.
 
 from __future__ import annotations
 
+import re
 from dataclasses import replace
 from pathlib import Path
 from typing import TYPE_CHECKING
@@ -15,6 +16,7 @@ import pytest
 
 import knought as kn
 from knought.reporting.page import written_page
+from knought.reporting.written_tables import latex_table, markdown_table
 from knought.version import __version__
 from tests.fitting.test_assess import table
 from tests.reporting.page_text import page_text
@@ -104,6 +106,19 @@ SAYS = {
 }
 
 
+#: Numbers in full differ in their last digits from machine to machine.
+_LONG = re.compile(r"-?\d+\.\d{5,}(?:e-?\d+)?")
+
+
+def written_tables(report: kn.Report) -> dict[str, str]:
+    full = "\n".join(table.csv() for table in report.plain_tables)
+    return {
+        "tables-md": "\n".join(map(markdown_table, report.tables)),
+        "tables-tex": "\n".join(map(latex_table, report.tables)),
+        "tables-csv": _LONG.sub(lambda found: f"{float(found[0]):.3g}", full),
+    }
+
+
 @pytest.mark.parametrize("state", STATES)
 def test_page_and_summary_read_as_they_did(state: str, request: pytest.FixtureRequest) -> None:
     report = STATES[state]()
@@ -114,6 +129,7 @@ def test_page_and_summary_read_as_they_did(state: str, request: pytest.FixtureRe
         "page": page_text(html).replace(__version__, "VERSION"),
         "summary": report.summary(),
         "summary-ascii": report.summary("ascii"),
+        **written_tables(report),
     }
     assert SAYS[state] in texts["page"]
     renew = request.config.getoption("--renew-golden")

@@ -19,6 +19,7 @@ from knought.cli import (
     reduce,
     report,
     template,
+    verify,
 )
 from knought.version import __version__
 
@@ -38,6 +39,7 @@ examples:
   knought compensation a.csv b.csv c.csv           several reactions together
   knought template --out my-study                  blank table and study file to fill in
   knought report my-study/study.toml --out report  everything, into a folder
+  knought verify report                            whether it is as written, and comes out again
 """
 
 
@@ -70,6 +72,7 @@ _SUBCOMMANDS: tuple[Subcommand, ...] = (
     read,
     fit,
     report,
+    verify,
     predict,
     compare,
     mechanism,

@@ -34,6 +34,7 @@ __all__ = [
     "quantity_column",
     "symbol_cell",
     "text_column",
+    "trimmed",
     "unit_cell",
     "value_cells",
     "words",
@@ -52,11 +53,14 @@ class Cell:
         What is read, by layout; layouts not named fall back to ``"text"``.
     uncertainty
         The full standard uncertainty, in the column's unit, where the cell shows value ± u.
+    interval
+        Both ends in full, where the cell shows an interval.
     """
 
     raw: float | str | None
     texts: tuple[tuple[Layout, str], ...]
     uncertainty: float | None = None
+    interval: tuple[float, float] | None = None
 
     def written(self, layout: Layout = "text") -> str:
         """Return what is read in `layout`."""
@@ -167,6 +171,19 @@ def number(value: float, *, digits: int | None = None, decimals: int | None = No
     return _cell(value, rounded(value, digits=digits), pair=False)
 
 
+def trimmed(value: float, digits: int) -> Cell:
+    """Return a cell with a number read to `digits` significant digits, zeros at its end left out.
+
+    Parameters
+    ----------
+    value
+        The number; the cell keeps it in full.
+    digits
+        Significant digits at most.
+    """
+    return _cell(value, rounded(float(f"{value:.{digits}g}")), pair=False)
+
+
 def estimate_cells(estimate: Estimate) -> tuple[Cell, Cell]:
     """Return value and standard uncertainty as two cells, in the shown unit."""
     what = estimate.quantity
@@ -204,7 +221,7 @@ def interval_cell(estimate: Estimate, coverage: float = 0.95) -> Cell:
     texts = tuple(
         (layout, f"{ends[0].number(layout)} to {ends[1].number(layout)}") for layout in LAYOUTS
     )
-    return Cell(f"{low!r} {high!r}", texts)
+    return Cell(None, texts, interval=(low, high))
 
 
 def unit_cell(estimate: Estimate) -> Cell:

@@ -110,7 +110,8 @@ def _symbol(what: Quantity) -> Cell:
 def _written(what: Quantity, value: float, u: float | None) -> Cell:
     """Return value ± u in the shown unit, without the unit."""
     digits = what.rounded(value, u)
-    return Cell(what.shown(value), tuple((layout, digits.pair(layout)) for layout in _LAYOUTS))
+    texts = tuple((layout, digits.pair(layout)) for layout in _LAYOUTS)
+    return Cell(what.shown(value), texts, None if u is None else what.shown(u))
 
 
 def _score(value: float, decimals: int) -> Cell:
@@ -202,4 +203,4 @@ def _interval(what: Quantity, low: float, high: float, *, logarithmic: bool) -> 
     texts = tuple(
         (layout, f"{ends[0].number(layout)} to {ends[1].number(layout)}") for layout in _LAYOUTS
     )
-    return Cell(f"{what.shown(low)!r} {what.shown(high)!r}", texts)
+    return Cell(None, texts, interval=(what.shown(low), what.shown(high)))

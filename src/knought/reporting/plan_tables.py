@@ -15,6 +15,7 @@ from knought.reporting.cells import (
     quantity_column,
     symbol_cell,
     text_column,
+    trimmed,
     words,
 )
 from knought.rounding import unit_text
@@ -48,7 +49,7 @@ def planned_runs_table(plan: Plan) -> Table:
     for run in plan.runs:
         row = [words(run.run), number(run.T, decimals=2), number(run.T - 273.15, decimals=1)]
         if run.I is not None:
-            row.append(number(float(f"{run.I:.4g}")))
+            row.append(trimmed(run.I, 4))
         if named:
             row.append(words(run.salt))
         rows.append((*row, number(float(run.day), decimals=0)))

@@ -26,7 +26,7 @@ if TYPE_CHECKING:
     from knought.fitting.estimate import Estimate
     from knought.fitting.found import Found
 
-__all__ = ["predicted_table"]
+__all__ = ["customary_conditions", "predicted_table"]
 
 #: Codes of what is said of a value outside the runs, to the words of the table.
 _BEYOND = {
@@ -34,6 +34,33 @@ _BEYOND = {
     "extrapolated-ionic-strength": "above the measured I",
     "far-from-zero-ionic-strength": "far below the measured I",
 }
+
+
+#: Temperatures in K at which k is told where none are chosen: 25 and 37 °C are asked for most.
+_CUSTOMARY_TEMPERATURES = (298.15, 310.15)
+
+
+def customary_conditions(found: Found) -> tuple[tuple[float, float], ...]:
+    """Return conditions at which k is told where the user chose none.
+
+    Parameters
+    ----------
+    found
+        A fit.
+
+    Returns
+    -------
+    tuple
+        T in K and I in mol/L: T_ref, and 25 and 37 °C where they lie within the runs, each at
+        I → 0 and at the lowest and the highest ionic strength of the runs.
+    """
+    seen = found.observations
+    low, high = seen.temperature_levels[0], seen.temperature_levels[-1]
+    inside = {T for T in _CUSTOMARY_TEMPERATURES if low <= T <= high}
+    temperatures = sorted({float(found.reference_temperature), *inside})
+    levels = seen.ionic_strength_levels if found.describes_salt else ()
+    strengths = sorted({0.0, *(float(levels[i]) for i in (0, -1) if len(levels))})
+    return tuple((T, I) for T in temperatures for I in strengths)
 
 
 def predicted_table(found: Standing, conditions: Sequence[tuple[float, float]]) -> Table:

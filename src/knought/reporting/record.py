@@ -10,9 +10,8 @@ import json
 import math
 from typing import TYPE_CHECKING, Any
 
-import numpy as np
-
-from knought.chemistry.quantities import Quantity, quantity
+from knought.chemistry.quantities import quantity
+from knought.reporting.covariance_tables import basis_quantity, shown_covariance
 from knought.reporting.uncertainty_tables import BUDGETED
 
 if TYPE_CHECKING:
@@ -26,7 +25,7 @@ if TYPE_CHECKING:
     from knought.fitting.surface_fit import SurfaceFit
     from knought.laws.open_law import Priors
 
-__all__ = ["COVERAGE", "estimate_record", "record", "record_text"]
+__all__ = ["COVERAGE", "estimate_record", "record", "record_text", "schema_text"]
 
 #: Probability that every interval of the record holds.
 COVERAGE = 0.95
@@ -34,7 +33,25 @@ COVERAGE = 0.95
 
 def record_text(assessment: Assessment, **about: Any) -> str:
     """Return the record as JSON text that ends with a line break; see :func:`record`."""
-    return json.dumps(record(assessment, **about), ensure_ascii=False, indent=1) + "\n"
+    data = _json_numbers(record(assessment, **about))
+    return json.dumps(data, ensure_ascii=False, indent=1, allow_nan=False) + "\n"
+
+
+def schema_text() -> str:
+    """Return the JSON Schema of ``results.json``, as it ships with the package."""
+    from importlib import resources
+
+    place = resources.files("knought.reporting") / "schemas" / "results.schema.json"
+    return place.read_text(encoding="utf-8")
+
+
+def _json_numbers(data: Any) -> Any:
+    """Return data with null for numbers that JSON does not have."""
+    if isinstance(data, dict):
+        return {key: _json_numbers(value) for key, value in data.items()}
+    if isinstance(data, list | tuple):
+        return [_json_numbers(value) for value in data]
+    return _finite(data) if isinstance(data, float) else data
 
 
 def record(
@@ -157,20 +174,12 @@ def uncertainty_record(found: Found) -> dict[str, Any]:
 
 
 def _covariance_record(found: Found) -> dict[str, Any]:
-    names, matrix = found.covariance()
-    shown = [_basis_quantity(found, name) for name in names]
-    factors = np.array([each.shown(1.0) for each in shown])
+    basis, matrix = shown_covariance(found)
     return {
-        "names": list(names),
-        "units": [each.shown_unit for each in shown],
-        "matrix": (matrix * np.outer(factors, factors)).tolist(),
+        "names": list(found.covariance()[0]),
+        "units": [each.shown_unit for each in basis],
+        "matrix": matrix.tolist(),
     }
-
-
-def _basis_quantity(found: Found, name: str) -> Quantity:
-    if name in found.parameters:
-        return found.parameters[name].quantity
-    return quantity(name)
 
 
 def _law_record(found: Found) -> dict[str, Any]:
@@ -202,7 +211,7 @@ def _both_standard_errors(found: SurfaceFit) -> dict[str, Any]:
     ):
         stated = label == "from_scatter" or found.scatter.stated
         made[label] = {
-            name: _finite(_basis_quantity(found, name).shown(float(error))) if stated else None
+            name: _finite(basis_quantity(found, name).shown(float(error))) if stated else None
             for name, error in zip(names, errors, strict=True)
         }
     return made

@@ -2,13 +2,14 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
 from knought.chemistry.quantities import quantity
+from knought.errors import InputError, quoted
 from knought.measurement.reading import account_lines
-from knought.reporting import tables, uncertainty_tables
+from knought.reporting import covariance_tables, predicted_tables, tables, uncertainty_tables
 from knought.reporting.figure_files import (
     FIGURE_FORMATS,
     WIDTHS,
@@ -17,6 +18,7 @@ from knought.reporting.figure_files import (
     laid_out,
 )
 from knought.reporting.pictures import pictures_of, trace_pictures
+from knought.reporting.plain_tables import plain_table
 from knought.reporting.record import record_text
 from knought.reporting.sections import ANSWER_TABLES, sections_of
 from knought.reporting.sentences import (
@@ -33,6 +35,7 @@ from knought.reporting.upstream_tables import reduction_record, reduction_table
 if TYPE_CHECKING:
     from collections.abc import Iterator, Mapping, Sequence
 
+    import pandas as pd
     from matplotlib.figure import Figure
 
     from knought.fitting.assess import Assessment
@@ -41,6 +44,7 @@ if TYPE_CHECKING:
     from knought.reporting.checked import Checked
     from knought.reporting.discussed import Discussed
     from knought.reporting.pictures import Picture
+    from knought.reporting.plain_tables import PlainTable
     from knought.reporting.sections import Section
     from knought.rounding import Layout
 
@@ -67,6 +71,12 @@ class Report:
         Monte Carlo and bootstrap of the headline, where the study asked for any.
     reduction
         How the rate constants came from traces or slopes, where they did.
+    conditions
+        T in K and I in mol/L at which k is told; if not given, those of
+        :func:`knought.reporting.predicted_tables.customary_conditions`.
+    contents
+        Name and content of every file read, the study file first; kept with the report, so that
+        it can be run again.
     """
 
     assessment: Assessment
@@ -76,6 +86,8 @@ class Report:
     discussed: Discussed | None = None
     checked: Checked | None = None
     reduction: Reduction | None = None
+    conditions: tuple[tuple[float, float], ...] = ()
+    contents: tuple[tuple[str, bytes], ...] = field(default=(), repr=False)
 
     @cached_property
     def introduction(self) -> tuple[str, ...]:
@@ -104,7 +116,10 @@ class Report:
             tables.working_table(self.assessment),
             tables.laws_table(self.assessment),
             tables.temperature_laws_table(self.assessment),
+            predicted_tables.predicted_table(self.assessment, self._conditions),
             uncertainty_tables.budget_table(self.assessment),
+            covariance_tables.covariance_table(self.assessment),
+            covariance_tables.correlation_table(self.assessment),
             uncertainty_tables.prior_table(self.assessment),
             uncertainty_tables.influence_table(self.assessment),
             tables.runs_table(self.assessment),
@@ -113,6 +128,36 @@ class Report:
         discussed = () if self.discussed is None else self.discussed.tables
         reduced = () if self.reduction is None else (reduction_table(self.reduction),)
         return (*(table for table in made if table is not None), *reduced, *checked, *discussed)
+
+    @property
+    def _conditions(self) -> tuple[tuple[float, float], ...]:
+        return self.conditions or predicted_tables.customary_conditions(self.assessment.headline)
+
+    @property
+    def plain_tables(self) -> tuple[PlainTable, ...]:
+        """Every table with its numbers in full, u and ends of intervals in their own columns."""
+        return tuple(plain_table(table) for table in self.tables)
+
+    def frame(self, name: str) -> pd.DataFrame:
+        """Return a table as a data frame, numbers in full.
+
+        Parameters
+        ----------
+        name
+            Name of the table: ``"parameters"``, ``"runs"``, ``"laws"``, ``"predicted"``...
+
+        Raises
+        ------
+        InputError
+            If the report has no such table; those that it has are told.
+        """
+        found = {table.name: table for table in self.tables}
+        if name not in found:
+            raise InputError(
+                f"there is no table {quoted(name)} in this report",
+                f"take one of {', '.join(found)}",
+            )
+        return plain_table(found[name]).frame()
 
     @property
     def upstream(self) -> tuple[str, ...]:

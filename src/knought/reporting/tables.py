@@ -23,6 +23,7 @@ from knought.reporting.cells import (
     quantity_column,
     symbol_cell,
     text_column,
+    trimmed,
     unit_cell,
     words,
 )
@@ -167,7 +168,7 @@ def working_table(assessment: Assessment) -> Table | None:
         tuple(columns),
         tuple(
             (
-                words("→ 0") if I == 0 else number(float(f"{I:.3g}")),
+                words("→ 0") if I == 0 else trimmed(I, 3),
                 *(pair_cell(estimates[name]) for name in names),
             )
             for I, estimates in zip(levels, at, strict=True)
@@ -195,9 +196,9 @@ def laws_table(assessment: Assessment) -> Table:
     lowest = min(
         (law.aicc for law in assessment.laws if not math.isnan(law.aicc)), default=math.nan
     )
-    rows = [_law_row(headline, "headline", "–")] if isinstance(headline, OpenFit) else []
+    rows = [_law_row(headline, "headline", math.nan)] if isinstance(headline, OpenFit) else []
     for law in assessment.laws:
-        difference = "–" if math.isnan(law.aicc) else f"{law.aicc - lowest:.1f}"
+        difference = law.aicc - lowest
         chosen = isinstance(headline, SurfaceFit) and law.salt_law == headline.salt_law
         rows.append(_law_row(law, "headline" if chosen else _law_remark(law), difference))
     notes = [
@@ -227,7 +228,7 @@ def laws_table(assessment: Assessment) -> Table:
     )
 
 
-def _law_row(found: Found, remark: str, difference: str) -> tuple[Cell, ...]:
+def _law_row(found: Found, remark: str, difference: float) -> tuple[Cell, ...]:
     parameters = found.parameters
     energy = parameters.get("activation_energy")
     return (
@@ -236,7 +237,9 @@ def _law_row(found: Found, remark: str, difference: str) -> tuple[Cell, ...]:
         pair_cell(parameters.get("charge_product")),
         *((pair_cell(energy),) if energy is not None else ()),
         *_misfit_cells(found),
-        words(difference),
+        words("–")
+        if math.isnan(difference)
+        else Cell(difference, (("text", f"{difference:.1f}"),)),
         words(remark),
     )
 
@@ -245,7 +248,7 @@ def _misfit_cells(found: Found) -> tuple[Cell, ...]:
     """Return χ²/ν and its probability where u is stated, else the standard deviation of ln k."""
     scatter = found.scatter
     misfit = scatter.reduced_chi_square if scatter.stated else scatter.birge_ratio
-    shown = words("–") if math.isnan(misfit) else number(float(f"{misfit:.3g}"))
+    shown = words("–") if math.isnan(misfit) else trimmed(misfit, 3)
     if not scatter.stated:
         return (shown,)
     chance = scatter.probability
@@ -320,13 +323,13 @@ def runs_table(assessment: Assessment) -> Table:
     for i, run in enumerate(rates.run):
         conditions = [words(run), number(float(rates.T[i]), decimals=2)]
         if rates.I is not None:
-            conditions.append(number(float(f"{rates.I[i]:.4g}")))
+            conditions.append(trimmed(rates.I[i], 4))
         u = None if rates.u_k is None else float(rates.u_k[i])
         digits = k.rounded(float(rates.k[i]), u)
         shown = Cell(
             float(rates.k[i]),
             tuple((layout, digits.pair(layout)) for layout in ("text", "ascii", "html", "latex")),
-            u,
+            None if u is None else k.shown(u),
         )
         if rates.used[i]:
             outcome = [

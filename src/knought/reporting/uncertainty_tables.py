@@ -11,11 +11,11 @@ from knought.reporting.cells import (
     Cell,
     Column,
     Table,
-    number,
     number_column,
     pair_cell,
     quantity_column,
     text_column,
+    trimmed,
     words,
 )
 from knought.rounding import unit_text
@@ -69,13 +69,13 @@ def budget_table(assessment: Assessment) -> Table | None:
             u = each.quantity.shown(each.uncertainty(source)) if source in each.variances else 0.0
             if share < _ROUNDING:
                 u = 0.0  # nothing but the rounding of floating-point numbers
-            cells += [number(float(f"{u:.2g}")), Cell(share, (("text", f"{share:.1%}"),))]
+            cells += [trimmed(u, 2), Cell(share, (("text", f"{share:.1%}"),))]
         rows.append(tuple(cells))
     totals = [words("all together")]
     for each in budgets:
         totals += [
-            number(float(f"{each.quantity.shown(math.sqrt(each.total)):.2g}")),
-            words("100.0%"),
+            trimmed(each.quantity.shown(math.sqrt(each.total)), 2),
+            Cell(1.0, (("text", "100.0%"),)),
         ]
     columns = [text_column("source of error")]
     for each in budgets:
@@ -201,9 +201,9 @@ def _drawn_row(drawn: Drawn) -> tuple[Cell, ...]:
     spans = (drawn.interval(), drawn.shortest_interval(), drawn.linear_interval)
     return (
         words(what.symbol.text),
-        number(float(f"{what.shown(u):.3g}")),
-        number(float(f"{what.shown(drawn.linear_uncertainty):.3g}")),
-        *(words(_span(what, span, u)) for span in spans),
+        trimmed(what.shown(u), 3),
+        trimmed(what.shown(drawn.linear_uncertainty), 3),
+        *(_span(what, span, u) for span in spans),
         words(unit_text(what.shown_unit)),
         words("yes" if drawn.validates_linear() else "no"),
     )
@@ -250,12 +250,14 @@ def _again_row(again: Bootstrap, found: Found, name: str) -> tuple[Cell, ...]:
     spans = (again.interval(name), (float(low), float(high)))
     return (
         words(what.symbol.text),
-        number(float(f"{what.shown(u):.3g}")),
-        number(float(f"{what.shown(float(estimate.standard_uncertainty)):.3g}")),
-        *(words(_span(what, span, u)) for span in spans),
+        trimmed(what.shown(u), 3),
+        trimmed(what.shown(float(estimate.standard_uncertainty)), 3),
+        *(_span(what, span, u) for span in spans),
         words(unit_text(what.shown_unit)),
     )
 
 
-def _span(what: Quantity, span: tuple[float, float], u: float) -> str:
-    return " to ".join(what.rounded(end, u).number() for end in span)
+def _span(what: Quantity, span: tuple[float, float], u: float) -> Cell:
+    text = " to ".join(what.rounded(end, u).number() for end in span)
+    low, high = (what.shown(end) for end in span)
+    return Cell(None, (("text", text),), interval=(low, high))
