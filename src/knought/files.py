@@ -32,6 +32,7 @@ __all__ = [
     "os_problem",
     "read_bytes",
     "refuse_existing",
+    "refuse_existing_file",
     "safe_name",
     "sha256_of",
     "whole_folder",
@@ -268,6 +269,32 @@ def _exchanged(one: Path, other: Path) -> bool:
         return bool(libc.renameat2(at_cwd, first, at_cwd, second, exchange) == 0)
     except (OSError, AttributeError, TypeError):
         return False
+
+
+def refuse_existing_file(path: str | Path, *, overwrite: bool) -> None:
+    """Refuse a file that is there and may not be replaced; before any work goes into it.
+
+    Parameters
+    ----------
+    path
+        The file to write; devices and pipes may be written to at any time.
+    overwrite
+        Whether one that exists may be replaced.
+
+    Raises
+    ------
+    InputError
+        If there is one.
+    """
+    path = Path(path)
+    if not overwrite and path.is_file():
+        raise InputError(
+            Problem(
+                "exists already and is left as it is",
+                "choose another name, or say that it may be overwritten (--overwrite)",
+                file=path.name,
+            )
+        )
 
 
 def read_bytes(path: str | Path) -> bytes:

@@ -9,7 +9,7 @@ from __future__ import annotations
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from knought.cli.console import add_format, layout_of, say
+from knought.cli.console import add_format, add_overwrite, layout_of, new_file, say
 
 if TYPE_CHECKING:
     import argparse
@@ -51,6 +51,7 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
         "--at-ionic-strength", type=float, metavar="I", help="of the consensus, in mol/L"
     )
     parser.add_argument("--figure", metavar="FILE.svg", help="also draw the forest figure of k")
+    add_overwrite(parser)
     add_format(parser)
 
 
@@ -68,6 +69,7 @@ def run(options: argparse.Namespace) -> None:
         literature_table,
     )
 
+    target = new_file(options.figure, options)
     literature = read_literature(
         Path(options.literature),
         sheet=options.literature_sheet,
@@ -98,8 +100,8 @@ def run(options: argparse.Namespace) -> None:
         if table is not None
     ]
     say("\n\n".join([*blocks, "\n".join(comparison_sentences(comparison))]), layout)
-    if options.figure:
-        _draw(comparison, Path(options.figure))
+    if target is not None:
+        _draw(comparison, target)
         say(f"\nfigure: {options.figure}", layout)
 
 

@@ -10,7 +10,7 @@ from __future__ import annotations
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from knought.cli.console import add_format, layout_of, say
+from knought.cli.console import add_format, add_overwrite, layout_of, new_file, say
 
 if TYPE_CHECKING:
     import argparse
@@ -38,6 +38,7 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
     parser.add_argument("--temperature-law", metavar="LAW", help="eyring, if not given")
     parser.add_argument("--salt-law", metavar="LAW", help="open, if not given")
     parser.add_argument("--figure", metavar="FILE.svg", help="also draw both plots")
+    add_overwrite(parser)
     add_format(parser)
 
 
@@ -50,6 +51,7 @@ def run(options: argparse.Namespace) -> None:
     from knought.reporting.cells import plain_lines
     from knought.reporting.compensation_tables import reactions_table
 
+    target = new_file(options.figure, options)
     labels = _labels(options.tables, options.label)
     found = compensation(
         {
@@ -65,8 +67,8 @@ def run(options: argparse.Namespace) -> None:
     table = reactions_table(found)
     lines = [table.title, *plain_lines(table, layout), "", *compensation_sentences(found)]
     say("\n".join(lines), layout)
-    if options.figure:
-        _draw(found, Path(options.figure))
+    if target is not None:
+        _draw(found, target)
         say(f"\nfigure: {options.figure}", layout)
 
 

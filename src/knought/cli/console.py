@@ -4,7 +4,10 @@ from __future__ import annotations
 
 import sys
 from contextlib import contextmanager
+from pathlib import Path
 from typing import TYPE_CHECKING, Any
+
+from knought.files import refuse_existing_file
 
 if TYPE_CHECKING:
     import argparse
@@ -12,7 +15,16 @@ if TYPE_CHECKING:
 
     from knought.rounding import Layout
 
-__all__ = ["add_figures", "add_format", "figure_formats", "layout_of", "progress_bars", "say"]
+__all__ = [
+    "add_figures",
+    "add_format",
+    "add_overwrite",
+    "figure_formats",
+    "layout_of",
+    "new_file",
+    "progress_bars",
+    "say",
+]
 
 
 def add_format(parser: argparse.ArgumentParser) -> None:
@@ -36,6 +48,32 @@ def add_figures(parser: argparse.ArgumentParser) -> None:
     )
 
 
+def add_overwrite(parser: argparse.ArgumentParser) -> None:
+    """Add ``--overwrite`` to a subcommand that writes a file."""
+    parser.add_argument("--overwrite", action="store_true", help="replace a file that is there")
+
+
+def new_file(name: str | None, options: argparse.Namespace) -> Path | None:
+    """Return a file that is to be written; None where none was asked for.
+
+    Parameters
+    ----------
+    name
+        What the user named.
+    options
+        With `overwrite`, whether one that is there may be replaced.
+
+    Raises
+    ------
+    InputError
+        If it is there and may not be replaced; asked before any work is done.
+    """
+    if not name:
+        return None
+    refuse_existing_file(name, overwrite=options.overwrite)
+    return Path(name)
+
+
 def figure_formats(options: argparse.Namespace) -> tuple[str, ...]:
     """Return the formats that were asked for, without repeats; none for ``none``."""
     asked = [part.strip().lower() for part in str(options.figures).split(",")]
@@ -52,12 +90,21 @@ def layout_of(options: argparse.Namespace) -> Layout:
 
 
 def say(text: str, layout: Layout = "text") -> None:
-    """Print `text` with one line break at its end, in ASCII where the layout is."""
-    if layout == "ascii":
+    """Print `text` with one line break at its end, in ASCII where nothing else can be shown."""
+    if layout == "ascii" or not _shows(text):
         from knought.reporting.summary import to_ascii
 
         text = to_ascii(text)
     print(text.rstrip("\n"))
+
+
+def _shows(text: str) -> bool:
+    """Whether the output has every sign of `text`, whatever layout was asked for."""
+    try:
+        text.encode(sys.stdout.encoding or "ascii")
+    except UnicodeEncodeError:
+        return False
+    return True
 
 
 @contextmanager

@@ -6,10 +6,9 @@ u(k)/(L mol^-1 s^-1); a dash reads cells pasted into the terminal.
 
 from __future__ import annotations
 
-from pathlib import Path
 from typing import TYPE_CHECKING
 
-from knought.cli.console import add_format, layout_of, progress_bars, say
+from knought.cli.console import add_format, add_overwrite, layout_of, new_file, progress_bars, say
 from knought.cli.tables import add_table, read_table
 
 if TYPE_CHECKING:
@@ -52,6 +51,7 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
         "--seed", type=int, default=None, metavar="N", help="seed of the draws (20250101)"
     )
     parser.add_argument("--json", metavar="FILE", help="also write the record as JSON")
+    add_overwrite(parser)
     add_format(parser)
 
 
@@ -63,6 +63,7 @@ def run(options: argparse.Namespace) -> None:
     from knought.reporting.record import record_text
     from knought.reporting.summary import summary
 
+    target = new_file(options.json, options)
     rates = read_table(options)
     assessment = assess(
         rates,
@@ -76,8 +77,8 @@ def run(options: argparse.Namespace) -> None:
     say("\n" + summary(assessment, layout), layout)
     if options.monte_carlo is not None:
         say("\n" + _drawn(assessment, options, layout), layout)
-    if options.json:
-        atomic_write_text(Path(options.json), record_text(assessment))
+    if target is not None:
+        atomic_write_text(target, record_text(assessment))
         say(f"\nrecord: {options.json}", layout)
 
 

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import argparse
+import io
 import sys
 from typing import TYPE_CHECKING, Protocol
 
@@ -90,6 +91,7 @@ def main(arguments: Sequence[str] | None = None) -> int:
     arguments
         Words after ``knought``; those of the process if not given.
     """
+    _say_what_cannot_be_shown_as_question_marks()
     parser = _parser()
     options = parser.parse_args(arguments)
     if options.command is None:
@@ -111,6 +113,13 @@ def main(arguments: Sequence[str] | None = None) -> int:
         sys.stderr.close()
         return EXIT_DONE
     return EXIT_DONE
+
+
+def _say_what_cannot_be_shown_as_question_marks() -> None:
+    """Let help texts and messages pass through terminals without Unicode."""
+    for stream in (sys.stdout, sys.stderr):
+        if isinstance(stream, io.TextIOWrapper):
+            stream.reconfigure(errors="replace")
 
 
 def _parser() -> argparse.ArgumentParser:

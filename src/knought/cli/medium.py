@@ -9,7 +9,7 @@ from __future__ import annotations
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from knought.cli.console import add_format, layout_of, say
+from knought.cli.console import add_format, add_overwrite, layout_of, new_file, say
 from knought.errors import InputError
 
 if TYPE_CHECKING:
@@ -36,6 +36,7 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
     parser.add_argument("--reach", type=float, metavar="I", help="ionic strength to reach, mol/L")
     parser.add_argument("--salt", metavar="SALT", help="the salt that is added to reach it")
     parser.add_argument("--csv", metavar="FILE", help="write the columns for a rate table")
+    add_overwrite(parser)
     add_format(parser)
 
 
@@ -49,6 +50,7 @@ def run(options: argparse.Namespace) -> None:
     """
     from knought.files import atomic_write_text
 
+    target = new_file(options.csv, options)
     section, labels = _section(options)
     if (options.reach is None) != (options.salt is None):
         raise InputError("--reach and --salt belong together", "give both")
@@ -59,8 +61,8 @@ def run(options: argparse.Namespace) -> None:
     if options.reach is not None:
         lines += _salt(section, options.reach, options.salt, labels)
     say("\n".join(lines), layout_of(options))
-    if options.csv:
-        atomic_write_text(Path(options.csv), _csv(series, labels))
+    if target is not None:
+        atomic_write_text(target, _csv(series, labels))
         say(f"\ncolumns: {options.csv}", layout_of(options))
 
 

@@ -9,7 +9,7 @@ from __future__ import annotations
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from knought.cli.console import add_format, layout_of, say
+from knought.cli.console import add_format, add_overwrite, layout_of, new_file, say
 
 if TYPE_CHECKING:
     import argparse
@@ -64,6 +64,7 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
     )
     parser.add_argument("--seed", type=int, default=20_250_101, metavar="N", help="of the order")
     parser.add_argument("--csv", metavar="FILE", help="also write the form to fill in")
+    add_overwrite(parser)
     add_format(parser)
 
 
@@ -75,6 +76,7 @@ def run(options: argparse.Namespace) -> None:
     from knought.files import atomic_write_text
     from knought.reporting.plan_tables import plan_summary
 
+    target = new_file(options.csv, options)
     strengths = options.ionic_strengths
     made = _made(options)
     planned = plan(
@@ -95,8 +97,8 @@ def run(options: argparse.Namespace) -> None:
     say(plan_summary(planned, layout), layout)
     if options.most:
         _say_curve(planned, options.most, layout)
-    if options.csv:
-        atomic_write_text(Path(options.csv), planned.csv())
+    if target is not None:
+        atomic_write_text(target, planned.csv())
         say(f"\nform to fill in: {options.csv}", layout)
 
 

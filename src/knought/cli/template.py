@@ -5,7 +5,7 @@ from __future__ import annotations
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from knought.cli.console import say
+from knought.cli.console import add_format, layout_of, say
 
 if TYPE_CHECKING:
     import argparse
@@ -21,6 +21,7 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
     parser.add_argument(
         "--out", default="knought-study", metavar="DIR", help="folder to make (knought-study)"
     )
+    add_format(parser)
 
 
 def run(options: argparse.Namespace) -> None:
@@ -28,4 +29,4 @@ def run(options: argparse.Namespace) -> None:
     from knought.template import write_template
 
     for path in write_template(Path(options.out)):
-        say(str(path))
+        say(str(path), layout_of(options))

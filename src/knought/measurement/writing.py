@@ -24,7 +24,7 @@ from knought.measurement.labels import guarded
 if TYPE_CHECKING:
     from knought.measurement.table import RateTable
 
-__all__ = ["clean_csv", "table_schema", "write_rates"]
+__all__ = ["clean_csv", "schema_beside", "table_schema", "write_rates"]
 
 _WORDS = {
     "run": "label of the run",
@@ -132,6 +132,11 @@ def _description(header: str, table: RateTable) -> str:
     return f"{words}, in {read.unit}"
 
 
+def schema_beside(path: Path) -> Path:
+    """Return where the schema of a clean table stands: ``rates.schema.json`` by ``rates.csv``."""
+    return path.with_suffix(".schema.json")
+
+
 def write_rates(table: RateTable, path: str | Path) -> tuple[Path, Path]:
     """Write a table in the clean form, and its schema beside it.
 
@@ -155,7 +160,7 @@ def write_rates(table: RateTable, path: str | Path) -> tuple[Path, Path]:
     path = Path(path)
     text = clean_csv(table)
     schema = json.dumps(table_schema(table), indent=1, ensure_ascii=False) + "\n"
-    beside = path.with_suffix(".schema.json")
+    beside = schema_beside(path)
     atomic_write_text(path, text)
     atomic_write_text(beside, schema)
     return path, beside
