@@ -79,6 +79,11 @@ file = "rates.xlsx"                        # or .csv, .tsv; beside this file
 # batch = "A"
 # each_run = true                          # each run has one of its own, instead of one for all
 
+# Where k is told, in every combination.
+# [predict]
+# temperatures = "25, 37 °C"
+# ionic_strengths = "0, 0.15 mol/L"
+
 # Find the ± of the headline once more; it takes seconds to minutes.
 # [checks]
 # monte_carlo = "adaptive"                 # JCGM 101 until two digits of u stand, or a number
