@@ -7,6 +7,8 @@ from typing import TYPE_CHECKING, TypeAlias
 import numpy as np
 import numpy.typing as npt
 
+from knought.given import real_array
+
 if TYPE_CHECKING:
     from numpy.typing import ArrayLike
 
@@ -29,7 +31,12 @@ def frozen(values: ArrayLike) -> FloatArray:
     -------
     ndarray
         Same shape, dtype float64, not writeable.
+
+    Raises
+    ------
+    InputError
+        If these are no real numbers.
     """
-    array = np.array(values, dtype=np.float64)
+    array = real_array(values)
     array.setflags(write=False)
     return array

@@ -29,6 +29,7 @@ if TYPE_CHECKING:
 __all__ = [
     "atomic_write_bytes",
     "atomic_write_text",
+    "is_device_name",
     "os_problem",
     "read_bytes",
     "refuse_existing",
@@ -346,6 +347,11 @@ def sha256_of(source: str | Path | bytes) -> str:
 _FORBIDDEN = re.compile(r'[<>:"/\\|?*\x00-\x1f\x7f-\x9f\u200b-\u200f\u2028-\u202e\u2060-\u2069]+')
 _RESERVED = re.compile(r"(?:con|prn|aux|nul|com[0-9¹²³]|lpt[0-9¹²³])(?:\.|$)", re.IGNORECASE)
 _LONGEST_NAME = 100
+
+
+def is_device_name(name: str) -> bool:
+    """Whether Windows takes a file name for a device, ``"NUL"`` or ``"con.csv"``."""
+    return _RESERVED.match(name.strip()) is not None
 
 
 def safe_name(text: str) -> str:

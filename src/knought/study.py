@@ -6,7 +6,8 @@ from dataclasses import dataclass, replace
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from knought.errors import Caveat, InputError, Problem
+from knought.beside import Beside, shown_name
+from knought.errors import Caveat
 from knought.files import read_bytes, refuse_existing, sha256_of, whole_folder
 from knought.fitting.assess import assess
 from knought.measurement.reading import read_rates
@@ -38,10 +39,13 @@ class Study:
         The study file.
     settings
         What it says.
+    allow_outside
+        Whether it may name files outside its own folder.
     """
 
     path: Path
     settings: StudyFile
+    allow_outside: bool = False
 
     def beside(self, file: str, key: str) -> Path:
         """Return where a file that the study names is; below the study file's folder.
@@ -58,19 +62,7 @@ class Study:
         InputError
             If it points outside that folder.
         """
-        folder = self.path.parent.resolve()
-        target = (folder / file).resolve()
-        if not target.is_relative_to(folder):
-            raise InputError(
-                Problem(
-                    "the table lies outside the folder of the study file",
-                    "put it beside the study file and name it by its relative path",
-                    read=file,
-                    file=self.path.name,
-                    column=key,
-                )
-            )
-        return target
+        return Beside(self.path, allow_outside=self.allow_outside).find(file, key)
 
     def report(self, progress: Callable[[str, int], None] | None = None) -> Report:
         """Read the table, assess it, and return the report.
@@ -148,7 +140,8 @@ class Study:
         if said.literature is not None:
             file = said.literature.file
             files.append((file, self.beside(file, "[literature] file")))
-        named = dict([(self.path.name, self.path), *files])
+        shown = ((shown_name(name), path) for name, path in files)
+        named = dict([(self.path.name, self.path), *shown])
         return tuple((name, read_bytes(path)) for name, path in named.items())
 
 
@@ -204,8 +197,15 @@ def _planned(study: Study, assessment: Assessment) -> Plan | None:
     return plan(**said.plan.arguments(), found=assessment, seed=said.study.seed)
 
 
-def read_study(path: str | Path) -> Study:
+def read_study(path: str | Path, *, allow_outside: bool = False) -> Study:
     """Read a study file.
+
+    Parameters
+    ----------
+    path
+        The file.
+    allow_outside
+        Whether it may name files outside its own folder; only for one that you trust.
 
     Raises
     ------
@@ -213,7 +213,7 @@ def read_study(path: str | Path) -> Study:
         If the file is wrong.
     """
     path = Path(path)
-    return Study(path, read_study_file(path))
+    return Study(path, read_study_file(path), allow_outside)
 
 
 def run_study(
@@ -223,6 +223,7 @@ def run_study(
     overwrite: bool = False,
     figure_formats: Sequence[str] = FIGURE_FORMATS,
     progress: Callable[[str, int], None] | None = None,
+    allow_outside: bool = False,
 ) -> Report:
     """Run a study and write its output folder, whole or not at all.
 
@@ -238,6 +239,8 @@ def run_study(
         Formats of the figure files, some of ``"svg"``, ``"pdf"`` and ``"png"``.
     progress
         As for :meth:`Study.report`.
+    allow_outside
+        Whether the study may name files outside its own folder; only for one that you trust.
 
     Returns
     -------
@@ -249,7 +252,7 @@ def run_study(
         If the study is wrong, or the folder exists and may not be replaced.
     """
     refuse_existing(Path(out), overwrite=overwrite)
-    report = read_study(path).report(progress)
+    report = read_study(path, allow_outside=allow_outside).report(progress)
     write_report(report, out, overwrite=overwrite, figure_formats=figure_formats)
     return report
 

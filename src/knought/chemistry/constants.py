@@ -12,10 +12,13 @@ __all__ = [
     "AVOGADRO",
     "BOLTZMANN",
     "CELSIUS_ZERO",
+    "COLDEST",
     "ELEMENTARY_CHARGE",
     "GAS_CONSTANT",
+    "HOTTEST",
     "LN10",
     "PLANCK",
+    "STRONGEST",
     "VACUUM_PERMITTIVITY",
 ]
 
@@ -39,6 +42,13 @@ VACUUM_PERMITTIVITY = 8.8541878188e-12
 
 #: 0 °C in K (exact): T/K = t/°C + 273.15.
 CELSIUS_ZERO = 273.15
+
+#: Temperatures in K that a run or a prediction may have, whatever the medium: a unit or a sign is
+#: wrong outside, and arithmetic would leave the range of doubles.
+COLDEST, HOTTEST = 1.0, 1.0e5
+
+#: Largest ionic strength or concentration in mol/L that is looked at; pure water has 55.
+STRONGEST = 1000.0
 
 #: ln 10.
 LN10 = math.log(10.0)

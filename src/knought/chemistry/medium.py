@@ -11,6 +11,7 @@ counter-ion is the commonest slip, and it can change I by a factor of two.
 from __future__ import annotations
 
 import math
+from collections.abc import Mapping
 from dataclasses import dataclass
 from types import MappingProxyType
 from typing import TYPE_CHECKING
@@ -21,9 +22,10 @@ from knought.chemistry.constants import LN10
 from knought.chemistry.equilibria_solver import solve_equilibria
 from knought.chemistry.species import Species, parse_species
 from knought.errors import Caveat, InputError
+from knought.given import given_number
 
 if TYPE_CHECKING:
-    from collections.abc import Mapping, Sequence
+    from collections.abc import Sequence
 
     from knought.chemistry.activity import ActivityForm
     from knought.chemistry.equilibria import Equilibrium
@@ -57,9 +59,12 @@ def ionic_strength(composition: Mapping[str, float]) -> float:
         If a formula or concentration cannot be, or the charges do not cancel within 1 % of all
         charge: an ion is then missing, or a figure is wrong.
     """
+    if not isinstance(composition, Mapping):
+        raise InputError("the composition is no mapping", "write {'Na+': 0.1, 'Cl-': 0.1}")
     found: dict[Species, float] = {}
-    for text, concentration in composition.items():
-        if not 0 <= concentration < math.inf:
+    for text, value in composition.items():
+        concentration = given_number(value, f"the concentration of {text}")
+        if not concentration >= 0:
             raise InputError(
                 f"the concentration of {text} is {concentration:g} mol/L",
                 "concentrations are finite and at least zero",

@@ -24,6 +24,7 @@ from knought.chemistry.numbers import read_plain_number
 from knought.chemistry.unit_symbols import ALIASES, DIMENSIONLESS, SYMBOLS, Dimension
 from knought.chemistry.unit_text import UnitText, UnitTextError, parse_unit_text
 from knought.errors import InputError, Problem, quoted
+from knought.given import real_array
 
 if TYPE_CHECKING:
     from numpy.typing import ArrayLike
@@ -142,7 +143,7 @@ def scaled(values: ArrayLike, factor: Fraction) -> FloatArray:
     ndarray
         Same shape, float64.
     """
-    array = np.asarray(values, dtype=np.float64)
+    array = real_array(values)
     if factor == 1:
         return array
     if factor.numerator == 1:

@@ -18,6 +18,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from knought.errors import InputError
+from knought.given import real_array
 
 if TYPE_CHECKING:
     from numpy.typing import ArrayLike
@@ -112,7 +113,7 @@ def require_liquid(T: ArrayLike) -> FloatArray:
     InputError
         If a temperature lies outside, or is not a number.
     """
-    T = np.asarray(T, dtype=float)
+    T = real_array(T, "T")
     outside = ~((T >= COLDEST - _SLACK) & (T <= HOTTEST + _SLACK))
     if np.any(outside):
         value = float(T[outside].flat[0])

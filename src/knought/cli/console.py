@@ -16,6 +16,7 @@ if TYPE_CHECKING:
     from knought.rounding import Layout
 
 __all__ = [
+    "add_allow_outside",
     "add_figures",
     "add_format",
     "add_overwrite",
@@ -72,6 +73,15 @@ def new_file(name: str | None, options: argparse.Namespace) -> Path | None:
         return None
     refuse_existing_file(name, overwrite=options.overwrite)
     return Path(name)
+
+
+def add_allow_outside(parser: argparse.ArgumentParser) -> None:
+    """Add ``--allow-outside`` to a subcommand that reads what a study file names."""
+    parser.add_argument(
+        "--allow-outside",
+        action="store_true",
+        help="let the study file name files outside its own folder; only for one that you trust",
+    )
 
 
 def figure_formats(options: argparse.Namespace) -> tuple[str, ...]:

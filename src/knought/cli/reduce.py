@@ -11,7 +11,7 @@ import json
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from knought.cli.console import add_format, layout_of, say
+from knought.cli.console import add_allow_outside, add_format, layout_of, say
 
 if TYPE_CHECKING:
     import argparse
@@ -33,17 +33,19 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
     parser.add_argument(
         "--overwrite", action="store_true", help="replace the folder if it is there"
     )
+    add_allow_outside(parser)
     add_format(parser)
 
 
 def run(options: argparse.Namespace) -> None:
     """Reduce, write, and say what was done."""
+    from knought.beside import Beside
     from knought.files import whole_folder
     from knought.measurement.writing import clean_csv, table_schema
     from knought.study_sections.upstream import read_upstream
 
     study, out = Path(options.study), Path(options.out)
-    found = read_upstream(study).reduced(lambda name, _key: study.parent / name)
+    found = read_upstream(study).reduced(Beside(study, allow_outside=options.allow_outside).find)
     text = "\n".join(_lines(found))
     schema = json.dumps(table_schema(found.rates), indent=1, ensure_ascii=False) + "\n"
     files = {

@@ -6,6 +6,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 from knought.cli.console import (
+    add_allow_outside,
     add_figures,
     add_format,
     figure_formats,
@@ -31,6 +32,7 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
         "--overwrite", action="store_true", help="replace the folder if it is there"
     )
     parser.add_argument("--open", action="store_true", help="open the page in a browser")
+    add_allow_outside(parser)
     add_figures(parser)
     add_format(parser)
 
@@ -47,6 +49,7 @@ def run(options: argparse.Namespace) -> None:
             overwrite=options.overwrite,
             figure_formats=figure_formats(options),
             progress=progress,
+            allow_outside=options.allow_outside,
         )
     say(report.summary(layout), layout)
     target = Path(options.out) / "report.html"

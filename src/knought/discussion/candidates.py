@@ -20,6 +20,7 @@ from typing import TYPE_CHECKING
 
 from knought.chemistry.species import Species, charge_change, parse_reactants
 from knought.errors import InputError, Problem
+from knought.given import given_number
 
 if TYPE_CHECKING:
     from knought.rounding import Layout
@@ -107,7 +108,10 @@ class Candidate:
     note: str = ""
 
     def __post_init__(self) -> None:
-        if not 0 < self.prior < math.inf:
+        if not all(isinstance(text, str) for text in (self.name, self.reactants, self.releases)):
+            raise InputError("name and species of a candidate are words", "write them as text")
+        object.__setattr__(self, "prior", given_number(self.prior, "the prior"))
+        if not self.prior > 0:
             raise InputError(
                 Problem(f"the prior of {self.name} is {self.prior:g}", "give a number above zero")
             )

@@ -22,6 +22,7 @@ from knought.arrays import FloatArray, frozen
 from knought.chemistry.constants import AVOGADRO, ELEMENTARY_CHARGE, VACUUM_PERMITTIVITY
 from knought.chemistry.water import relative_permittivity, relative_permittivity_derivative
 from knought.errors import InputError
+from knought.given import given_number, given_numbers
 
 if TYPE_CHECKING:
     from numpy.typing import ArrayLike
@@ -102,7 +103,8 @@ def electrostatic_part(
             f"the uncertainty of the contact distance is {contact_distance_uncertainty:g} m",
             "give one of at least zero, in m",
         )
-    T = np.asarray(T, dtype=float)
+    T = given_numbers(T, "T")
+    charge_product = given_number(charge_product, "the charge product", -1000.0, 1000.0)
     epsilon = relative_permittivity(T)
     relative_slope = relative_permittivity_derivative(T) / epsilon
     unit = AVOGADRO * ELEMENTARY_CHARGE**2 / (4 * np.pi * VACUUM_PERMITTIVITY)
@@ -126,6 +128,7 @@ def require_length(length: float, what: str) -> None:
     InputError
         If `length` (m) is not within 0.5 Å and 100 Å.
     """
+    length = given_number(length, what)
     if not _SHORTEST <= length <= _LONGEST:
         raise InputError(
             f"{what} is {length:g} m", "give it in m, between 0.5e-10 and 100e-10: 5 Å is 5e-10"

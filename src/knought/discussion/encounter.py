@@ -27,6 +27,7 @@ from knought.chemistry.constants import GAS_CONSTANT as R
 from knought.chemistry.debye_huckel import bjerrum_length, debye_huckel
 from knought.discussion.electrostatics import require_length
 from knought.errors import InputError
+from knought.given import given_number, given_numbers, given_pair
 from knought.rounding import brief
 
 if TYPE_CHECKING:
@@ -173,7 +174,9 @@ def encounter_limit(
         temperature lies outside 0-100 °C.
     """
     require_length(contact_distance, "the contact distance")
-    T = np.asarray(T, dtype=float)
+    T = given_numbers(T, "T")
+    charge_product = given_number(charge_product, "the charge product", -1000.0, 1000.0)
+    ionic_strength = given_number(ionic_strength, "the ionic strength", 0.0)
     slope = _viscosity_slope(T)
     mobility, source = _mutual_diffusion(
         T, contact_distance, diffusion_coefficients, diffusion_temperature, radii
@@ -224,6 +227,7 @@ def _mutual_diffusion(
             raise InputError(
                 "both diffusion coefficients and radii are given", "give one of the two"
             )
+        coefficients = given_pair(coefficients, "the diffusion coefficients")
         if not all(_SLOWEST <= D <= _FASTEST for D in coefficients):
             raise InputError(
                 f"the diffusion coefficients are {coefficients[0]:g} and {coefficients[1]:g} m²/s",

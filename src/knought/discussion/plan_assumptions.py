@@ -16,6 +16,7 @@ from knought.chemistry.species import charge_product as charge_product_of
 from knought.chemistry.species import parse_reactants
 from knought.discussion.plan_model import PlanModel, Repeatability, assumed_model, model_of
 from knought.errors import InputError
+from knought.given import given_count
 from knought.laws.open_law import DEFAULT_PRIORS, Priors
 from knought.laws.salt import OPEN
 
@@ -68,7 +69,7 @@ class PlanRequest:
             ("starts", self.starts),
             ("data sets", self.data_sets),
         ):
-            if number < 1:
+            if given_count(number, f"the number of {what}", -(10**9), 10**9) < 1:
                 raise InputError(f"a plan cannot have {number} {what}", "give 1 at least")
         if self.runs > _MOST_RUNS:
             raise InputError(

@@ -19,6 +19,7 @@ from knought.chemistry.constants import GAS_CONSTANT as R
 from knought.errors import InputError
 from knought.fitting.distribution import ParameterDistribution
 from knought.fitting.open_fit import OpenFit
+from knought.given import given_number
 from knought.laws.open_law import DEFAULT_PRIORS, Priors, open_grid
 from knought.laws.salt import OPEN
 from knought.laws.salt import salt_law as named_salt_law
@@ -56,7 +57,8 @@ class Repeatability:
     I: float = 0.0
 
     def __post_init__(self) -> None:
-        if not 0 < self.k < 1:
+        object.__setattr__(self, "k", given_number(self.k, "the repeatability"))
+        if not 1e-12 <= self.k < 1:
             raise InputError(
                 f"the repeatability is {self.k:g}",
                 "give the relative standard uncertainty of one k as a fraction: 3 % is 0.03",

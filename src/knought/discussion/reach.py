@@ -15,6 +15,7 @@ import numpy as np
 
 from knought.arrays import BoolArray, FloatArray, IndexArray, frozen
 from knought.errors import InputError, Problem
+from knought.given import real_array
 
 if TYPE_CHECKING:
     from collections.abc import Iterable, Mapping, Sequence
@@ -201,7 +202,7 @@ def _levels(values: ArrayLike, what: str, unit: str, *, zero: bool) -> FloatArra
     InputError
         If there are none, or one cannot be.
     """
-    array = np.atleast_1d(np.asarray(values, dtype=float))
+    array = np.atleast_1d(real_array(values, what))
     if array.size == 0 or array.ndim != 1:
         raise InputError(f"no {what} are given", "give those that can be set, as a list")
     wrong = ~np.isfinite(array) | ((array < 0) if zero else (array <= 0))

@@ -15,6 +15,7 @@ import numpy as np
 from knought.arrays import FloatArray, frozen
 from knought.errors import InputError
 from knought.fitting.influence import refit, subset
+from knought.given import given_count
 from knought.measurement.shared_errors import unit_draws
 from knought.numerics.seeds import DEFAULT_SEED, generator
 
@@ -88,7 +89,8 @@ def bootstrap(
     InputError
         If fewer than two replicates are asked for, or hardly any of them can be fitted.
     """
-    if replicates < 2:
+    given_count(seed, "the seed", 0, 2**128)
+    if given_count(replicates, "the number of replicates", -1, 10**9) < 2:
         raise InputError(f"{replicates} replicates say nothing", "ask for 200 or more")
     names = [name for name, each in found.parameters.items() if not each.given]
     rows: list[list[float]] = []

@@ -15,6 +15,7 @@ from knought.fitting.surface_fit import (
     DEFAULT_TEMPERATURE_LAW,
     fit_surface,
 )
+from knought.given import given_number
 from knought.laws.open_law import DEFAULT_PRIORS, Priors
 from knought.laws.salt import OPEN
 
@@ -93,6 +94,11 @@ def resolve(
         read.
     """
     charge_product = _charges(charge_product, reactants)
+    if ion_size is not None:
+        ion_size = given_number(ion_size, "the ion size")
+    for law in (temperature_law, salt_law):
+        if law is not None and not isinstance(law, str):
+            raise InputError("a law is named by its word", "temperature_law='eyring'")
     temperatures, strengths = seen.temperature_levels, seen.ionic_strength_levels
     caveats: list[Caveat] = []
     if temperature_law is None:
@@ -123,9 +129,17 @@ def resolve(
     )
 
 
+#: Beyond, no step in solution has charges.
+_CHARGE_PRODUCTS = (-1000.0, 1000.0)
+
+
 def _charges(charge_product: float | None, reactants: str | None) -> float | None:
+    if charge_product is not None:
+        charge_product = given_number(charge_product, "the charge product", *_CHARGE_PRODUCTS)
     if reactants is None:
         return charge_product
+    if not isinstance(reactants, str):
+        raise InputError("the reactants are no text", 'write "A^2- + B^-"')
     found = float(charge_product_of(parse_reactants(reactants)))
     if charge_product is not None and charge_product != found:
         raise InputError(

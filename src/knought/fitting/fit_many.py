@@ -9,13 +9,16 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from knought.arrays import FloatArray, frozen
+from knought.chemistry.constants import COLDEST, HOTTEST, STRONGEST
 from knought.errors import InputError
 from knought.fitting import checks
 from knought.fitting.observations import Observations
 from knought.fitting.surface_fit import DEFAULT_REFERENCE_TEMPERATURE, DEFAULT_TEMPERATURE_LAW
+from knought.given import given_numbers, given_shape
 from knought.laws.salt import salt_law as named_salt_law
 from knought.laws.surface import Surface
 from knought.laws.temperature import temperature_law as named_temperature_law
+from knought.measurement.table_checks import RATE_CONSTANTS, RELATIVE_UNCERTAINTIES
 from knought.numerics.least_squares import ManyFits, RankDeficiencyError, solve_many
 
 if TYPE_CHECKING:
@@ -99,16 +102,17 @@ def fit_many(
     InputError
         If shapes do not match, a value is not positive, or the runs cannot determine the law.
     """
-    k, u_k, T = (np.asarray(values, dtype=float) for values in (k, u_k, T))
+    k, u_k = given_numbers(k, "k", *RATE_CONSTANTS), given_numbers(u_k, "u(k)")
+    T = given_numbers(T, "T", COLDEST, HOTTEST)
     if k.ndim != 2 or T.shape != k.shape[1:]:
         raise InputError(
             f"k has shape {k.shape} and T {T.shape}",
             "give k as (data sets, runs) and T as (runs,)",
         )
-    u_k = np.broadcast_to(u_k, k.shape)
-    if not (np.all(k > 0) and np.all(u_k > 0) and np.all(np.isfinite(k + u_k))):
-        raise InputError("k or u(k) holds a value that is not positive", "give positive numbers")
-    strengths = None if I is None else frozen(np.broadcast_to(np.asarray(I, float), T.shape))
+    u_k = given_shape(u_k, k.shape, "u(k)")
+    given_numbers(u_k / k, "u(k)/k", *RELATIVE_UNCERTAINTIES)
+    I = None if I is None else given_numbers(I, "I", 0.0, STRONGEST)
+    strengths = None if I is None else frozen(given_shape(I, T.shape, "I"))
     surface = Surface(
         named_temperature_law(temperature_law),
         named_salt_law(salt_law, ion_size=ion_size),

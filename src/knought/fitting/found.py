@@ -14,10 +14,12 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
+from knought.chemistry.constants import COLDEST, HOTTEST, STRONGEST
 from knought.chemistry.constants import GAS_CONSTANT as R
 from knought.chemistry.quantities import Quantity, quantity
 from knought.fitting.checks import excluded, extrapolation
 from knought.fitting.estimate import Estimate
+from knought.given import given_number, given_numbers, require_same_shape
 from knought.laws.activation import activation_rows
 from knought.laws.surface import Rows
 from knought.numerics.quantiles import Histogram, Mixture
@@ -207,7 +209,9 @@ class Found:
         InputError
             If a property of water is needed outside 0-100 °C, or I is negative.
         """
-        T = self.reference_temperature if T is None else T
+        T = given_numbers(self.reference_temperature if T is None else T, "T", COLDEST, HOTTEST)
+        I = given_numbers(I, "I", 0.0, STRONGEST)
+        require_same_shape(T, I)
         scalar = np.ndim(T) == 0 and np.ndim(I) == 0
         caveats = extrapolation(
             self.observations, np.atleast_1d(T), np.atleast_1d(I), salt=self.describes_salt
@@ -254,7 +258,15 @@ class Found:
         dict
             Quantity name to a number with uncertainty; includes ``ln_rate_constant`` and every
             fitted linear parameter. Under the open law their covariance is the mixture's.
+
+        Raises
+        ------
+        InputError
+            If `T` or `I` is no number that a run could have.
         """
+        if T is not None:
+            T = given_number(T, "T", COLDEST, HOTTEST)
+        I = given_number(I, "I", 0.0, STRONGEST)
         import uncertainties
         from uncertainties import umath
 

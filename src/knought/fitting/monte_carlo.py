@@ -21,6 +21,7 @@ from knought.errors import InputError
 from knought.fitting.condition_draws import condition_sampler, has_condition_errors
 from knought.fitting.open_fit import OpenFit
 from knought.fitting.surface_fit import SurfaceFit
+from knought.given import given_count
 from knought.laws.activation import activation_rows
 from knought.measurement.shared_errors import unit_draws
 from knought.numerics.seeds import DEFAULT_SEED, generator
@@ -36,6 +37,9 @@ __all__ = ["Drawn", "MonteCarlo", "monte_carlo"]
 
 _BLOCK = 10_000
 _FEWEST_BLOCKS = 10
+
+#: More would take days.
+_MOST_ASKED = 10**10
 
 #: Adaptive drawing stops at this many draws at the latest.
 _MOST_DRAWS = 5_000_000
@@ -168,8 +172,9 @@ def monte_carlo(
     InputError
         If fewer than two draws are asked for, or the fit is of neither kind.
     """
-    if draws is not None and draws < 2:
+    if draws is not None and given_count(draws, "the number of draws", -1, _MOST_ASKED) < 2:
         raise InputError(f"{draws} draws say nothing", "ask for 10 000 or more")
+    given_count(seed, "the seed", 0, 2**128)
     if not isinstance(found, OpenFit | SurfaceFit):
         raise InputError("this fit has no Monte Carlo", "ask a fit of a named or the open law")
     refitted = has_condition_errors(found.observations)

@@ -9,13 +9,13 @@ import numpy as np
 
 from knought.arrays import FloatArray, frozen
 from knought.errors import InputError
+from knought.measurement.table import RateTable
 
 if TYPE_CHECKING:
-    from collections.abc import Sequence
+    from collections.abc import Iterator, Sequence
     from fractions import Fraction
 
     from knought.measurement.shared_errors import SharedError
-    from knought.measurement.table import RateTable
 
 __all__ = ["Observations", "distinct_levels", "observe"]
 
@@ -23,6 +23,9 @@ __all__ = ["Observations", "distinct_levels", "observe"]
 #: fraction of the larger are one ionic strength.
 _SAME_TEMPERATURE = 0.5
 _SAME_IONIC_STRENGTH = 0.02
+
+#: Neighbours chain into one level up to this many of the distances that they share it within.
+_LONGEST_LEVEL = 4.0
 
 
 @dataclass(frozen=True, eq=False)
@@ -118,6 +121,10 @@ def observe(rates: RateTable, shared_errors: Sequence[SharedError] = ()) -> Obse
     InputError
         If no run is used.
     """
+    if not isinstance(rates, RateTable):
+        raise InputError(
+            "the runs are no RateTable", "make one with read_rates or RateTable.from_arrays"
+        )
     used = rates.used_only()
     if len(used) == 0:
         raise InputError("no run is used", "set the column use to yes for the runs to fit")
@@ -155,8 +162,23 @@ def distinct_levels(
     values : (n,) ndarray
         Values, at least zero.
     absolute, relative
-        Neighbours closer than this (or than this fraction of the larger) share a level.
+        Neighbours closer than this (or than this fraction of the larger) share a level, unless so
+        many do that its ends lie four times as far apart.
     """
     ordered = np.sort(values)
     gaps = np.diff(ordered) > absolute + relative * ordered[1:]
-    return np.array([group.mean() for group in np.split(ordered, np.flatnonzero(gaps) + 1)])
+    chains = np.split(ordered, np.flatnonzero(gaps) + 1)
+    return np.array([part.mean() for chain in chains for part in _parts(chain, absolute, relative)])
+
+
+def _parts(chain: FloatArray, absolute: float, relative: float) -> Iterator[FloatArray]:
+    """Cut a chain of neighbours that has grown too long for one level into pieces.
+
+    Many runs at ever other conditions lie close together without sharing one level.
+    """
+    start = 0
+    while start < len(chain):
+        longest = _LONGEST_LEVEL * (absolute + relative * chain[start])
+        end = int(np.searchsorted(chain, chain[start] + longest, side="right"))
+        yield chain[start:end]
+        start = end

@@ -23,6 +23,7 @@ import numpy as np
 from knought.arrays import FloatArray, frozen
 from knought.chemistry.activity import OpenForm
 from knought.errors import InputError
+from knought.given import given_pair
 from knought.laws.salt import OPEN, SaltLaw
 
 __all__ = ["DEFAULT_PRIORS", "OpenGrid", "Priors", "open_grid"]
@@ -65,6 +66,9 @@ class Priors:
     constant_size: float = 0.5
 
     def __post_init__(self) -> None:
+        for name in ("ion_size", "linear_coefficient", "interaction_coefficient"):
+            pair = given_pair(getattr(self, name), f"the prior of {name}")
+            object.__setattr__(self, name, pair)
         low, high = self.ion_size
         if not (0 < low <= high < np.inf):
             raise InputError(

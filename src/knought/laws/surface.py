@@ -14,7 +14,8 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from knought.errors import InputError
+from knought.chemistry.constants import COLDEST, HOTTEST
+from knought.given import given_number
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -98,11 +99,17 @@ class Surface:
     standard_concentration: float = 1.0
 
     def __post_init__(self) -> None:
-        if not 0 < self.reference_temperature < np.inf:
-            raise InputError(
-                f"the reference temperature is {self.reference_temperature} K",
-                "give a temperature above 0 K: 298.15",
+        for name, low, high in (
+            ("reference_temperature", COLDEST, HOTTEST),
+            ("standard_concentration", 1e-30, 1e30),
+        ):
+            value = given_number(
+                getattr(self, name),
+                f"the {name.replace('_', ' ')} (above 0 K, or mol/L)",
+                low,
+                high,
             )
+            object.__setattr__(self, name, value)
 
     @property
     def parameters(self) -> tuple[str, ...]:

@@ -19,6 +19,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from knought.errors import Caveat, InputError
+from knought.given import real_array
 from knought.measurement.first_order_pattern import Pattern, pattern_of
 from knought.measurement.first_order_search import (
     SingleExponential,
@@ -300,7 +301,7 @@ def first_order(
         If time or signal cannot be, both levels are given, too few points are left, or the trace
         does not bend.
     """
-    signal = np.asarray(signal, dtype=float)
+    signal = real_array(signal, "signal")
     found = first_orders(
         time, signal[None], initial, final=final, dead_time=dead_time, window=window, drift=drift
     )

@@ -14,6 +14,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from knought.errors import Caveat, InputError
+from knought.given import real_array
 from knought.measurement.initial_slope_rule import ENOUGH_POINTS, Slopes, initial_slopes
 from knought.measurement.traces import checked_trace
 from knought.numerics.correlated_noise import FEW_CORRELATION_TIMES, MUCH_WANDER, mixture_of
@@ -128,7 +129,7 @@ def initial_slope(
     InputError
         If times or signals cannot be, or too few points are left.
     """
-    signal = np.asarray(signal, dtype=float)
+    signal = real_array(signal, "signal")
     found = initial_slopes(time, signal[None], dead_time=dead_time, window=window, order=order)
     t, y = checked_trace(time, signal[None], dead_time, float(found.window_end[0]))
     blank = (0.0, 0.0) if blank is None else blank

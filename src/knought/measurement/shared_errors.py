@@ -28,6 +28,7 @@ from typing import TYPE_CHECKING, Literal
 import numpy as np
 
 from knought.errors import InputError
+from knought.given import given_number
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
@@ -102,6 +103,8 @@ class SharedError:
     def __post_init__(self) -> None:
         object.__setattr__(self, "on_ln_k", MappingProxyType(dict(self.on_ln_k)))
         object.__setattr__(self, "on_ln_I", MappingProxyType(dict(self.on_ln_I)))
+        if not all(isinstance(word, str) for word in (self.name, self.kind)):
+            raise InputError("name and kind of a shared error are words", "write them as text")
         self._check_runs()
         if not self.name.strip():
             raise InputError("a shared error has no name", "name it as the budget should")
@@ -114,7 +117,8 @@ class SharedError:
                 f"a shared error has the distribution {self.distribution!r}",
                 f"choose from {', '.join(DISTRIBUTIONS)}",
             )
-        if not 0 < self.u < math.inf:
+        object.__setattr__(self, "u", given_number(self.u, f"u of {self.name!r}"))
+        if not self.u > 0:
             raise InputError(
                 f"the shared error {self.name!r} has u = {self.u:g}",
                 "give its standard uncertainty, above zero; leave it out if there is none",

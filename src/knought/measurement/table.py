@@ -203,7 +203,7 @@ class RateTable:
         factor = parsed.factor_to(parse_unit(rate_constant_unit(order)))
         return cls(
             k=scaled(k, factor),
-            T=np.asarray(T, dtype=float),
+            T=frozen(T),
             order=order,
             I=_maybe(I),
             u_k=None if u_k is None else scaled(u_k, factor),
@@ -323,4 +323,4 @@ def _headed(sign: str, unit: str) -> str:
 
 
 def _maybe(values: ArrayLike | None) -> FloatArray | None:
-    return None if values is None else np.asarray(values, dtype=float)
+    return None if values is None else frozen(values)

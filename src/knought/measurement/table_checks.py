@@ -6,6 +6,7 @@ from typing import TYPE_CHECKING, Any, Protocol
 
 import numpy as np
 
+from knought.chemistry.constants import COLDEST, HOTTEST, STRONGEST
 from knought.errors import Problem
 from knought.measurement.labels import is_plain_text
 
@@ -14,22 +15,33 @@ if TYPE_CHECKING:
 
     from knought.arrays import BoolArray, FloatArray
 
-__all__ = ["problems_of"]
+__all__ = ["RATE_CONSTANTS", "RELATIVE_UNCERTAINTIES", "problems_of"]
 
 #: Of one column, this many values are told.
 _MOST_PROBLEMS = 50
 
 _UNCERTAINTY = "an uncertainty is above zero; leave the whole column out where it is unknown"
 
-#: Column -> whether zero is allowed, and what to do about a value that is not.
+#: Of a rate constant; beyond, its squares leave the range of doubles.
+RATE_CONSTANTS = (1e-150, 1e150)
+
+#: Of u(k)/k, likewise.
+RELATIVE_UNCERTAINTIES = (1e-30, 1e30)
+
+_K = (
+    "a rate constant is above zero (and within 1e-150 to 1e150); leave the run out, with a "
+    "reason, if it failed"
+)
+
+#: Column -> lowest and highest value that can be, and what to do about one that is not.
 _RULES = {
-    "k": (False, "a rate constant is above zero; leave the run out, with a reason, if it failed"),
-    "T": (False, "give temperatures in K, above zero"),
-    "I": (True, "an ionic strength is zero or above"),
-    "u_k": (False, _UNCERTAINTY),
-    "u_T": (False, _UNCERTAINTY),
-    "u_I": (False, _UNCERTAINTY),
-    "determinations": (False, "give how many determinations were averaged, at least 1"),
+    "k": (*RATE_CONSTANTS, _K),
+    "T": (COLDEST, HOTTEST, "give temperatures in K, above zero (1 to 100 000 K)"),
+    "I": (0.0, STRONGEST, "an ionic strength is zero or above, in mol/L (at most 1000)"),
+    "u_k": (np.nextafter(0, 1), np.inf, _UNCERTAINTY),
+    "u_T": (np.nextafter(0, 1), HOTTEST, _UNCERTAINTY),
+    "u_I": (np.nextafter(0, 1), STRONGEST, _UNCERTAINTY),
+    "determinations": (1.0, 1e9, "give how many determinations were averaged, at least 1"),
 }
 
 
@@ -39,6 +51,11 @@ class Runs(Protocol):
     @property
     def k(self) -> FloatArray:
         """Rate constants."""
+        ...
+
+    @property
+    def u_k(self) -> FloatArray | None:
+        """Their standard uncertainties."""
         ...
 
     @property
@@ -88,20 +105,35 @@ def _lengths(table: Runs) -> Iterator[Problem]:
 
 
 def _values(table: Runs) -> Iterator[Problem]:
-    for name, (zero_allowed, rule) in _RULES.items():
-        yield from _outside(table, name, getattr(table, name), zero_allowed, rule)
+    for name, (low, high, rule) in _RULES.items():
+        yield from _outside(table, name, getattr(table, name), low, high, rule)
     for species, values in table.concentrations.items():
-        yield from _outside(
-            table, f"c({species})", values, True, "a concentration is zero or above"
+        rule = "a concentration is zero or above, in mol/L (at most 1000)"
+        yield from _outside(table, f"c({species})", values, 0.0, STRONGEST, rule)
+    yield from _relative(table)
+
+
+def _relative(table: Runs) -> Iterator[Problem]:
+    if table.u_k is None:
+        return
+    with np.errstate(all="ignore"):  # what cannot be divided is told above
+        relative = table.u_k / table.k
+    wrong = np.isfinite(relative) & (table.u_k > 0) & (table.k > 0)
+    wrong &= (relative < RELATIVE_UNCERTAINTIES[0]) | (relative > RELATIVE_UNCERTAINTIES[1])
+    for place in np.flatnonzero(wrong)[:_MOST_PROBLEMS]:
+        yield Problem(
+            f"run {table.run[place]}: u(k) is {relative[place]:.3g} of k",
+            "give a standard uncertainty between 1e-30 and 1e30 of k; check its unit",
+            column="u_k",
         )
 
 
 def _outside(
-    table: Runs, name: str, values: FloatArray | None, zero_allowed: bool, rule: str
+    table: Runs, name: str, values: FloatArray | None, low: float, high: float, rule: str
 ) -> Iterator[Problem]:
     if values is None:
         return
-    wrong = ~np.isfinite(values) | (values < 0 if zero_allowed else values <= 0)
+    wrong = ~(np.isfinite(values) & (values >= low) & (values <= high))
     for place in np.flatnonzero(wrong)[:_MOST_PROBLEMS]:
         yield Problem(f"run {table.run[place]}: {name} is {values[place]:g}", rule, column=name)
 

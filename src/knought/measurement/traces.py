@@ -9,6 +9,7 @@ import numpy as np
 
 from knought.arrays import FloatArray, frozen
 from knought.errors import InputError
+from knought.given import real_array
 
 if TYPE_CHECKING:
     from numpy.typing import ArrayLike
@@ -79,7 +80,7 @@ def checked_trace(
         If times do not rise, lengths differ, a value is not finite, or fewer than 2 points are
         left.
     """
-    t, y = np.asarray(time, dtype=float), np.asarray(signals, dtype=float)
+    t, y = real_array(time, "time"), real_array(signals, "signal")
     named = f"trace {where}: " if where else ""
     if t.ndim != 1 or y.ndim != 2 or y.shape[1] != len(t):
         raise InputError(

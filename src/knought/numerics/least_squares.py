@@ -19,12 +19,16 @@ triangular factor.
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import TypeAlias
 
 import numpy as np
+import numpy.typing as npt
 
 from knought.arrays import FloatArray, frozen
 
 __all__ = ["LinearFit", "ManyFits", "RankDeficiencyError", "solve", "solve_many"]
+
+LongArray: TypeAlias = npt.NDArray[np.longdouble]
 
 #: Singular values below this fraction of the largest (columns scaled to unit length) mean that the
 #: observations cannot tell two combinations of parameters apart.
@@ -128,18 +132,23 @@ def solve(
         If the observations and priors leave a combination of parameters undetermined.
     """
     n, p = design.shape
-    weight = np.ones(n) if uncertainties is None else 1.0 / uncertainties
+    # Weighing in double precision would round the design, and a design of condition number κ
+    # makes κ times that of it: the refinement works on rows weighed in extended precision.
+    ones = np.ones(n, dtype=np.longdouble)
+    long_weight = ones if uncertainties is None else ones / uncertainties
+    weight = long_weight.astype(float)
     shared = np.zeros((n, 0)) if shared is None else shared
     prior_rows = np.zeros((0, p)) if prior_rows is None else prior_rows
     s, r = shared.shape[1], len(prior_rows)
     prior_values = np.zeros(r) if prior_values is None else prior_values
 
-    matrix = np.zeros((n + s + r, p + s))
-    matrix[:n, :p] = design * weight[:, None]
-    matrix[:n, p:] = shared * weight[:, None]
-    matrix[n : n + s, p:] = np.eye(s)
-    matrix[n + s :, :p] = prior_rows
-    right = np.concatenate([observed * weight, np.zeros(s), prior_values])
+    long_matrix = np.zeros((n + s + r, p + s), dtype=np.longdouble)
+    long_matrix[:n, :p] = design * long_weight[:, None]
+    long_matrix[:n, p:] = shared * long_weight[:, None]
+    long_matrix[n : n + s, p:] = np.eye(s)
+    long_matrix[n + s :, :p] = prior_rows
+    right = np.concatenate([observed * long_weight, np.zeros(s), prior_values])
+    matrix = long_matrix.astype(float)
 
     scale = _column_scale(matrix)
     if len(matrix) < p + s:
@@ -147,7 +156,9 @@ def solve(
         raise RankDeficiencyError(right_vectors[-1][:p], np.inf)
     q, upper = np.linalg.qr(matrix / scale)
     condition = _condition(upper, p)
-    solution, residual = _refined(matrix / scale, right, q, upper)
+    solution, residual = _refined(
+        np.asarray(long_matrix / scale, dtype=np.longdouble), right, q, upper
+    )
 
     inverse = _triangular_inverse(upper) / scale[:, None]
     gain = (inverse @ q.T)[:p]
@@ -194,17 +205,15 @@ def _condition(upper: FloatArray, parameters: int) -> float:
 
 
 def _refined(
-    matrix: FloatArray, right: FloatArray, q: FloatArray, upper: FloatArray
+    long_matrix: LongArray, long_right: LongArray, q: FloatArray, upper: FloatArray
 ) -> tuple[FloatArray, FloatArray]:
     """Solve and refine twice with residuals in extended precision: x and r = b - A x.
 
     Refines x and r together (Björck's augmented system), without which the small residual of an
     ill-conditioned problem stays inaccurate, and with it every standard error.
     """
-    long_matrix = matrix.astype(np.longdouble)
-    long_right = right.astype(np.longdouble)
-    x = np.zeros(matrix.shape[1], dtype=np.longdouble)
-    residual = np.zeros(matrix.shape[0], dtype=np.longdouble)
+    x = np.zeros(long_matrix.shape[1], dtype=np.longdouble)
+    residual = np.zeros(long_matrix.shape[0], dtype=np.longdouble)
     for _ in range(3):
         f = np.asarray(long_right - residual - long_matrix @ x, dtype=float)
         g = np.asarray(-(long_matrix.T @ residual), dtype=float)

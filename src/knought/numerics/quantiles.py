@@ -18,6 +18,7 @@ import numpy as np
 
 from knought.arrays import BoolArray, FloatArray, IndexArray, frozen
 from knought.errors import InputError
+from knought.given import given_number
 
 __all__ = ["Histogram", "Mixture", "chi_square_survival", "normal_quantile", "student_quantile"]
 
@@ -223,6 +224,7 @@ class Mixture:
         InputError
             If `coverage` is not between 0 and 1.
         """
+        coverage = given_number(coverage, "a coverage")
         if not 0 < coverage < 1:
             raise InputError(
                 f"a coverage must lie between 0 and 1, not {coverage}", "give it as 0.95"
