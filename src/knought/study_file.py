@@ -8,7 +8,6 @@ sections themselves are in :mod:`knought.study_sections`.
 from __future__ import annotations
 
 import difflib
-import tomllib
 from typing import TYPE_CHECKING, Any, get_args
 
 from pydantic import BaseModel, ValidationError, model_validator
@@ -28,15 +27,13 @@ from knought.study_sections.discussion import CandidateSection, LiteratureSectio
 from knought.study_sections.medium import MediumSection
 from knought.study_sections.plan import PlanSection
 from knought.study_sections.predict import PredictSection
+from knought.study_sections.toml_text import read_toml
 from knought.study_sections.upstream import TracesSection
 
 if TYPE_CHECKING:
     from pathlib import Path
 
 __all__ = ["StudyFile", "read_study_file"]
-
-#: A study file larger than this was not written by hand.
-_LARGEST = 1_000_000
 
 
 class StudyFile(Section):
@@ -85,25 +82,7 @@ def read_study_file(path: Path) -> StudyFile:
         told.
     """
     try:
-        if path.stat().st_size > _LARGEST:
-            raise InputError(
-                Problem("is too large for a study file", "give the .toml file", file=path.name)
-            )
-        text = path.read_text(encoding="utf-8")
-    except OSError as error:
-        raise InputError(
-            Problem(f"cannot be read: {error.strerror}", "check the path", file=path.name)
-        ) from error
-    except UnicodeDecodeError as error:
-        raise InputError(
-            Problem("is not UTF-8 text", "save the study file as UTF-8", file=path.name)
-        ) from error
-    try:
-        return StudyFile.model_validate(tomllib.loads(text))
-    except tomllib.TOMLDecodeError as error:
-        raise InputError(
-            Problem(f"is not valid TOML: {error}", "mend that line", file=path.name)
-        ) from error
+        return StudyFile.model_validate(read_toml(path))
     except ValidationError as error:
         raise InputError(
             [_problem(path.name, detail) for detail in error.errors()]  # type: ignore[arg-type]

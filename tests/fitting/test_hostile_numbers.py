@@ -206,3 +206,11 @@ def test_values_that_chain_into_one_another_are_no_single_level() -> None:
     spread = distinct_levels(np.linspace(280.0, 320.0, 1000), absolute=0.5)
     assert 10 < len(spread) < 40
     assert spread[0] == pytest.approx(281.0, abs=0.1)
+
+
+def test_uncertainties_far_above_k_leave_the_charges_open() -> None:
+    """A wrong unit of u(k) once made a list of every integer of the interval, without end."""
+    table = rates(*grid([288.15, 298.15, 308.15], [0.005, 0.02, 0.1]))
+    found = kn.assess(kn.RateTable.from_arrays(table.T, table.k, table.I, 1e7 * table.k, unit=UNIT))
+    said = {caveat.code: caveat.message for caveat in found.caveats}
+    assert "say nothing of the charge product" in said["charge-product-undecided"]

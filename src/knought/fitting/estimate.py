@@ -60,7 +60,7 @@ class Estimate:
     def value(self) -> Number:
         """Best value: the mean; for a rate constant the exponential of the mean of ln k."""
         mean = self.distribution.mean
-        return _number(np.exp(mean) if self.logarithmic else mean)
+        return _number(_exponential(mean) if self.logarithmic else mean)
 
     @property
     def standard_uncertainty(self) -> Number:
@@ -87,7 +87,7 @@ class Estimate:
             If `coverage` is not between 0 and 1.
         """
         ends = self.distribution.interval(coverage)
-        low, high = (np.exp(end) if self.logarithmic else end for end in ends)
+        low, high = (_exponential(end) if self.logarithmic else end for end in ends)
         return _number(low), _number(high)
 
     def written(self, layout: Layout = "text") -> str:
@@ -99,6 +99,12 @@ class Estimate:
         if np.ndim(self.value):
             return f"{self.quantity.words}: {np.size(self.value)} values"
         return f"{self.quantity.symbol.text} = {self.written()}"
+
+
+def _exponential(value: FloatArray | float) -> FloatArray:
+    """Return e^value; infinite, as it is, where u is so large that an end is beyond doubles."""
+    with np.errstate(over="ignore", under="ignore"):
+        return np.asarray(np.exp(value))
 
 
 def _number(value: FloatArray | float) -> Number:

@@ -104,6 +104,10 @@ def _misfit_verdict(headline: Found, laws: Sequence[SurfaceFit]) -> list[Caveat]
     ]
 
 
+#: Integers are listed one by one up to here; no step in solution has such charges.
+_LARGEST_CHARGES = 10_000.0
+
+
 def _charge_verdict(free: Found, given: float | None) -> list[Caveat]:
     estimate = free.parameters.get("charge_product")
     if estimate is None or estimate.given:
@@ -118,6 +122,14 @@ def _charge_verdict(free: Found, given: float | None) -> list[Caveat]:
                 f"The given charges have z_A z_B = {given:g}, but the runs alone give "
                 f"{_pair(estimate)}, 95 % interval {low:.2f} to {high:.2f}. Check the "
                 "reactants, the ionic strengths, and whether ions pair.",
+            )
+        ]
+    if not -_LARGEST_CHARGES < low <= high < _LARGEST_CHARGES:
+        return [
+            Caveat(
+                "charge-product-undecided",
+                f"These runs say nothing of the charge product: its 95 % interval is {low:.3g} to "
+                f"{high:.3g}. Check u(k) and its unit.",
             )
         ]
     inside = integers_in(low, high)

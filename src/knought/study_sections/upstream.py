@@ -2,10 +2,9 @@
 
 from __future__ import annotations
 
-import tomllib
 from dataclasses import dataclass
 from pathlib import Path
-from typing import TYPE_CHECKING, Annotated, Any
+from typing import TYPE_CHECKING, Annotated
 
 from pydantic import BeforeValidator, ConfigDict, Field, ValidationError
 
@@ -24,6 +23,7 @@ from knought.study_sections.base import (
     in_unit,
 )
 from knought.study_sections.medium import EquilibriumSection, MediumSection
+from knought.study_sections.toml_text import read_toml
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -239,17 +239,7 @@ def read_upstream(path: Path) -> Upstream:
         If it cannot be read, or one of these sections is wrong; every problem is told.
     """
     try:
-        data: dict[str, Any] = tomllib.loads(path.read_text(encoding="utf-8"))
-    except OSError as error:
-        raise InputError(
-            Problem(f"cannot be read: {error.strerror}", "check the path", file=path.name)
-        ) from error
-    except (UnicodeDecodeError, tomllib.TOMLDecodeError) as error:
-        raise InputError(
-            Problem(f"is not valid TOML in UTF-8: {error}", "mend it", file=path.name)
-        ) from error
-    try:
-        found = _UpstreamFile.model_validate(data)
+        found = _UpstreamFile.model_validate(read_toml(path))
     except ValidationError as error:
         raise InputError(
             [
