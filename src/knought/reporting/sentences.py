@@ -131,7 +131,8 @@ def check_sentences(assessment: Assessment) -> list[str]:
     sentences = []
     checked = assessment.cross_check
     if checked is not None and checked.shifts:
-        name, shift = max(checked.shifts.items(), key=lambda pair: abs(pair[1]))
+        # As printed: among shifts that read alike, rounding noise would choose the name.
+        name, shift = max(checked.shifts.items(), key=lambda pair: round(abs(pair[1]), 2))
         words = checked.in_ln_k.parameters[name].quantity.words
         sentences.append(
             f"Fitting k instead of ln k ({checked.in_ln_k.surface.salt_law.words} law) moves no "
