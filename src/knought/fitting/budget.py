@@ -104,7 +104,10 @@ def budget(found: Found, name: str, *, T: float | None = None, I: float = 0.0) -
         variances = _by_source(found.errors, gain**2, np.ones(1))
     else:
         raise InputError("this fit has no budget", "ask a fit of a named law or the open law")
-    return Budget(quantity, {source: part * factor**2 for source, part in variances.items()})
+    # An error that a result does not feel at all leaves the rounding of its gain.
+    least = _ROUNDING * sum(variances.values())
+    felt = {source: part if part > least else 0.0 for source, part in variances.items()}
+    return Budget(quantity, {source: part * factor**2 for source, part in felt.items()})
 
 
 def _result(found: Found, name: str, T: float | None, I: float) -> tuple[Rows, Quantity, float]:

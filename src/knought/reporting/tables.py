@@ -62,6 +62,10 @@ _HEADLINE = (
 _MOST_CONDITIONS = 8
 
 
+#: Below this χ²/ν is rounding.
+_ROUNDING = 1e-15
+
+
 def headline_table(assessment: Assessment) -> Table:
     """Return value, standard uncertainty and 95 % interval of every headline parameter."""
     found = assessment.headline
@@ -248,6 +252,8 @@ def _misfit_cells(found: Found) -> tuple[Cell, ...]:
     """Return χ²/ν and its probability where u is stated, else the standard deviation of ln k."""
     scatter = found.scatter
     misfit = scatter.reduced_chi_square if scatter.stated else scatter.birge_ratio
+    if scatter.stated and misfit < _ROUNDING:
+        misfit = 0.0  # the law passes through every run: what is left is rounding
     shown = words("–") if math.isnan(misfit) else trimmed(misfit, 3)
     if not scatter.stated:
         return (shown,)
