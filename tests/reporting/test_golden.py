@@ -16,6 +16,7 @@ import pytest
 
 import knought as kn
 from knought.reporting.page import written_page
+from knought.reporting.paragraphs import paragraphs_text
 from knought.reporting.written_tables import latex_table, markdown_table
 from knought.version import __version__
 from tests.fitting.test_assess import table
@@ -129,6 +130,7 @@ def test_page_and_summary_read_as_they_did(state: str, request: pytest.FixtureRe
         "page": page_text(html).replace(__version__, "VERSION"),
         "summary": report.summary(),
         "summary-ascii": report.summary("ascii"),
+        "paragraphs": paragraphs_text(report).replace(__version__, "VERSION"),
         **written_tables(report),
     }
     assert SAYS[state] in texts["page"]

@@ -9,6 +9,7 @@ from knought.reporting.cells import plain_lines
 from knought.reporting.data_package import DESCRIPTOR, package_text
 from knought.reporting.figure_files import FIGURE_FORMATS
 from knought.reporting.page import page
+from knought.reporting.paragraphs import paragraphs_markdown, paragraphs_text
 from knought.reporting.record import schema_text
 from knought.reporting.workbook import workbook_bytes
 from knought.reporting.written_tables import latex_table, markdown_table
@@ -45,6 +46,8 @@ def report_files(
         "results.schema.json": schema_text(),
         "summary.txt": report.summary(),
     }
+    texts["paragraphs.txt"] = paragraphs_text(report)
+    texts["paragraphs.md"] = paragraphs_markdown(report)
     for table, full in zip(report.tables, plain, strict=True):
         texts[f"tables/{table.name}.txt"] = "\n".join([table.title, *plain_lines(table)]) + "\n"
         texts[f"tables/{table.name}.md"] = markdown_table(table)

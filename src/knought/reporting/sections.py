@@ -9,6 +9,8 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
+from knought.reporting.paragraphs import paragraphs_of
+
 if TYPE_CHECKING:
     from knought.reporting.cells import Table
     from knought.reporting.pictures import Picture
@@ -93,5 +95,10 @@ def sections_of(report: Report) -> tuple[Section, ...]:
             pictures.pop(picture.name)
         for table in section.tables:
             tables.pop(table.name)
+    words = Section(
+        "results-text",
+        "Results as text to paste",
+        tuple(text for title, text in paragraphs_of(report) if title == "Results"),
+    )
     rest = Section("further", "Further", (), tuple(pictures.values()), tuple(tables.values()))
-    return tuple(section for section in (*made, *discussed, rest) if not section.empty)
+    return tuple(section for section in (*made, *discussed, rest, words) if not section.empty)

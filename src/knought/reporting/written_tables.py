@@ -11,7 +11,7 @@ from knought.rounding import superscript
 if TYPE_CHECKING:
     from knought.reporting.cells import Cell, Column, Table
 
-__all__ = ["LATEX_PACKAGES", "latex_table", "latex_text", "markdown_table"]
+__all__ = ["LATEX_PACKAGES", "latex_table", "latex_text", "markdown_table", "markdown_text"]
 
 #: What a document must load for the tables.
 LATEX_PACKAGES = (
@@ -25,17 +25,18 @@ _MARKDOWN_SPECIAL = re.compile(r"([\\`*_{}\[\]<>#|~$!])")
 
 def markdown_table(table: Table) -> str:
     """Return a table as Markdown with pipes; every sign of a label is escaped."""
-    heads = [_in_markdown(column.heading("text")) for column in table.columns]
+    heads = [markdown_text(column.heading("text")) for column in table.columns]
     rules = ["---:" if column.numeric else ":---" for column in table.columns]
-    rows = [[_in_markdown(cell.written("text")) for cell in row] for row in table.rows]
-    lines = [f"**{_in_markdown(table.title)}**", ""]
+    rows = [[markdown_text(cell.written("text")) for cell in row] for row in table.rows]
+    lines = [f"**{markdown_text(table.title)}**", ""]
     lines += [f"| {' | '.join(row)} |" for row in (heads, rules, *rows)]
     for note in table.notes:
-        lines += ["", _in_markdown(note)]
+        lines += ["", markdown_text(note)]
     return "\n".join(lines) + "\n"
 
 
-def _in_markdown(text: str) -> str:
+def markdown_text(text: str) -> str:
+    """Return words as Markdown on one line; nothing of them is markup afterwards."""
     return _MARKDOWN_SPECIAL.sub(r"\\\1", " ".join(text.split()))
 
 
