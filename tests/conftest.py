@@ -29,5 +29,10 @@ def pytest_addoption(parser: pytest.Parser) -> None:
 @pytest.fixture
 def undrawn(monkeypatch: pytest.MonkeyPatch) -> None:
     """Leave the figures of pages blank, for tests of what stands around them."""
+    leave_figures_blank(monkeypatch)
+
+
+def leave_figures_blank(monkeypatch: pytest.MonkeyPatch) -> None:
+    """Draw nothing into pages, as long as the patch holds."""
     blank = '<svg role="img"><title>blank</title></svg>'
     monkeypatch.setattr("knought.reporting.page._drawing", lambda report, picture: blank)

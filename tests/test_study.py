@@ -179,7 +179,8 @@ def test_a_study_with_literature_and_candidates_discusses_them(folder: Path) -> 
     weights = {each["name"]: each["weight"] for each in record["candidates"]}
     assert weights["direct"] > 0.99
     assert [each["path"] for each in record["inputs"]][-1] == "literature.csv"
-    assert [section.name for section in report.sections][-2:] == ["literature", "mechanism"]
+    names = [section.name for section in report.sections]
+    assert names[-3:] == ["literature", "mechanism", "results-text"]
     assert any("Paper A" in sentence for sentence in report.discussion)
     assert len(report.discussion) > 4
     assert not any("proves" in sentence for sentence in report.discussion)

@@ -18,6 +18,7 @@ from knought.reporting.record import schema_text
 from knought.reporting.record_comparison import compare_records
 from knought.study import read_study, write_report
 from knought.verify import read_json, verify
+from tests.conftest import leave_figures_blank
 from tests.reporting.test_golden import STATES
 from tests.test_cli import LIKE_CHARGES
 
@@ -48,7 +49,9 @@ def written(tmp_path_factory: pytest.TempPathFactory) -> Path:
     folder = tmp_path_factory.mktemp("study")
     (folder / "rates.csv").write_text(LIKE_CHARGES, encoding="utf-8")
     (folder / "study.toml").write_text(STUDY, encoding="utf-8")
-    kn.run_study(folder / "study.toml", folder / "out", figure_formats=())
+    with pytest.MonkeyPatch.context() as patch:
+        leave_figures_blank(patch)
+        kn.run_study(folder / "study.toml", folder / "out", figure_formats=())
     return folder
 
 
@@ -168,6 +171,22 @@ def test_an_input_that_is_another_than_before_is_named(written: Path, copy: Path
     assert "another" in problem.what
 
 
+def test_a_record_that_cannot_be_read_is_a_problem_and_no_fault(copy: Path) -> None:
+    (copy / "results.json").write_bytes(b"[" * 100_000)
+    whats = [problem.what for problem in verify(copy).problems]
+    assert whats[0].startswith("was changed")
+    assert whats[1] == "is no JSON that can be read: nested too deeply"
+
+
+def test_inputs_that_no_folder_can_hold_are_a_problem_and_no_fault(copy: Path) -> None:
+    package = json.loads((copy / "datapackage.json").read_text(encoding="utf-8"))
+    inputs = [each for each in package["resources"] if "input" in each]
+    inputs[0]["input"], inputs[1]["input"] = "a", "a/b"
+    (copy / "datapackage.json").write_text(descriptor_text(package), encoding="utf-8", newline="\n")
+    assert "cannot be written" in str(verify(copy))
+
+
+@pytest.mark.usefixtures("undrawn")
 def test_a_report_without_a_study_is_held_against_its_hashes_alone(tmp_path: Path) -> None:
     write_report(STATES["warnings"](), tmp_path / "out", figure_formats=())
     found = verify(tmp_path / "out")

@@ -283,6 +283,10 @@ def _kept_inputs(descriptor: dict[str, Any], contents: dict[str, bytes]) -> dict
 def _record(contents: dict[str, bytes], problems: list[Problem]) -> Any:
     """Return the record of the folder; None, and a problem more, where it cannot be read."""
     if "results.json" not in contents:
+        if not any(each.file == "results.json" for each in problems):
+            problems.append(
+                Problem("is not among the files of the folder", _ANEW, file="results.json")
+            )
         return None
     try:
         return read_json(contents["results.json"], "results.json")
@@ -324,8 +328,11 @@ def _run_again(
             target = Path(place, name)
             if not target.resolve().is_relative_to(Path(place).resolve()):
                 raise InputError(Problem("no file can have this name here", file=name))
-            target.parent.mkdir(parents=True, exist_ok=True)
-            target.write_bytes(content)
+            try:
+                target.parent.mkdir(parents=True, exist_ok=True)
+                target.write_bytes(content)
+            except OSError as error:
+                raise InputError(os_problem(error, name, "written")) from error
         report = read_study(Path(place, next(iter(kept)))).report(progress)
         return json.loads(report.record()), []
 

@@ -35,6 +35,7 @@ _ASCII = {
     "“": '"',
     "”": '"',
     "’": "'",
+    "′": "'",
 }
 
 #: Exponents and charges, raised in one piece.

@@ -66,7 +66,10 @@ def latex_table(table: Table) -> str:
     head = " & ".join(_head(column) for column in table.columns) + r" \\"
     rows = [" & ".join(_cell(cell) for cell in row) + r" \\" for row in table.rows]
     caption = rf"\caption{{{latex_text(table.title)}}}\label{{tab:{table.name}}}"
-    notes = [rf"\par\smallskip {latex_text(note)}" for note in table.notes]
+    notes = [
+        rf"{{\par\smallskip\raggedright\footnotesize {latex_text(note)}\par}}"
+        for note in table.notes
+    ]
     if len(table.rows) > _LONGEST_FLOAT:
         lines = [
             rf"\begin{{longtable}}{{@{{}}{kinds}@{{}}}}",
