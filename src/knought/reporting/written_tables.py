@@ -99,7 +99,10 @@ def _column_kind(table: Table, j: int) -> str:
 
 def _head(column: Column) -> str:
     sign = _sign(column.sign("latex"), math="latex" in dict(column.signs))
-    return sign if column.unit == "1" else rf"{sign} / \unit{{{_unit(column.unit)}}}"
+    if column.unit == "1":
+        return sign
+    unit = rf"\unit{{{_unit(column.unit)}}}"
+    return f"{sign} / ({unit})" if " " in column.unit else f"{sign} / {unit}"
 
 
 def _sign(text: str, *, math: bool) -> str:
