@@ -171,6 +171,20 @@ def test_an_input_that_is_another_than_before_is_named(written: Path, copy: Path
     assert "another" in problem.what
 
 
+def test_a_study_that_reads_outside_its_folder_is_verified_from_where_it_lies(
+    written: Path, tmp_path: Path
+) -> None:
+    study = tmp_path / "inner" / "study.toml"
+    study.parent.mkdir()
+    shutil.copy(written / "rates.csv", tmp_path / "rates.csv")
+    study.write_text('[rates]\nfile = "../rates.csv"\n[laws]\nsalt = "davies"\n', encoding="utf-8")
+    with pytest.MonkeyPatch.context() as patch:
+        leave_figures_blank(patch)
+        kn.run_study(study, tmp_path / "out", figure_formats=(), allow_outside=True)
+    assert "outside the folder" in str(verify(tmp_path / "out"))
+    assert verify(tmp_path / "out", study, allow_outside=True).agrees
+
+
 def test_a_record_that_cannot_be_read_is_a_problem_and_no_fault(copy: Path) -> None:
     (copy / "results.json").write_bytes(b"[" * 100_000)
     whats = [problem.what for problem in verify(copy).problems]

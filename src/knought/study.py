@@ -141,8 +141,8 @@ class Study:
             file = said.literature.file
             files.append((file, self.beside(file, "[literature] file")))
         shown = ((shown_name(name), path) for name, path in files)
-        named = dict([(self.path.name, self.path), *shown])
-        return tuple((name, read_bytes(path)) for name, path in named.items())
+        named = dict.fromkeys([(self.path.name, self.path), *shown])
+        return tuple((name, read_bytes(path)) for name, path in named)
 
 
 def _once(caveats: Sequence[Caveat]) -> list[Caveat]:

@@ -18,9 +18,12 @@ from knought.files import os_problem, read_bytes, sha256_of
 from knought.measurement.labels import is_plain_text
 from knought.reporting.data_package import DESCRIPTOR, descriptor_text
 from knought.reporting.record_comparison import TOLERANCE, compare_records
+from knought.study import read_study
 
 if TYPE_CHECKING:
     from collections.abc import Callable
+
+    from knought.study import Study
 
 __all__ = ["Verification", "verify"]
 
@@ -75,6 +78,7 @@ def verify(
     folder: str | Path,
     study: str | Path | None = None,
     *,
+    allow_outside: bool = False,
     progress: Callable[[str, int], None] | None = None,
 ) -> Verification:
     """Hold every file of a report's folder against its hash, and run its study again.
@@ -84,7 +88,10 @@ def verify(
     folder
         A folder that :func:`knought.run_study` wrote.
     study
-        A study file to run instead of the one in the folder: says what changed since.
+        A study file to run instead of the one in the folder: says what changed since. Needed for a
+        study whose files lay outside its own folder, as the one kept cannot reach them.
+    allow_outside
+        Whether `study` may name files outside its own folder; the one kept never may.
     progress
         As for :meth:`knought.study.Study.report`.
 
@@ -106,7 +113,12 @@ def verify(
         return Verification(files, 0, tuple(problems))
     record = _record(contents, problems)
     try:
-        again, changed = _run_again(kept, study, descriptor, progress)
+        if study is None:
+            again = _run_kept(kept, progress)
+            changed: list[Problem] = []
+        else:
+            other = read_study(study, allow_outside=allow_outside)
+            again, changed = _run_other(other, descriptor, progress)
     except InputError as error:
         problems.append(Problem("the study cannot be run again"))
         return Verification(files, 0, (*problems, *error.problems))
@@ -295,32 +307,28 @@ def _record(contents: dict[str, bytes], problems: list[Problem]) -> Any:
         return None
 
 
-def _run_again(
-    kept: dict[str, bytes],
-    study: str | Path | None,
-    descriptor: dict[str, Any],
-    progress: Callable[[str, int], None] | None,
+def _run_other(
+    study: Study, descriptor: dict[str, Any], progress: Callable[[str, int], None] | None
 ) -> tuple[Any, list[Problem]]:
-    """Return the record of the study run again, and which of its inputs are others than before.
+    """Return the record of another study file, and which of its inputs are others than before."""
+    report = study.report(progress)
+    hashes = {each["input"]: each["hash"] for each in descriptor["resources"] if "input" in each}
+    changed = [
+        Problem("this input is another than when the report was made", file=name)
+        for name, digest in report.inputs
+        if hashes.get(name) != f"sha256:{digest}"
+    ]
+    return json.loads(report.record()), changed
+
+
+def _run_kept(kept: dict[str, bytes], progress: Callable[[str, int], None] | None) -> Any:
+    """Return the record of the study in the folder, run again.
 
     Raises
     ------
     InputError
         If the study cannot be run.
     """
-    from knought.study import read_study
-
-    if study is not None:
-        report = read_study(study).report(progress)
-        hashes = {
-            each["input"]: each["hash"] for each in descriptor["resources"] if "input" in each
-        }
-        changed = [
-            Problem("this input is another than when the report was made", file=name)
-            for name, digest in report.inputs
-            if hashes.get(name) != f"sha256:{digest}"
-        ]
-        return json.loads(report.record()), changed
     if not kept:
         raise InputError(Problem("no input is left in the folder", _ANEW))
     with tempfile.TemporaryDirectory(prefix="knought-") as place:
@@ -334,7 +342,7 @@ def _run_again(
             except OSError as error:
                 raise InputError(os_problem(error, name, "written")) from error
         report = read_study(Path(place, next(iter(kept)))).report(progress)
-        return json.loads(report.record()), []
+        return json.loads(report.record())
 
 
 def _told(differences: list[str]) -> list[Problem]:

@@ -7,7 +7,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from knought.cli.console import add_format, layout_of, progress_bars, say
+from knought.cli.console import add_allow_outside, add_format, layout_of, progress_bars, say
 
 if TYPE_CHECKING:
     import argparse
@@ -26,6 +26,7 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
         metavar="STUDY.toml",
         help="run this study file instead of the one kept in the folder",
     )
+    add_allow_outside(parser)
     add_format(parser)
 
 
@@ -41,7 +42,12 @@ def run(options: argparse.Namespace) -> None:
     from knought.verify import verify
 
     with progress_bars() as progress:
-        found = verify(options.folder, options.study, progress=progress)
+        found = verify(
+            options.folder,
+            options.study,
+            allow_outside=options.allow_outside,
+            progress=progress,
+        )
     if not found.agrees:
         raise InputError(found.problems)
     say(str(found), layout_of(options))
