@@ -14,6 +14,7 @@ from __future__ import annotations
 import re
 from dataclasses import dataclass, field, replace
 from fractions import Fraction
+from functools import lru_cache
 from typing import Literal, TypeAlias
 
 from knought.chemistry.header_text import (
@@ -120,6 +121,8 @@ _BEFORE = re.compile(
 )
 
 
+# A long file of notes asks of the same few cells again and again whether they are headers.
+@lru_cache(maxsize=4096)
 def parse_header(text: str) -> Header | None:
     """Read a header.
 

@@ -35,6 +35,9 @@ _MOST_PASSES = 60
 #: So many of the best single-exchange designs are improved by pairs as well.
 _POLISHED = 3
 
+#: Among so few candidates local optima lie close, and starts cost little: so many at least.
+_FEW_CANDIDATES, _STARTS_AMONG_FEW = 12, 40
+
 #: How often the best design is shaken.
 _SHAKES = 8
 
@@ -104,6 +107,8 @@ def exchange(
     InputError
         If no design of that many runs keeps the floor.
     """
+    if len(criterion) <= _FEW_CANDIDATES and starts:
+        starts = max(starts, _STARTS_AMONG_FEW)
     designs = [*begin, *(random_design(runs, floor, random) for _ in range(starts))]
     if not designs:
         raise InputError("there is no start to exchange from", "allow at least one start")
