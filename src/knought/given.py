@@ -11,9 +11,12 @@ import numpy as np
 from knought.errors import InputError
 
 if TYPE_CHECKING:
-    from numpy.typing import ArrayLike
+    from typing import TypeAlias
 
-    from knought.arrays import FloatArray
+    from numpy.typing import ArrayLike, NDArray
+
+    # Written out here: `arrays` stands on this file.
+    FloatArray: TypeAlias = NDArray[np.float64]
 
 __all__ = [
     "given_count",

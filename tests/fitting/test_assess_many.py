@@ -107,6 +107,18 @@ def test_data_too_precise_for_the_grid_are_refined_as_one_alone_is() -> None:
         assert bool(many.coarse[i]) == ("coarse-grid" in codes)
 
 
+def test_what_decides_on_the_grid_is_looked_at_whether_or_not_it_is_wanted() -> None:
+    """Asking for ΔC_p‡ alone, of data too precise for the first grid, failed once."""
+    rates, k = made(2, u=2e-3)
+    said = {"temperature_law": "eyring-cp", "named_laws": False}
+    name = "activation_heat_capacity"
+    alone = kn.assess_many(rates, k, quantities=(name,), **said)  # type: ignore[arg-type]
+    whole = kn.assess_many(rates, k, **said)  # type: ignore[arg-type]
+    assert alone.headline.names == (name,)
+    assert alone.value(name) == pytest.approx(whole.value(name), rel=1e-9)
+    assert np.array_equal(alone.coarse, whole.coarse)
+
+
 def test_errors_of_temperature_go_along_the_slopes_of_the_mean_study() -> None:
     """Not to rounding, as each study alone takes its own slopes, but within a hundredth of u."""
     rates, k = made(3)

@@ -133,7 +133,8 @@ class ManyOpen:
             found = _replaced(found, after, pending)
             pending = pending[few & ~settled]
         coarse[pending] = True
-        return replace(found, coarse=coarse)
+        results = found.results if self._wanted is None else found.results.only(self._wanted)
+        return replace(found, results=results, coarse=coarse)
 
     def _on(self, refinement: int) -> tuple[OpenGrid, Surface]:
         choices = self._choices
@@ -153,7 +154,13 @@ class ManyOpen:
         if refinement not in self._solvers:
             grid, surface = self._on(refinement)
             solver = open_solver(self._seen, surface, grid, self._errors)
-            self._solvers[refinement] = (grid, solver, result_rows(surface, self._wanted))
+            rows = result_rows(surface)
+            if self._wanted is not None:
+                result_rows(surface, self._wanted)  # refuses what is not there
+                # What decides on the grid is looked at whether or not it is wanted.
+                looked_at = {*self._wanted, *_WATCHED}
+                rows = {name: each for name, each in rows.items() if name in looked_at}
+            self._solvers[refinement] = (grid, solver, rows)
         return self._solvers[refinement]
 
     def _at(self, refinement: int, ln_k: FloatArray) -> tuple[OpenResults, BoolArray]:

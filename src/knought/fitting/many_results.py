@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
@@ -72,6 +72,13 @@ class ManyResults:
         """Return the ends of its interval, ``(m,)`` each; raises InputError for an unknown one."""
         j = self._place(name)
         return self.low[:, j], self.high[:, j]
+
+    def only(self, names: Sequence[str]) -> ManyResults:
+        """Return some of the quantities; raises InputError for an unknown one."""
+        places = [self._place(name) for name in names]
+        chosen = (self.values, self.uncertainties, self.low, self.high)
+        values, u, low, high = (frozen(each[:, places]) for each in chosen)
+        return replace(self, names=tuple(names), values=values, uncertainties=u, low=low, high=high)
 
     def _place(self, name: str) -> int:
         if name not in self.names:
