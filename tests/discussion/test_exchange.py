@@ -94,7 +94,7 @@ def test_it_is_not_worse_either_where_a_floor_is_kept() -> None:
     strengths=st.integers(1, 3),
     seed=st.integers(0, 50),
 )
-@settings(max_examples=10, deadline=None)
+@settings(max_examples=6, deadline=None)
 def test_every_design_keeps_its_floor(
     runs: int, temperatures: int, strengths: int, seed: int
 ) -> None:

@@ -111,11 +111,11 @@ def test_every_simulated_plan_is_what_assess_says_of_its_runs(salt_law: str) -> 
     """Member by member, through the front door, a shared error and the rule for ± included."""
     stock = SharedError("stock", kind="factor", u=0.02)
     planned = replace(model(salt_law=salt_law), shared_errors=(stock,))
-    found, made = assessed(planned, T, I, "charge_product", data_sets=12, seed=4, remade=False)
+    found, made = assessed(planned, T, I, "charge_product", data_sets=6, seed=4, remade=False)
     table = planned_table(planned, T, I)
     assert table.u_k is not None
     enlarged = 0
-    for i in range(12):
+    for i in range(6):
         k = np.exp(made.ln_k[i])
         rates = RateTable(k=k, T=T, order=table.order, I=I, u_k=table.u_k / table.k * k)
         one = assess(rates, salt_law=salt_law, shared_errors=[stock])

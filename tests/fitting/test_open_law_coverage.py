@@ -29,7 +29,7 @@ from knought.arrays import frozen
 from knought.fitting.observations import Observations
 
 #: The benchmark runs 4 000 a cell; these are enough to see an interval that fails.
-STUDIES = 400
+STUDIES = 300
 TRUE_ENTHALPY = 50_000.0
 
 
@@ -79,7 +79,11 @@ def probabilities(
     return found
 
 
-@pytest.mark.parametrize("span", RANGES, ids=lambda span: f"I {span[0]}-{span[1]}")
+#: The suite takes two of the three ranges; the benchmark has all.
+SPANS = RANGES[:1] + RANGES[2:]
+
+
+@pytest.mark.parametrize("span", SPANS, ids=lambda span: f"I {span[0]}-{span[1]}")
 @pytest.mark.parametrize("truth", TRUTHS)
 def test_intervals_hold_the_truth_in_nine_studies_of_ten_at_least(
     truth: str, span: tuple[float, float]

@@ -35,7 +35,8 @@ _MOST_PASSES = 60
 #: So many of the best single-exchange designs are improved by pairs as well.
 _POLISHED = 3
 
-#: Among so few candidates local optima lie close, and starts cost little: so many at least.
+#: Among so few candidates of temperature and ionic strength local optima lie close, and starts cost
+#: little: so many at least.
 _FEW_CANDIDATES, _STARTS_AMONG_FEW = 12, 40
 
 #: How often the best design is shaken.
@@ -107,7 +108,8 @@ def exchange(
     InputError
         If no design of that many runs keeps the floor.
     """
-    if len(criterion) <= _FEW_CANDIDATES and starts:
+    salted = len(set(floor.ionic_strength_level.tolist())) > 1
+    if salted and len(criterion) <= _FEW_CANDIDATES and starts:
         starts = max(starts, _STARTS_AMONG_FEW)
     designs = [*begin, *(random_design(runs, floor, random) for _ in range(starts))]
     if not designs:
